@@ -1,0 +1,51 @@
+"""A ring of integer polynomials over named generators, on FLINT."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from typing import Any
+
+from flint import Ordering, fmpz_mpoly_ctx
+
+# FLINT's polynomials come without type stubs. They can be neither pickled nor hashed.
+Polynomial = Any
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Ring:
+    """Integer polynomials in `names`, in that order.
+
+    A name in `inverted` is a generator that stands for the reciprocal of the name: with R in
+    `inverted`, the generator of R is the conductance 1/R.
+    """
+
+    names: tuple[str, ...]
+    inverted: frozenset[str]
+    context: Any
+
+    @property
+    def zero(self) -> Polynomial:
+        """The polynomial 0."""
+        return self.context.constant(0)
+
+    @property
+    def one(self) -> Polynomial:
+        """The polynomial 1."""
+        return self.context.constant(1)
+
+    def generator(self, name: str) -> Polynomial:
+        """Give the generator that stands for `name` (for 1/name where it is inverted)."""
+        return self.context.gen(self.names.index(name))
+
+    def constant(self, value: int) -> Polynomial:
+        """Give a constant polynomial."""
+        return self.context.constant(value)
+
+
+def ring(names: Iterable[str], inverted: Iterable[str] = ()) -> Ring:
+    """Make a ring; any text will do for a name, and the first name is the most significant."""
+    ordered = tuple(names)
+    # FLINT does not check generator names, and prints them: give it harmless ones of our own.
+    safe = [f"x{index}" for index in range(len(ordered))] or ["x0"]
+    return Ring(ordered, frozenset(inverted), fmpz_mpoly_ctx.get(safe, Ordering.lex))

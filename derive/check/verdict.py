@@ -1,0 +1,45 @@
+"""The nouns of checking: what is to be judged, and the verdict with its evidence."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from derive.eliminate.derivation import Derivation
+from derive.normalise.form import NominalNumbers, NormalForm
+
+
+@dataclass(frozen=True, slots=True)
+class Solution:
+    """All that was derived for one wanted quantity; `numbers` is None where a value was left open."""
+
+    derivation: Derivation
+    form: NormalForm
+    numbers: NominalNumbers | None
+
+
+@dataclass(frozen=True, slots=True)
+class Verdict:
+    """The outcome of one check.
+
+    `passed` is None where the check could not be finished or does not apply: neither pass nor fail.
+    `measured` and `limit` are printed as they stand.
+    """
+
+    name: str
+    method: str
+    passed: bool | None
+    measured: str
+    limit: str
+
+
+@dataclass(frozen=True, slots=True)
+class Result:
+    """A solution with the verdicts on it."""
+
+    solution: Solution
+    verdicts: tuple[Verdict, ...]
+
+    @property
+    def passed(self) -> bool:
+        """Whether no check failed."""
+        return all(verdict.passed is not False for verdict in self.verdicts)

@@ -1,0 +1,53 @@
+"""The nouns of a result: the normal form of a response, and its numbers at the nominal values."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from fractions import Fraction
+
+from derive.expressions.tree import Expression
+
+
+@dataclass(frozen=True, slots=True)
+class NormalForm:
+    """H(s) = gain · s^power_of_s · (sum numerator[k]·s^k) / (sum denominator[k]·s^k).
+
+    Both polynomials begin with 1. An identically zero response has gain 0 and both equal to (1,).
+    """
+
+    gain: Expression
+    power_of_s: int
+    numerator: tuple[Expression, ...]
+    denominator: tuple[Expression, ...]
+
+    @property
+    def is_zero(self) -> bool:
+        """Whether the response is zero for all values."""
+        return str(getattr(self.gain, "value", "")) == "0"
+
+
+@dataclass(frozen=True, slots=True)
+class CertifiedRoot:
+    """A root in rad/s: `real` and `imaginary` are within `radius` of the true root."""
+
+    real: float
+    imaginary: float
+    radius: float
+    multiplicity: int
+
+
+@dataclass(frozen=True, slots=True)
+class NominalNumbers:
+    """The response at the nominal values: exact polynomials, and roots with certified bounds.
+
+    `top` and `bottom` are the exact coefficients of numerator and denominator by rising powers of s,
+    before normalising (their lowest coefficient may vanish at these values). `coincident` lists the
+    roots that top and bottom share at these values and at these only.
+    """
+
+    gain: Fraction | None
+    top: tuple[Fraction, ...]
+    bottom: tuple[Fraction, ...]
+    zeros: tuple[CertifiedRoot, ...]
+    poles: tuple[CertifiedRoot, ...]
+    coincident: tuple[CertifiedRoot, ...]
