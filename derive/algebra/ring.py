@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from functools import reduce
 from typing import Any
 
 from flint import Ordering, fmpz_mpoly_ctx
@@ -17,7 +18,7 @@ class Ring:
     """Integer polynomials in `names`, in that order.
 
     A name in `inverted` is a generator that stands for the reciprocal of the name: with R in
-    `inverted`, the generator of R is the conductance 1/R.
+    `inverted`, the generator of R is 1/R.
     """
 
     names: tuple[str, ...]
@@ -42,6 +43,17 @@ class Ring:
         """Give a constant polynomial."""
         return self.context.constant(value)
 
+    def monomial(self, powers: dict[str, int]) -> Polynomial:
+        """Give the product of generators to the powers stated."""
+        exponents = [0] * max(len(self.names), 1)
+        for name, power in powers.items():
+            exponents[self.names.index(name)] = power
+        return self.context.from_dict({tuple(exponents): 1})
+
+    def plain(self) -> Ring:
+        """Give the ring of the same polynomials in which no name is inverted."""
+        return Ring(self.names, frozenset(), self.context)
+
 
 def ring(names: Iterable[str], inverted: Iterable[str] = ()) -> Ring:
     """Make a ring; any text will do for a name, and the first name is the most significant."""
@@ -49,3 +61,19 @@ def ring(names: Iterable[str], inverted: Iterable[str] = ()) -> Ring:
     # FLINT does not check generator names, and prints them: give it harmless ones of our own.
     safe = [f"x{index}" for index in range(len(ordered))] or ["x0"]
     return Ring(ordered, frozenset(inverted), fmpz_mpoly_ctx.get(safe, Ordering.lex))
+
+
+def used_names(ring: Ring, polynomials: Iterable[Polynomial]) -> tuple[str, ...]:
+    """Give the names that occur in any of the polynomials, in the ring's order."""
+    degrees = reduce(
+        lambda so_far, more: [max(a, b) for a, b in zip(so_far, more, strict=True)],
+        (polynomial.degrees() for polynomial in polynomials if polynomial != 0),
+        [0] * max(len(ring.names), 1),
+    )
+    return tuple(name for name, degree in zip(ring.names, degrees, strict=False) if degree > 0)
+
+
+def common_monomial(polynomials: Iterable[Polynomial]) -> Polynomial:
+    """Give the greatest term, with its whole-number factor, that divides all of the polynomials."""
+    contents = [polynomial.term_content() for polynomial in polynomials if polynomial != 0]
+    return reduce(lambda a, b: a.gcd(b), contents)

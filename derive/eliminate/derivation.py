@@ -61,7 +61,7 @@ class Step:
 class Derivation:
     """The steps from the circuit's equations to wanted/input = numerator/denominator in lowest terms.
 
-    The two polynomials are over the system's ring.
+    The two polynomials are over the system's ring with no name inverted.
     """
 
     system: NodalSystem

@@ -1,0 +1,1 @@
+"""Sheet to bytes: HTML and PDF. No mathematics and no wording here."""

@@ -1,0 +1,68 @@
+"""Roots of polynomials with rational coefficients, each with a proven bound on its error.
+
+The bounds come from FLINT's ball arithmetic (Johansson, Arb: efficient arbitrary-precision
+midpoint-radius interval arithmetic, IEEE Trans. Computers 66 (2017) 1281-1292; from memory).
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import Any
+
+from flint import fmpq, fmpq_poly
+
+
+@dataclass(frozen=True, slots=True)
+class Root:
+    """A root: `real` and `imaginary` are each within `radius` of the truth."""
+
+    real: float
+    imaginary: float
+    radius: float
+    multiplicity: int
+
+
+def rational_polynomial(coefficients: Sequence[Fraction]) -> fmpq_poly:
+    """Make a FLINT polynomial from coefficients by rising power."""
+    return fmpq_poly([fmpq(value.numerator, value.denominator) for value in coefficients])
+
+
+def roots(coefficients: Sequence[Fraction]) -> tuple[Root, ...]:
+    """Give the roots by rising magnitude, roots at zero included.
+
+    Given: coefficients by rising power, not all zero. A pair's member with the negative imaginary
+    part comes first.
+    """
+    polynomial = rational_polynomial(coefficients)
+    if polynomial.degree() < 1:
+        return ()
+    balls: Any = polynomial.numer().complex_roots()
+    found = [_root(ball, count) for ball, count in balls]
+    return tuple(sorted(found, key=_order))
+
+
+def shared_roots(one: Sequence[Fraction], other: Sequence[Fraction]) -> tuple[Root, ...]:
+    """Give the roots that both polynomials have, by their exact greatest common divisor."""
+    common = rational_polynomial(one).gcd(rational_polynomial(other))
+    return roots([Fraction(int(c.p), int(c.q)) for c in common.coeffs()])
+
+
+def _root(ball: Any, multiplicity: int) -> Root:
+    real, real_radius = _float(getattr(ball, "real", ball))
+    imaginary, imaginary_radius = _float(ball.imag) if hasattr(ball, "imag") else (0.0, 0.0)
+    return Root(real, imaginary, max(real_radius, imaginary_radius), multiplicity)
+
+
+def _float(ball: Any) -> tuple[float, float]:
+    """Give the nearest float of a ball's middle, and a radius that also covers that rounding."""
+    middle = float(ball.mid())
+    if ball.is_exact() and abs(middle) < 2**53 and middle.is_integer():
+        return middle, 0.0
+    return middle, float(ball.rad()) + math.ulp(middle)
+
+
+def _order(root: Root) -> tuple[float, float, float]:
+    return math.hypot(root.real, root.imaginary), root.real, root.imaginary

@@ -1,0 +1,1 @@
+"""The roads of checking, one file each; found by folder."""

@@ -1,0 +1,139 @@
+"""The result against the circuit at the nominal values, in floating point, over the whole band."""
+
+from __future__ import annotations
+
+import math
+from fractions import Fraction
+
+import numpy as np
+
+from derive.check.excitation import excite
+from derive.check.points import symbol_names
+from derive.check.reading import value_exact
+from derive.check.solve import NoSolutionError, Sweep, long_double, solve_frequencies
+from derive.check.stamp import assemble
+from derive.check.verdict import Solution, Verdict
+from derive.check.words import at_most, frequency
+from derive.devices.elements import Coupling, Inductor, SmallSignal
+
+NAME = "nominal values"
+METHOD = (
+    "the circuit solved in floating point at 60 frequencies, from two decades below the lowest "
+    "corner to two above the highest, relative to the size of the numerator's terms"
+)
+ORDER = 30
+POINTS = 60
+FLOOR = 1e-9
+NOISE = 1e-12  # smaller differences are rounding and would change from machine to machine
+Pair = tuple[Fraction, Fraction]
+Ratio = tuple[list[Fraction], list[Fraction], int]  # top, bottom, power of s
+
+
+def judge(solution: Solution) -> Verdict:
+    """Judge whether the result gives the circuit's response at its nominal values."""
+    system = solution.derivation.system
+    values = nominal_values(system.small_signal)
+    if values is None:
+        return Verdict(NAME, METHOD, None, "not tried: a value is left open", "")
+    omegas = [2 * math.pi * hertz for hertz in frequencies_hz(solution)]
+    numbers = {name: long_double(value) for name, value in values.items()}
+    tableau = assemble(system.small_signal, excite(system), numbers.__getitem__)
+    try:
+        sweep = solve_frequencies(tableau, omegas)
+        worst, at_hz = _worst(_coefficients(solution, values), omegas, sweep)
+    except (NoSolutionError, ZeroDivisionError, OverflowError) as error:
+        return Verdict(NAME, METHOD, None, f"not finished: {error}", "")
+    limit = max(FLOOR, 1000 * float(sweep.moved.max()))
+    bound = f"{at_most(limit)} (or 1000 times what the last refinement still moved)"
+    if not limit < 1e-3:
+        return Verdict(NAME, METHOD, None, "not decided: the circuit is too ill-conditioned", bound)
+    if worst < NOISE:
+        measured = f"below {at_most(NOISE)} at every frequency"
+    else:
+        measured = f"worst error {at_most(worst)}, at {frequency(at_hz)}"
+    return Verdict(NAME, METHOD, worst <= limit, measured, bound)
+
+
+def _worst(printed: Ratio, omegas: list[float], sweep: Sweep) -> tuple[float, float]:
+    """Give the worst relative error and its frequency in hertz."""
+    worst, at_hz = 0.0, omegas[0] / (2 * math.pi)
+    for omega, response, largest in zip(omegas, sweep.responses, sweep.largest, strict=True):
+        value, scale = _response(*printed, Fraction(omega))
+        # A response that vanishes at these values is judged by what else goes on in the circuit.
+        error = _relative(complex(response), value, scale or float(largest))
+        if not error <= worst:
+            worst, at_hz = error, omega / (2 * math.pi)
+    return worst, at_hz
+
+
+def nominal_values(circuit: SmallSignal) -> dict[str, Fraction] | None:
+    """Give every symbol its nominal value, M to 40 digits; None where one is left open."""
+    values = {symbol.name: symbol.value for symbol in circuit.symbols}
+    inductances = {e.name: e.inductance for e in circuit.elements if isinstance(e, Inductor)}
+    for element in circuit.elements:
+        if isinstance(element, Coupling):
+            first, second = (values.get(inductances[coil]) for coil in element.coils)
+            k = values.get(element.coefficient)
+            if first is not None and second is not None and k is not None:
+                values[element.mutual] = k * _root(first * second)
+    known = {name: values.get(name) for name in symbol_names(circuit)}
+    exact = {name: value for name, value in known.items() if value is not None}
+    return exact if len(exact) == len(known) else None
+
+
+def _root(value: Fraction) -> Fraction:
+    digits = 10 ** (2 * max(40, 40 + len(str(value.denominator)) - len(str(value.numerator))))
+    return Fraction(math.isqrt(value.numerator * digits // value.denominator)) / math.isqrt(digits)
+
+
+def frequencies_hz(solution: Solution) -> list[float]:
+    """Give 60 frequencies around the corners, evenly spaced on a logarithmic scale."""
+    roots = solution.numbers.zeros + solution.numbers.poles if solution.numbers else ()
+    corners = [math.hypot(root.real, root.imaginary) / (2 * math.pi) for root in roots]
+    corners = [corner for corner in corners if 0 < corner < math.inf]
+    low, high = (min(corners) / 100, max(corners) * 100) if corners else (1.0, 1e9)
+    return [float(f) for f in np.geomspace(low, high, POINTS)]
+
+
+def _coefficients(solution: Solution, values: dict[str, Fraction]) -> Ratio:
+    form, numbers = solution.form, solution.numbers
+    try:
+        gain = value_exact(form.gain, values)
+        top = [gain * value_exact(a, values) for a in form.numerator]
+        return top, [value_exact(b, values) for b in form.denominator], int(form.power_of_s)
+    except ZeroDivisionError:
+        # The lowest coefficient vanishes at these values: only the unnormalised ratio is left.
+        if numbers is None:
+            raise
+        return list(numbers.top), list(numbers.bottom), 0
+
+
+def _response(
+    top: list[Fraction], bottom: list[Fraction], shift: int, omega: Fraction
+) -> tuple[complex, float]:
+    real, imaginary = _at(top, omega)
+    below_real, below_imaginary = _at(bottom, omega)
+    square = below_real**2 + below_imaginary**2
+    quotient = (
+        (real * below_real + imaginary * below_imaginary) / square,
+        (imaginary * below_real - real * below_imaginary) / square,
+    )
+    size = omega**shift
+    turn = (1, 1j, -1, -1j)[shift % 4]
+    value = complex(float(quotient[0] * size), float(quotient[1] * size)) * turn
+    terms = sum(abs(float(a * omega**k * size / _root(square))) for k, a in enumerate(top))
+    return value, terms
+
+
+def _at(coefficients: list[Fraction], omega: Fraction) -> Pair:
+    parts = [Fraction(0), Fraction(0)]
+    for k, coefficient in enumerate(coefficients):
+        parts[k % 2] += coefficient * omega**k * (-1 if k % 4 in (2, 3) else 1)
+    return parts[0], parts[1]
+
+
+def _relative(response: complex, printed: complex, scale: float) -> float:
+    difference = abs(response - printed)
+    if scale > 0:
+        return difference / scale
+    return 0.0 if difference == 0 else math.inf

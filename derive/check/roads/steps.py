@@ -1,0 +1,154 @@
+"""The derivation replayed: every step from those it claims to follow from, and in the circuit."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from derive.check.excitation import excite
+from derive.check.points import Stream, stream, symbol_names, values_modulo
+from derive.check.reading import form_modulo, names_of_circuit, value_modulo
+from derive.check.solve import NoSolutionError, solve_modulo
+from derive.check.stamp import assemble
+from derive.check.verdict import Solution, Verdict
+from derive.check.words import count
+from derive.eliminate.derivation import Step
+from derive.errors import DeriveError
+from derive.expressions.tree import Equation, Name
+from derive.normalise.form import NormalForm
+
+NAME = "every step"
+METHOD = (
+    "each step from the earlier ones by its own certificate, and at the circuit's true solution, "
+    "at a random point modulo a random 61-bit prime"
+)
+ORDER = 60
+LIMIT = "every step holds, and the last gives the result"
+TRIES = 12
+
+
+@dataclass(frozen=True, slots=True)
+class Point:
+    """Values for every name: once with all unknowns free, once as the circuit settles them."""
+
+    free: dict[str, int]
+    settled: dict[str, int]
+    prime: int
+
+
+class StepError(ValueError):
+    """Raised for the first step that does not hold."""
+
+
+def judge(solution: Solution) -> Verdict:
+    """Judge whether every step follows and is true, and whether the last ones give the result."""
+    numbers = stream(solution, "steps")
+    prime = numbers.prime()
+    why = ""
+    for _ in range(TRIES):
+        try:
+            point = _draw(solution, numbers, prime)
+            _replay(solution, point)
+        except StepError as error:
+            return Verdict(NAME, METHOD, False, str(error), LIMIT)
+        except (NoSolutionError, ZeroDivisionError) as error:
+            why = str(error)
+            continue
+        steps = solution.derivation.steps
+        return Verdict(NAME, METHOD, True, f"{count(len(steps), 'step')} of {len(steps)}", LIMIT)
+    return Verdict(NAME, METHOD, False, f"no point could be worked: {why}", LIMIT)
+
+
+def _draw(solution: Solution, numbers: Stream, prime: int) -> Point:
+    system = solution.derivation.system
+    circuit, excitation = system.small_signal, excite(system)
+    symbols = values_modulo(circuit, numbers, prime)
+    symbols["s"] = numbers.below(prime)
+    state = solve_modulo(assemble(circuit, excitation, symbols.__getitem__), symbols["s"], prime)
+    settled = names_of_circuit(solution, excitation, state, symbols, numbers.below(prime), prime)
+    fixed = {*symbols, *symbol_names(circuit)}
+    free = {name: value if name in fixed else numbers.below(prime) for name, value in settled.items()}
+    for unknown in system.unknowns:
+        free.setdefault(unknown.name, numbers.below(prime))
+    return Point(free, settled, prime)
+
+
+def _replay(solution: Solution, point: Point) -> None:
+    system, form = solution.derivation.system, solution.form
+    stated = {system.find.name, *(drive.name for drive in system.small_signal.drives)}
+    done: dict[int, Step] = {}
+    reached = False
+    for step in solution.derivation.steps:
+        try:
+            if step.number in done:
+                raise StepError("its number stands twice")
+            if step.defines is not None:
+                _define(step, point, stated)
+            _judge_step(step, done, point)
+            _judge_definition(step, form, point)
+            if step.equation.left == Name(system.find.name) and step.defines is None:
+                reached = _gives_form(step, form, point)
+        except (StepError, DeriveError) as error:
+            raise StepError(f"step {step.number}: {error}") from None
+        done[step.number] = step
+    if not reached:
+        raise StepError(f"no step gives the result for {system.find.name}")
+
+
+def _define(step: Step, point: Point, stated: set[str]) -> None:
+    """Take the name's value from its definition; what the circuit settles is left to be judged."""
+    name = step.defines or ""
+    if step.equation.left != Name(name):
+        raise StepError(f"it does not define {name}")
+    if name in point.free and name not in stated:
+        raise StepError(f"it defines {name}, which already has a meaning")
+    for values in (point.free, point.settled):
+        if name in stated and values is point.settled:
+            continue  # the circuit itself gives this one: the definition is judged against it
+        values[name] = value_modulo(step.equation.right, values, point.prime)
+
+
+def _difference(equation: Equation, values: dict[str, int], prime: int) -> int:
+    left = value_modulo(equation.left, values, prime)
+    return (left - value_modulo(equation.right, values, prime)) % prime
+
+
+def _judge_step(step: Step, done: dict[int, Step], point: Point) -> None:
+    prime = point.prime
+    if _difference(step.equation, point.settled, prime):
+        raise StepError("not true of the circuit")
+    if step.nonzero is not None and value_modulo(step.nonzero, point.free, prime) == 0:
+        raise StepError("what it says is not zero is zero")
+    certificate = step.certificate
+    if certificate is None:
+        if step.row is None and step.defines is None:
+            raise StepError("it gives no reason")
+        return
+    divisor = value_modulo(certificate.divisor, point.free, prime)
+    if divisor == 0:
+        raise StepError("its divisor is zero")
+    total = 0
+    for number, multiplier in certificate.uses:
+        if number not in done:
+            raise StepError(f"it uses step {number}, which does not come before it")
+        used = _difference(done[number].equation, point.free, prime)
+        total += value_modulo(multiplier, point.free, prime) * used
+    if (total - divisor * _difference(step.equation, point.free, prime)) % prime:
+        raise StepError("does not follow from the steps that it uses")
+
+
+def _judge_definition(step: Step, form: NormalForm, point: Point) -> None:
+    """Hold a definition of K, a_k or b_k against the coefficient printed under that name."""
+    if step.defines is None:
+        return
+    printed = {"K": form.gain}
+    printed.update({f"a_{k}": a for k, a in enumerate(form.numerator)})
+    printed.update({f"b_{k}": b for k, b in enumerate(form.denominator)})
+    tree = printed.get(step.defines)
+    if tree is not None and value_modulo(tree, point.free, point.prime) != point.free[step.defines]:
+        raise StepError(f"it defines {step.defines} otherwise than the result does")
+
+
+def _gives_form(step: Step, form: NormalForm, point: Point) -> bool:
+    return value_modulo(step.equation.right, point.free, point.prime) == form_modulo(
+        form, point.free, point.prime
+    )

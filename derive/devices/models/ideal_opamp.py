@@ -1,0 +1,16 @@
+"""An ideal op amp: inputs at equal voltage, no input current, whatever output current that takes."""
+
+from __future__ import annotations
+
+from derive.devices.elements import VirtualShort
+from derive.devices.model import Model, Names
+from derive.topology.topology import Part
+
+KIND = "ideal_opamp"
+
+
+def linearise(part: Part, names: Names) -> Model:
+    """Give the virtual short; an ideal op amp has no symbols."""
+    plus, minus = part.nodes("inputs")
+    (output,) = part.nodes("output")
+    return Model((VirtualShort(part.name, part.name, output, (plus, minus)),), ())

@@ -1,0 +1,95 @@
+"""A sheet as one HTML file that needs nothing else: maths as MathML, fonts and data inside."""
+
+from __future__ import annotations
+
+import base64
+import json
+import re
+from xml.etree import ElementTree
+
+from markupsafe import Markup
+
+from derive.render import templates
+from derive.render.maths import Piece, SheetMaths
+from derive.render.page import compose, digest
+from derive.render.typesetter import Formula, mathml
+from derive.sheet.document import Sheet
+
+_FONT_MARK = re.compile(r'url\("fonts/([\w.-]+)"\)')
+# What makes a pair of parentheses grow; round anything else they keep the size of the letters.
+_TALL = frozenset({"mfrac", "mtable", "msqrt", "munderover"})
+_FENCES = frozenset("()[]")
+
+
+def to_html(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
+    """Return the sheet as one self-contained HTML file.
+
+    Given: the sheet's `maths`, where it has been set already.
+    Raises: OutputError if the maths cannot be typeset.
+    """
+    maths = maths or SheetMaths(sheet)
+    formulas = maths.formulas()
+    elements = dict(zip(formulas, map(tidy, mathml(formulas)), strict=True))
+    page = compose(
+        sheet,
+        maths,
+        lambda piece: _marked_up(piece, elements),
+        paper=False,
+        digest=digest(sheet),
+        style=Markup(_style()),
+        topology=in_script(json.dumps(_topology(sheet), ensure_ascii=False)),
+        ledger=in_script(sheet.ledger_text),
+    )
+    return page.encode("utf-8", errors="replace")
+
+
+def in_script(text: str) -> Markup:
+    """Return JSON text that no script element can be closed by; it reads as the same data."""
+    return Markup(text.replace("<", "\\u003c").replace(">", "\\u003e").replace("&", "\\u0026"))
+
+
+def tidy(element: str) -> str:
+    """Return a `<math>` element with plain letters and with parentheses as tall as they need be."""
+    root = ElementTree.fromstring(element)
+    for node in root.iter():
+        if node.tag == "mi" and node.text and len(node.text) == 1:
+            node.text = _plain_letter(node.text)
+        fences = [c for c in node if c.tag == "mo" and c.text in _FENCES]
+        if fences and not any(inner.tag in _TALL for inner in node.iter() if inner is not node):
+            for fence in fences:
+                fence.set("stretchy", "false")
+    if root.get("display") == "block":
+        for fraction in root.iter("mfrac"):
+            fraction.set("displaystyle", "true")
+    return ElementTree.tostring(root, encoding="unicode")
+
+
+def _plain_letter(letter: str) -> str:
+    """Return the letter behind a mathematical italic one: browsers slant single letters themselves."""
+    code = ord(letter)
+    if 0x1D434 <= code <= 0x1D467:
+        place = code - 0x1D434
+        return chr(ord("A") + place) if place < 26 else chr(ord("a") + place - 26)
+    if code == 0x210E:
+        return "h"
+    if 0x1D6FC <= code <= 0x1D714:
+        return chr(0x3B1 + code - 0x1D6FC)
+    return letter
+
+
+def _marked_up(piece: Piece, elements: dict[Formula, str]) -> Markup:
+    return Markup(elements[piece.formula])
+
+
+def _topology(sheet: Sheet) -> dict[str, str]:
+    return {"file": sheet.topology_name, "sha256": digest(sheet), "text": sheet.topology_text}
+
+
+def _style() -> str:
+    """Return the style sheet with its fonts inside."""
+
+    def embedded(found: re.Match[str]) -> str:
+        data = base64.b64encode((templates.fonts() / found.group(1)).read_bytes())
+        return f'url("data:font/woff2;base64,{data.decode("ascii")}")'
+
+    return _FONT_MARK.sub(embedded, templates.read_text("style.css"))

@@ -1,0 +1,244 @@
+"""Turns a sheet into the page that screen and paper share; they differ in how maths is marked up."""
+
+from __future__ import annotations
+
+import hashlib
+from collections.abc import Callable
+from dataclasses import dataclass
+
+from markupsafe import Markup, escape
+
+from derive.expressions.tree import Equation, Expression
+from derive.render import templates
+from derive.render.maths import (
+    PARAGRAPH_EM,
+    REASON_EM,
+    Piece,
+    SheetMaths,
+    cell_em,
+)
+from derive.sheet.document import (
+    Block,
+    Display,
+    Field,
+    Line,
+    Mark,
+    Maths,
+    Paragraph,
+    Reference,
+    Section,
+    Sheet,
+    SourceText,
+    Table,
+    Text,
+)
+
+_SIGNS = {True: "✓", False: "✗", None: "–"}
+_TONES = {True: "pass", False: "fail", None: "open"}
+_KINDS: dict[type, str] = {
+    Paragraph: "paragraph",
+    Display: "display",
+    Table: "table",
+    SourceText: "source",
+}
+_LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
+_SHORT_TABLE = 10  # rows
+_LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
+
+Setter = Callable[[Piece], Markup]
+
+
+@dataclass(frozen=True, slots=True)
+class Cell:
+    """A cell of the title block; `span` counts twelfths of its width."""
+
+    label: str
+    text: str
+    span: int
+    kind: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Heading:
+    """A section's title with its number."""
+
+    number: str
+    title: str
+    level: int
+
+
+@dataclass(frozen=True, slots=True)
+class Group:
+    """Headings, the blocks that must not be parted from them, and the blocks that follow."""
+
+    headings: tuple[Heading, ...]
+    kept: tuple[Block, ...]
+    rest: tuple[Block, ...]
+
+
+class Page:
+    """What the templates ask for while they write a sheet."""
+
+    def __init__(self, sheet: Sheet, maths: SheetMaths, set_piece: Setter) -> None:
+        self.sheet = sheet
+        self._maths = maths
+        self._set = set_piece
+        self._tables = 0
+
+    def words(self, line: Line, limit: float) -> Markup:
+        """Return a line of words, maths, links and marks as markup."""
+        return Markup("").join(self._inline(item, limit) for item in line)
+
+    def paragraph(self, line: Line) -> Markup:
+        """Return the words of a paragraph."""
+        return self.words(line, PARAGRAPH_EM)
+
+    def reason(self, line: Line) -> Markup:
+        """Return the words at the side of a formula."""
+        return self.words(line, REASON_EM)
+
+    def cell(self, line: Line, columns: int) -> Markup:
+        """Return the words of a cell of a table with so many columns."""
+        return self.words(line, cell_em(columns))
+
+    def shown(self, block: Display) -> list[tuple[str, Markup]]:
+        """Return the label and the markup of each piece of a displayed formula."""
+        return [(p.label, self._set(p)) for p in self._maths.display(block).pieces]
+
+    def is_wide(self, block: Display) -> bool:
+        """Say whether a displayed formula takes the page's width."""
+        return self._maths.display(block).wide
+
+    def table_number(self) -> int:
+        """Return the number of the next table."""
+        self._tables += 1
+        return self._tables
+
+    def anchor(self, anchor: str) -> str:
+        """Return the identifier in the page for an anchor of the sheet."""
+        return "at-" + "".join(c if c.isascii() and c.isalnum() else f"_{ord(c):x}" for c in anchor)
+
+    def kind(self, block: Block) -> str:
+        """Return the name of the template that writes a block."""
+        return _KINDS[type(block)]
+
+    def is_short(self, block: Table) -> bool:
+        """Say whether a table is short enough to be kept on one page."""
+        return len(block.rows) <= _SHORT_TABLE
+
+    def breaks_words(self, line: Line) -> bool:
+        """Say whether a cell holds a word too long to be kept whole in a narrow column."""
+        words = (word for item in line if isinstance(item, Text) for word in item.text.split())
+        return any(len(word) > _LONG_WORD for word in words)
+
+    def _inline(self, item: Text | Maths | Reference | Mark, limit: float) -> Markup:
+        match item:
+            case Text(text):
+                return escape(text)
+            case Maths(content):
+                return self._run(content, limit)
+            case Reference(anchor, number):
+                link = Markup('<a class="ref" href="#{}">({})</a>')
+                return link.format(self.anchor(anchor), number)
+            case Mark(passed, text):
+                mark = Markup('<span class="mark {}">{}\N{NO-BREAK SPACE}{}</span>')
+                return mark.format(_TONES[passed], _SIGNS[passed], text or _TONES[passed])
+
+    def _run(self, content: Expression | Equation, limit: float) -> Markup:
+        return Markup(" ").join(self._set(p) for p in self._maths.inline(content, limit))
+
+
+def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) -> str:
+    """Return the whole page as HTML text.
+
+    Given: `set_piece`, which marks up one piece of maths, and more values for the template, of which
+    `paper` says whether the page is to be printed as a PDF.
+    """
+    template = templates.environment().get_template("sheet.html.j2")
+    return template.render(
+        page=Page(sheet, maths, set_piece),
+        sheet=sheet,
+        cells=title_cells(sheet, paper=bool(more.get("paper"))),
+        groups=groups(sheet.sections),
+        **more,
+    )
+
+
+def digest(sheet: Sheet) -> str:
+    """Return the SHA-256 of the topology that the sheet carries, as 64 hexadecimal digits."""
+    return hashlib.sha256(sheet.topology_text.encode("utf-8")).hexdigest()
+
+
+def title_cells(sheet: Sheet, paper: bool) -> list[Cell]:
+    """Return the cells of the title block, row by row, each row twelve twelfths wide."""
+    fields = list(sheet.fields)
+    number = next((f for f in fields if f.label.casefold() in ("number", "document")), None)
+    cells = [Cell("Title", sheet.title, 9 if number else 12, "title")]
+    if number:
+        fields.remove(number)
+        cells.append(Cell(number.label, number.text, 3, "docno"))
+    short = [f for f in fields if len(f.text) <= _LONG_FIELD and "\n" not in f.text]
+    verdict = "✓ all checks passed" if sheet.passed else f"✗ {_failed(sheet)}"
+    cells += _rows([*short, Field("Status", verdict)], "status pass" if sheet.passed else "status fail")
+    cells += [Cell(f.label, f.text, 12, "long") for f in fields if f not in short]
+    cells.append(Cell("Source", sheet.topology_name, 10 if paper else 12, "digest"))
+    if paper:
+        cells.append(Cell("Sheets", "", 2, "pages"))
+    return cells
+
+
+def _failed(sheet: Sheet) -> str:
+    count = len(sheet.failures)
+    return f"{count} checks failed" if count > 1 else "a check failed"
+
+
+def _rows(fields: list[Field], last_kind: str) -> list[Cell]:
+    """Spread entries evenly over rows of up to four."""
+    rows = -(-len(fields) // 4)
+    cells: list[Cell] = []
+    for row in range(rows):
+        # The fuller row first: its entries are the shorter ones, number and revision.
+        part = fields[-(-row * len(fields) // rows) : -(-(row + 1) * len(fields) // rows)]
+        cells += [Cell(f.label, f.text, 12 // len(part)) for f in part]
+    last = cells[-1]
+    return [*cells[:-1], Cell(last.label, last.text, last.span, last_kind)]
+
+
+def groups(sections: tuple[Section, ...]) -> list[Group]:
+    """Return the sections numbered, each heading kept with what it stands over.
+
+    A section without blocks lends its heading to the next one, so that no heading ends a page.
+    """
+    made: list[Group] = []
+    waiting: list[Heading] = []
+    main = part = 0
+    for section in sections:
+        if section.level == 1:
+            main, part = main + 1, 0
+        else:
+            part += 1
+        number = f"{main}" if section.level == 1 else f"{main}.{part}"
+        waiting.append(Heading(number, section.title, section.level + 1))
+        if section.blocks:
+            kept = _kept(section.blocks)
+            made.append(Group(tuple(waiting), section.blocks[:kept], section.blocks[kept:]))
+            waiting = []
+    if waiting:
+        made.append(Group(tuple(waiting), (), ()))
+    return made
+
+
+def _kept(blocks: tuple[Block, ...]) -> int:
+    """Count the blocks that stay on one page with the heading over them.
+
+    Words that lead to a formula are kept with it; a long table may begin at the foot of a page.
+    """
+    match blocks:
+        case (Paragraph(), Display(), *_):
+            return 2
+        case (Table(_, _, rows), *_) if len(rows) > _SHORT_TABLE:
+            return 0
+        case (SourceText(text), *_) if text.count("\n") > _SHORT_TABLE:
+            return 0
+        case _:
+            return 1

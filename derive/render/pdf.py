@@ -1,0 +1,143 @@
+"""A sheet as an A4 PDF that carries its source and its ledger."""
+
+from __future__ import annotations
+
+import hashlib
+import io
+import mimetypes
+import warnings
+from datetime import UTC, datetime
+from typing import Any
+
+from markupsafe import Markup
+
+from derive.errors import OutputError
+from derive.render import templates
+from derive.render.hidden_text import HiddenText
+from derive.render.maths import Piece, SheetMaths
+from derive.render.outline import read_page
+from derive.render.page import compose, digest
+from derive.render.typesetter import Formula, draw
+from derive.sheet.document import Sheet
+
+# The same bytes from the same input: the files inside bear a date that says nothing.
+_NO_DATE = datetime(2000, 1, 1, tzinfo=UTC)
+_PACKAGES = (
+    "libpango-1.0-0 libpangoft2-1.0-0 libharfbuzz0b libharfbuzz-subset0 libfontconfig1 libglib2.0-0"
+)
+
+
+def to_pdf(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
+    """Return the sheet as an A4 PDF with topology and ledger attached.
+
+    Given: the sheet's `maths`, where it has been set already.
+    Raises: OutputError if the maths cannot be typeset, or a library for PDF is missing.
+    """
+    weasyprint = _weasyprint()
+    from weasyprint.text.fonts import FontConfiguration
+
+    maths = maths or SheetMaths(sheet)
+    formulas = maths.formulas()
+    pictures = Pictures(formulas)
+    page = compose(sheet, maths, pictures.markup, paper=True, digest=digest(sheet), style=None)
+    fetcher = weasyprint.urls.URLFetcher(allowed_protocols=("file",), fail_on_errors=False)
+    base = templates.folder().as_uri() + "/"
+    fonts = FontConfiguration()
+    style = weasyprint.CSS(
+        string=templates.read_text("print.css"), base_url=base, url_fetcher=fetcher, font_config=fonts
+    )
+    document = weasyprint.HTML(string=page, base_url=base, url_fetcher=fetcher).render(
+        font_config=fonts,
+        stylesheets=[style],
+        cache=pictures.cache,
+        pdf_variant="pdf/a-3a",
+        pdf_tags=True,
+    )
+    with warnings.catch_warnings():
+        # The writer leaves the file of its colour profile to the garbage collector.
+        warnings.simplefilter("ignore", ResourceWarning)
+        made: bytes = document.write_pdf(
+            finisher=lambda _, pdf: _finish(pdf, pictures),
+            cache=pictures.cache,
+            attachments=_attachments(weasyprint, sheet),
+            pdf_variant="pdf/a-3a",
+            pdf_identifier=hashlib.sha256(page.encode("utf-8", "replace")).digest()[:16],
+        )
+    return made
+
+
+class Pictures:
+    """The formulas of a document as images, each under its own address in the cache."""
+
+    def __init__(self, formulas: list[Formula]) -> None:
+        from derive.render.picture import FormulaImage, GlyphForm
+
+        self.hidden = HiddenText()
+        self._addresses = {formula: f"eq:{i}" for i, formula in enumerate(formulas)}
+        outlines: dict[str, str] = {}
+        drawings = [read_page(page, outlines) for page in draw(formulas)]
+        forms = {
+            key: GlyphForm(f"g{i}-", operators) for i, (key, operators) in enumerate(outlines.items())
+        }
+        self.cache: dict[str, Any] = {
+            address: FormulaImage(drawing, forms, self.hidden)
+            for address, drawing in zip(self._addresses.values(), drawings, strict=True)
+        }
+
+    def markup(self, piece: Piece) -> Markup:
+        """Return the image element for one piece, its size given in em of the text around it."""
+        address = self._addresses[piece.formula]
+        image = self.cache[address]
+        image.text = image.text or piece.text
+        size = piece.size
+        place = f";vertical-align:{-size.depth:.4f}em" if not piece.formula.display else ""
+        return Markup(
+            '<img class="{}" src="{}" alt="{}" style="width:{:.4f}em;height:{:.4f}em{}">'
+        ).format(
+            "shown" if piece.formula.display else "inline",
+            address,
+            piece.speech or "(continued)",
+            size.width,
+            size.height,
+            place,
+        )
+
+
+def _attachments(weasyprint: Any, sheet: Sheet) -> list[Any]:
+    # Not every system knows the type, and the type is written into the file.
+    mimetypes.add_type("application/toml", ".toml")
+    files = (
+        (sheet.topology_name, sheet.topology_text, "topology of this sheet", "Source"),
+        (sheet.ledger_name, sheet.ledger_text, "results of this sheet, for programs", "Data"),
+    )
+    return [
+        weasyprint.Attachment(
+            file_obj=io.BytesIO(text.encode("utf-8", "replace")),
+            name=name,
+            description=description,
+            created=_NO_DATE,
+            modified=_NO_DATE,
+            relationship=relationship,
+        )
+        for name, text, description, relationship in files
+    ]
+
+
+def _finish(pdf: Any, pictures: Pictures) -> None:
+    """Add the font of the hidden text, and list each attached file once."""
+    pictures.hidden.finish(pdf)
+    if "AF" in pdf.catalog:
+        once = list(dict.fromkeys(pdf.catalog["AF"]))
+        pdf.catalog["AF"][:] = once
+
+
+def _weasyprint() -> Any:
+    """Import the PDF writer only now: it is slow to start, and its libraries may be missing."""
+    try:
+        import weasyprint
+    except OSError as problem:
+        raise OutputError(
+            "no PDF can be written: a system library for text layout is missing",
+            cure=f"on Debian, install {_PACKAGES}",
+        ) from problem
+    return weasyprint

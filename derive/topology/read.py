@@ -1,0 +1,69 @@
+"""From the text of a topology file to a Topology."""
+
+from __future__ import annotations
+
+import os
+from pathlib import PurePath
+
+from derive.topology.circuit import check_circuit
+from derive.topology.document import Document, load
+from derive.topology.drives import read_drives, read_node_words
+from derive.topology.fields import known_keys, not_yet
+from derive.topology.files import check_text, read_text
+from derive.topology.finds import read_finds
+from derive.topology.models import check_models_used, read_models
+from derive.topology.parts import read_parts
+from derive.topology.title_block import read_title_block
+from derive.topology.topology import Topology
+
+_TABLES = ("sheet", "nodes", "drives", "parts", "models", "find")
+_LATER = {
+    "supplies": "ground the supply nodes: write gnd in their place",
+    "assume": "take the assumptions out; the exact result is derived",
+    "bands": "take it out; every part is kept at all frequencies",
+    "conditions": "take the table out",
+    "merge": "take the table out",
+    "budget": "take the table out",
+    "drawing": "take the table out",
+}
+
+
+def read(path: str | os.PathLike[str]) -> Topology:
+    """Give the topology that the file describes, checked and with the line of every item.
+
+    Raises: InputError, with file, line and cure, for anything that cannot be used.
+    """
+    return parse(read_text(path), os.fspath(path))
+
+
+def parse(text: str, file: str) -> Topology:
+    """Give the topology that the text describes; `file` is the name that messages point to.
+
+    Raises: InputError, with file, line and cure, for anything that cannot be used.
+    """
+    check_text(text, file)
+    document = load(text, file)
+    _check_tables(document)
+    title_block = read_title_block(document)
+    models = read_models(document)
+    drives = read_drives(document)
+    parts = read_parts(document, models)
+    check_models_used(document, models, parts)
+    topology = Topology(
+        file=PurePath(file).name,
+        text=text,
+        title_block=title_block,
+        node_words=read_node_words(document),
+        drives=drives,
+        parts=parts,
+        finds=read_finds(document, drives),
+    )
+    check_circuit(topology, document)
+    return topology
+
+
+def _check_tables(document: Document) -> None:
+    for name, cure in _LATER.items():
+        if name in document.data:
+            raise not_yet(document, f"{name} is", name, cure=cure)
+    known_keys(document, document.data, _TABLES, "the file")
