@@ -34,9 +34,7 @@ def coprime(ring: Ring, one: Polynomial, other: Polynomial) -> bool:
     return _shared_degree([int(a) for a, _ in values], [int(b) for _, b in values]) == 0
 
 
-def cramer_shared_degree(
-    ring: Ring, rows: Sequence[Mapping[int, Polynomial]], degree: int
-) -> int:
+def cramer_shared_degree(ring: Ring, rows: Sequence[Mapping[int, Polynomial]], degree: int) -> int:
     """Give the degree, on a random line, of what Cramer's two determinants for the last unknown share.
 
     `degree` is the greater of their total degrees.

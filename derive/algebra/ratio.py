@@ -35,7 +35,7 @@ def coefficients(ring: Ring, polynomial: Polynomial, name: str) -> dict[int, Pol
     grouped: dict[int, dict[tuple[int, ...], int]] = {}
     for exponents, coefficient in polynomial.to_dict().items():
         rest = (*exponents[:place], 0, *exponents[place + 1 :])
-        grouped.setdefault(exponents[place], {})[rest] = coefficient
+        grouped.setdefault(int(exponents[place]), {})[rest] = coefficient
     return {power: ring.context.from_dict(terms) for power, terms in sorted(grouped.items())}
 
 
@@ -60,8 +60,7 @@ def exact_value(
             reduced = (*reduced[:place], exponents[place] % 2, *reduced[place + 1 :])
         terms[reduced] = terms.get(reduced, fmpq(0)) + value
     rational = context.from_dict({key: value for key, value in terms.items() if value != 0})
-    point = _point(ring, values)
-    result = rational(*point) if rational != 0 else fmpq(0)
+    result = rational(*_point(ring, values))
     return Fraction(int(result.p), int(result.q))
 
 

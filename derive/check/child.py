@@ -54,7 +54,8 @@ def ask(questions: Sequence[dict[str, Any]], seconds: float) -> Child:
 
 def answers_of(child: Child) -> list[dict[str, Any]]:
     """Wait for the answers until the time is up; one that did not come is LATE or SILENT."""
-    process, missing = child.process, SILENT
+    process = child.process
+    missing: dict[str, Any] = SILENT
     # One that has ended has its answers waiting, however late they are fetched.
     ended = process.poll() is not None
     left = None if ended else max(0.0, child.deadline - time.monotonic())

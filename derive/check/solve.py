@@ -143,14 +143,10 @@ def long_double(value: Fraction | int) -> np.longdouble:
 
 @dataclass(frozen=True, slots=True)
 class Sweep:
-    """The response at each frequency; `moved` is what the last refinement still changed, relative.
-
-    `largest` is the greatest voltage (or current) of the circuit there, for an input of 1.
-    """
+    """The response at each frequency, and by how much the last refinement still moved it."""
 
     responses: Complex
     moved: npt.NDArray[np.float64]
-    largest: npt.NDArray[np.float64]
 
 
 def solve_frequencies(tableau: Tableau, omegas_rad_per_s: Sequence[float]) -> Sweep:
@@ -166,7 +162,6 @@ def solve_frequencies(tableau: Tableau, omegas_rad_per_s: Sequence[float]) -> Sw
     return Sweep(
         np.concatenate([part.responses for part in parts]),
         np.concatenate([part.moved for part in parts]),
-        np.concatenate([part.largest for part in parts]),
     )
 
 
@@ -202,14 +197,8 @@ def _solve_stack(tableau: Tableau, omegas: Sequence[float]) -> Sweep:
     pick = np.zeros(tableau.size, dtype=np.longdouble)
     for column, factor in tableau.wanted.items():
         pick[column] = factor
-    kinds = {kind for (kind, _), column in tableau.columns.items() if pick[column]}
-    alike = np.array([kind in kinds for kind, _ in tableau.columns])
-    x, step = x * columns, step * columns
-    parts = (np.abs(x) * np.abs(pick)).sum(axis=1)
-    moved = (np.abs(step) * np.abs(pick)).sum(axis=1)
-    ratio = np.where(parts > 0, moved / np.where(parts > 0, parts, 1), 0)
-    largest = np.where(alike, np.abs(x), 0).max(axis=1)
-    return Sweep((x * pick).sum(axis=1), ratio.astype(np.float64), largest.astype(np.float64))
+    moved = (np.abs(step * columns) * np.abs(pick)).sum(axis=1)
+    return Sweep((x * columns * pick).sum(axis=1), moved.astype(np.float64))
 
 
 def _scales(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from derive.devices.elements import SmallSignal
 from derive.eliminate.derivation import Derivation
 from derive.normalise.form import NominalNumbers, NormalForm
 
@@ -34,12 +35,29 @@ class Verdict:
 
 @dataclass(frozen=True, slots=True)
 class Result:
-    """A solution with the verdicts on it."""
+    """A solution with the verdicts on it.
+
+    `broken_steps` lists the steps whose proof failed, each with what is wrong.
+    """
 
     solution: Solution
     verdicts: tuple[Verdict, ...]
+    broken_steps: tuple[tuple[int, str], ...] = ()
 
     @property
     def passed(self) -> bool:
-        """Whether no check failed."""
-        return all(verdict.passed is not False for verdict in self.verdicts)
+        """Whether no check failed and no step is broken."""
+        return not self.broken_steps and all(v.passed is not False for v in self.verdicts)
+
+
+@dataclass(frozen=True, slots=True)
+class Outcome:
+    """All results of one topology."""
+
+    circuit: SmallSignal
+    results: tuple[Result, ...]
+
+    @property
+    def passed(self) -> bool:
+        """Whether no check failed on any result."""
+        return all(result.passed for result in self.results)

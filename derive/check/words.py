@@ -26,8 +26,9 @@ def at_most(value: float) -> str:
 
 def frequency(hertz: float) -> str:
     """Give a frequency to three digits with its prefix: "1.23 MHz"."""
-    group = min(4, max(-1, math.floor(math.log10(hertz) / 3))) if hertz > 0 else 0
-    return f"{float(f'{hertz / 1000.0**group:.3g}'):g} {_PREFIXES[group]}Hz"
+    rounded = float(f"{hertz:.3g}")
+    group = min(4, max(-1, math.floor(math.log10(rounded) / 3 + 1e-12))) if rounded > 0 else 0
+    return f"{rounded / 1000.0**group:.6g} {_PREFIXES[group]}Hz"
 
 
 def count(number: int, noun: str) -> str:

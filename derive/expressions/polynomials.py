@@ -72,9 +72,7 @@ class Writer:
         names = [Name(name) for name in self.ring.names]
         keyed = []
         for exponents, coefficient in terms:
-            powers = sorted(
-                (rank[place], place, power) for place, power in enumerate(exponents) if power
-            )
+            powers = sorted((rank[place], place, power) for place, power in enumerate(exponents) if power)
             weight = sum(power for _, _, power in powers)
             keyed.append(((weight, [r for r, _, p in powers for _ in range(p)]), powers, coefficient))
         keyed.sort(key=lambda entry: entry[0])
@@ -152,7 +150,8 @@ def writing_order(ring: Ring, ranks: Mapping[str, int]) -> tuple[str, ...]:
 
 def _terms(polynomial: Polynomial) -> list[Term]:
     return [
-        (exponents, int(coefficient)) for exponents, coefficient in polynomial.to_dict().items()
+        (tuple(map(int, exponents)), int(coefficient))
+        for exponents, coefficient in polynomial.to_dict().items()
     ]
 
 

@@ -53,9 +53,7 @@ def _controlled_voltage(
     output = branches.voltages.between(*element.output)
     law = sensed.times((Name(symbol),), branches.ring.generator(symbol))
     what = "voltage" if isinstance(element, VoltageGain) else f"current of {element.senses}"
-    return _equal(
-        f"output of {element.part}: {element.part} times the {what} it senses", output, law
-    )
+    return _equal(f"output of {element.part}: {element.part} times the {what} it senses", output, law)
 
 
 def _inductor(element: Inductor, branches: Branches) -> NodalEquation:
@@ -86,9 +84,7 @@ def _one_pole(element: OnePoleGain, branches: Branches) -> NodalEquation:
     output = branches.voltages.between(element.output, GROUND)
     sensed = branches.voltages.between(*element.inputs)
     if element.dc_gain is None and element.unity is not None:
-        left = output.times(
-            (divide(Name("s"), Name(element.unity)),), s * ring.generator(element.unity)
-        )
+        left = output.times((divide(Name("s"), Name(element.unity)),), s * ring.generator(element.unity))
         return _equal(f"output of op amp {element.part}: gain w_u/s", left, sensed)
     if element.dc_gain is None:
         raise ValueError(f"op amp {element.part} has no gain")

@@ -39,9 +39,7 @@ def port(circuit: SmallSignal, find: Find, taken: set[str]) -> Port:
     weights = tuple((name, weight) for name, weight in find.per if weight != 0)
     at_work = {name for name, _ in weights}
     current = tuple(
-        drive
-        for drive in circuit.drives
-        if isinstance(drive, CurrentDrive) and drive.name in at_work
+        drive for drive in circuit.drives if isinstance(drive, CurrentDrive) and drive.name in at_work
     )
     if len(weights) == 1 and weights[0][1] == 1:
         return Port(weights[0][0], weights, voltage, current)

@@ -41,9 +41,7 @@ def write_equations(circuit: SmallSignal, find: Find) -> NodalSystem:
     nodes = nodes_of(circuit)
     ties = tie_nodes(nodes, at_work.voltage_drives)
     free = [node for node, tie in ties.items() if tie.base == node and node != GROUND]
-    voltages = Voltages(
-        ring, ties, at_work.active, {node: fresh(taken, f"v_{node}") for node in free}
-    )
+    voltages = Voltages(ring, ties, at_work.active, {node: fresh(taken, f"v_{node}") for node in free})
     branches = Branches.of(circuit, find, voltages, taken)
     unknowns = [Unknown(voltages.name_of[node], "voltage", node) for node in free]
     unknowns += [Unknown(name, "current", element) for element, name in branches.unknown.items()]
@@ -53,8 +51,7 @@ def write_equations(circuit: SmallSignal, find: Find) -> NodalSystem:
         if leader(node) != GROUND:
             clusters.setdefault(leader(node), []).append(node)
     equations = [
-        node_equation(tuple(cluster), branches, at_work.current_drives)
-        for cluster in clusters.values()
+        node_equation(tuple(cluster), branches, at_work.current_drives) for cluster in clusters.values()
     ]
     equations += [law for element in circuit.elements if (law := law_of(element, branches))]
     wanted, extra = wanted_quantity(find, branches, taken)

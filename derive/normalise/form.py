@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from fractions import Fraction
 
-from derive.expressions.tree import Expression
+from derive.expressions.tree import ZERO, Expression
 
 
 @dataclass(frozen=True, slots=True)
@@ -23,7 +24,7 @@ class NormalForm:
     @property
     def is_zero(self) -> bool:
         """Whether the response is zero for all values."""
-        return str(getattr(self.gain, "value", "")) == "0"
+        return self.gain == ZERO
 
 
 @dataclass(frozen=True, slots=True)
@@ -34,6 +35,23 @@ class CertifiedRoot:
     imaginary: float
     radius: float
     multiplicity: int
+
+    @property
+    def magnitude(self) -> float:
+        """The root's distance from the origin, in rad/s."""
+        return math.hypot(self.real, self.imaginary)
+
+    @property
+    def hertz(self) -> float:
+        """The magnitude as a frequency in Hz."""
+        return self.magnitude / (2 * math.pi)
+
+    @property
+    def quality(self) -> float | None:
+        """The quality factor Q of a complex pair; None for a real root or one on the axis."""
+        if self.imaginary == 0 or self.real == 0:
+            return None
+        return self.magnitude / (2 * abs(self.real))
 
 
 @dataclass(frozen=True, slots=True)

@@ -71,9 +71,7 @@ def _write_steps(scribe: Scribe, form: NormalForm) -> None:
     scribe.follow(NORMAL, equation, [(ratio, ONE)], ONE)
 
 
-def _define(
-    scribe: Scribe, rule: str, name: str, value: Expression, taken: set[str]
-) -> Expression:
+def _define(scribe: Scribe, rule: str, name: str, value: Expression, taken: set[str]) -> Expression:
     """Name an expression; where a part bears the name, the find's name is added to it."""
     if name in taken:
         name = f"{name}_{scribe.system.find.name}"

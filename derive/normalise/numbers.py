@@ -9,7 +9,7 @@ from fractions import Fraction
 from derive.algebra.ratio import coefficients, exact_value
 from derive.algebra.ring import Polynomial
 from derive.algebra.roots import Root, roots, shared_roots
-from derive.devices.elements import Coupling, SmallSignal
+from derive.devices.elements import Coupling, Inductor, SmallSignal
 from derive.eliminate.derivation import Derivation
 from derive.normalise.form import CertifiedRoot, NominalNumbers
 
@@ -71,11 +71,11 @@ def _certified(found: Sequence[Root]) -> tuple[CertifiedRoot, ...]:
 
 def _mutual_squares(circuit: SmallSignal, values: dict[str, Fraction]) -> dict[str, Fraction]:
     """Give M² = k²·L_1·L_2 of every coupling."""
-    coils = {element.name: element for element in circuit.elements}
+    coils = {e.name: values[e.inductance] for e in circuit.elements if isinstance(e, Inductor)}
     squares = {}
     for element in circuit.elements:
         if isinstance(element, Coupling):
-            first, second = (values[getattr(coils[coil], "inductance")] for coil in element.coils)
+            first, second = (coils[coil] for coil in element.coils)
             squares[element.mutual] = values[element.coefficient] ** 2 * first * second
     return squares
 

@@ -40,7 +40,7 @@ def to_html(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
         topology=in_script(json.dumps(_topology(sheet), ensure_ascii=False)),
         ledger=in_script(sheet.ledger_text),
     )
-    return page.encode("utf-8", errors="replace")
+    return page.encode("utf-8")
 
 
 def in_script(text: str) -> Markup:

@@ -12,7 +12,7 @@ from derive.expressions.unicode_text import to_unicode
 from derive.render.breaking import Breaker, displayed
 from derive.render.typesetter import Formula, Measurer, Size
 from derive.render.within_words import run_on, slashed
-from derive.sheet.document import Display, Line, Maths, Matrix, Paragraph, Sheet, Table
+from derive.sheet.document import Display, Line, Maths, Matrix, Paragraph, Sheet, Table, Text
 
 # The columns of the A4 page in em of the text that stands in them; print.css holds the same in mm.
 COLUMN_EM = 32.0
@@ -20,11 +20,15 @@ WIDE_EM = 45.0
 BOX_EM = 1.8
 REASON_EM = 13.6
 PARAGRAPH_EM = 48.0
-TABLE_EM = 50.0
+TABLE_EM = 52.0
+PADDING_EM = 1.2  # of a cell, left and right
+LETTER_EM = 0.52  # of words, on average, with room to spare
+WORDS_EM = 9.0  # the most that a column of words takes from those of formulas
 
 RUN_ON_EM = 11.0  # a longer formula within words is set in parts, so that the line can break
 MOST_LINES = 22  # of one formula in one picture: more would not fit a page
 LABEL_EM = 4.0  # "row 3:" before the equation of a row
+TALLEST_EM = 50.0  # of a formula that is kept on one page
 TALL_EM = 8.0  # a formula that grows taller than this in its column is given the page's width
 
 _Content = Expression | Equation
@@ -47,6 +51,11 @@ class Shown:
 
     pieces: tuple[Piece, ...]
     wide: bool = False
+
+    @property
+    def tall(self) -> bool:
+        """Say whether a page may have to end within the formula."""
+        return _height(self.pieces) > TALLEST_EM
 
 
 class SheetMaths:
@@ -155,9 +164,22 @@ class SheetMaths:
         return self._measurer[formula].width
 
 
-def cell_em(columns: int) -> float:
-    """Return the width in em that a formula may take in a cell of a table of so many columns."""
-    return TABLE_EM / max(columns, 1) - 1.6
+def cell_em(table: Table) -> float:
+    """Return the width in em that a formula may take in a cell of a table.
+
+    Columns of words are given what their words need, up to a measure; the rest is shared by the
+    columns that hold formulas.
+    """
+    taken, sharing = 0.0, 0
+    for place, column in enumerate(table.columns):
+        cells = [column.heading, *(row[place] for row in table.rows)]
+        longest = max(sum(len(i.text) for i in cell if isinstance(i, Text)) for cell in cells)
+        if any(isinstance(item, Maths) for cell in cells for item in cell):
+            sharing += 1
+        else:
+            taken += min(longest * LETTER_EM, WORDS_EM) + PADDING_EM
+    # Rounded, so that tables of one shape share their formulas.
+    return float(max(4, int((TABLE_EM - taken) / max(sharing, 1) - PADDING_EM)))
 
 
 def _gather(
@@ -183,11 +205,11 @@ def _lines(block: object) -> Iterator[tuple[Line, float]]:
             yield line, PARAGRAPH_EM
         case Display():
             yield block.reason, REASON_EM
-        case Table(_, columns, rows):
-            limit = cell_em(len(columns))
-            for column in columns:
+        case Table():
+            limit = cell_em(block)
+            for column in block.columns:
                 yield column.heading, limit
-            for row in rows:
+            for row in block.rows:
                 for cell in row:
                     yield cell, limit
         case _:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+import re
 from collections.abc import Callable
 from dataclasses import dataclass
 
@@ -33,6 +34,8 @@ from derive.sheet.document import (
     Text,
 )
 
+# What no page may hold: halves of surrogate pairs, and control characters but for tab and line end.
+_UNPRINTABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f\ud800-\udfff\ufffe\uffff]")
 _SIGNS = {True: "✓", False: "✗", None: "–"}
 _TONES = {True: "pass", False: "fail", None: "open"}
 _KINDS: dict[type, str] = {
@@ -43,6 +46,7 @@ _KINDS: dict[type, str] = {
 }
 _LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
 _SHORT_TABLE = 10  # rows
+_MANY_COLUMNS = 8
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
 
 Setter = Callable[[Piece], Markup]
@@ -97,9 +101,13 @@ class Page:
         """Return the words at the side of a formula."""
         return self.words(line, REASON_EM)
 
-    def cell(self, line: Line, columns: int) -> Markup:
-        """Return the words of a cell of a table with so many columns."""
-        return self.words(line, cell_em(columns))
+    def cell(self, line: Line, limit: float) -> Markup:
+        """Return the words of a cell of a table whose formulas have this width in em."""
+        return self.words(line, limit)
+
+    def cell_limit(self, block: Table) -> float:
+        """Return the width in em that formulas have in the cells of a table."""
+        return cell_em(block)
 
     def shown(self, block: Display) -> list[tuple[str, Markup]]:
         """Return the label and the markup of each piece of a displayed formula."""
@@ -108,6 +116,10 @@ class Page:
     def is_wide(self, block: Display) -> bool:
         """Say whether a displayed formula takes the page's width."""
         return self._maths.display(block).wide
+
+    def is_tall(self, block: Display) -> bool:
+        """Say whether a displayed formula is too tall to be kept on one page."""
+        return self._maths.display(block).tall
 
     def table_number(self) -> int:
         """Return the number of the next table."""
@@ -125,6 +137,10 @@ class Page:
     def is_short(self, block: Table) -> bool:
         """Say whether a table is short enough to be kept on one page."""
         return len(block.rows) <= _SHORT_TABLE
+
+    def has_many_columns(self, block: Table) -> bool:
+        """Say whether a table has more columns than fit at the usual size."""
+        return len(block.columns) > _MANY_COLUMNS
 
     def breaks_words(self, line: Line) -> bool:
         """Say whether a cell holds a word too long to be kept whole in a narrow column."""
@@ -155,36 +171,40 @@ def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) 
     `paper` says whether the page is to be printed as a PDF.
     """
     template = templates.environment().get_template("sheet.html.j2")
-    return template.render(
+    page = template.render(
         page=Page(sheet, maths, set_piece),
         sheet=sheet,
-        cells=title_cells(sheet, paper=bool(more.get("paper"))),
+        rows=title_rows(sheet, paper=bool(more.get("paper"))),
         groups=groups(sheet.sections),
         **more,
     )
+    return _UNPRINTABLE.sub("\N{REPLACEMENT CHARACTER}", page)
 
 
 def digest(sheet: Sheet) -> str:
     """Return the SHA-256 of the topology that the sheet carries, as 64 hexadecimal digits."""
-    return hashlib.sha256(sheet.topology_text.encode("utf-8")).hexdigest()
+    return hashlib.sha256(sheet.topology_text.encode("utf-8", errors="replace")).hexdigest()
 
 
-def title_cells(sheet: Sheet, paper: bool) -> list[Cell]:
+def title_rows(sheet: Sheet, paper: bool) -> list[list[Cell]]:
     """Return the cells of the title block, row by row, each row twelve twelfths wide."""
     fields = list(sheet.fields)
     number = next((f for f in fields if f.label.casefold() in ("number", "document")), None)
-    cells = [Cell("Title", sheet.title, 9 if number else 12, "title")]
+    first = [Cell("Title", sheet.title, 9 if number else 12, "title")]
     if number:
         fields.remove(number)
-        cells.append(Cell(number.label, number.text, 3, "docno"))
+        first.append(Cell(number.label, number.text, 3, "docno"))
     short = [f for f in fields if len(f.text) <= _LONG_FIELD and "\n" not in f.text]
-    verdict = "✓ all checks passed" if sheet.passed else f"✗ {_failed(sheet)}"
-    cells += _rows([*short, Field("Status", verdict)], "status pass" if sheet.passed else "status fail")
-    cells += [Cell(f.label, f.text, 12, "long") for f in fields if f not in short]
-    cells.append(Cell("Source", sheet.topology_name, 10 if paper else 12, "digest"))
+    entries = [(field, "") for field in short]
+    if sheet.passed:
+        entries.append((Field("Status", "✓ all checks passed"), "status pass"))
+    else:
+        entries.append((Field("Status", f"✗ {_failed(sheet)}"), "status fail"))
+    last = [Cell("Source", sheet.topology_name, 10 if paper else 12, "digest")]
     if paper:
-        cells.append(Cell("Sheets", "", 2, "pages"))
-    return cells
+        last.append(Cell("Sheets", "", 2, "pages"))
+    long = [[Cell(f.label, f.text, 12, "long")] for f in fields if f not in short]
+    return [first, *_spread(entries), *long, last]
 
 
 def _failed(sheet: Sheet) -> str:
@@ -192,16 +212,14 @@ def _failed(sheet: Sheet) -> str:
     return f"{count} checks failed" if count > 1 else "a check failed"
 
 
-def _rows(fields: list[Field], last_kind: str) -> list[Cell]:
-    """Spread entries evenly over rows of up to four."""
-    rows = -(-len(fields) // 4)
-    cells: list[Cell] = []
+def _spread(entries: list[tuple[Field, str]]) -> list[list[Cell]]:
+    """Spread entries evenly over rows of up to four, the fuller rows first."""
+    rows = -(-len(entries) // 4)
+    made = []
     for row in range(rows):
-        # The fuller row first: its entries are the shorter ones, number and revision.
-        part = fields[-(-row * len(fields) // rows) : -(-(row + 1) * len(fields) // rows)]
-        cells += [Cell(f.label, f.text, 12 // len(part)) for f in part]
-    last = cells[-1]
-    return [*cells[:-1], Cell(last.label, last.text, last.span, last_kind)]
+        part = entries[-(-row * len(entries) // rows) : -(-(row + 1) * len(entries) // rows)]
+        made.append([Cell(f.label, f.text, 12 // len(part), kind) for f, kind in part])
+    return made
 
 
 def groups(sections: tuple[Section, ...]) -> list[Group]:

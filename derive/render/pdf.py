@@ -61,7 +61,7 @@ def to_pdf(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
             cache=pictures.cache,
             attachments=_attachments(weasyprint, sheet),
             pdf_variant="pdf/a-3a",
-            pdf_identifier=hashlib.sha256(page.encode("utf-8", "replace")).digest()[:16],
+            pdf_identifier=hashlib.sha256(page.encode("utf-8")).digest()[:16],
         )
     return made
 
@@ -85,21 +85,18 @@ class Pictures:
         }
 
     def markup(self, piece: Piece) -> Markup:
-        """Return the image element for one piece, its size given in em of the text around it."""
+        """Return the image element for one piece, lowered onto the line of the words around it."""
         address = self._addresses[piece.formula]
         image = self.cache[address]
         image.text = image.text or piece.text
-        size = piece.size
-        place = f";vertical-align:{-size.depth:.4f}em" if not piece.formula.display else ""
-        return Markup(
-            '<img class="{}" src="{}" alt="{}" style="width:{:.4f}em;height:{:.4f}em{}">'
-        ).format(
-            "shown" if piece.formula.display else "inline",
+        display = piece.formula.display
+        # WeasyPrint asks the image itself for its size; a style would cost more than the drawing.
+        place = "" if display else f' style="vertical-align:{-piece.size.depth:.4f}em"'
+        return Markup('<img class="{}" src="{}" alt="{}"{}>').format(
+            "shown" if display else "inline",
             address,
             piece.speech or "(continued)",
-            size.width,
-            size.height,
-            place,
+            Markup(place),
         )
 
 

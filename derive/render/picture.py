@@ -51,21 +51,24 @@ class FormulaImage:
         """Draw the formula into a box of this size, y downwards."""
         if not self.drawing.width or not self.drawing.height:
             return
-        x, y = width / self.drawing.width, height / self.drawing.height
+        used = dict.fromkeys(placed.glyph for placed in self.drawing.glyphs)
+        names = {glyph: stream.add_image(self.forms[glyph], False, 1) for glyph in used}
         with stream.stacked():
-            stream.set_color_rgb(0, 0, 0)
-            stream.set_color_rgb(0, 0, 0, stroke=True)
-            stream.transform(a=x, d=y)
-            for placed in self.drawing.glyphs:
-                with stream.stacked():
-                    stream.transform(*placed.matrix)
-                    stream.draw_x_object(stream.add_image(self.forms[placed.glyph], False, 1))
-            for rule in self.drawing.rules:
-                with stream.stacked():
-                    stream.transform(*rule.matrix)
-                    stream.set_line_width(rule.stroke)
-                    stream.stream.append(f"{rule.operators} S".encode())
+            stream.transform(a=width / self.drawing.width, d=height / self.drawing.height)
+            stream.stream.append(self._operators(names))
             if self.text:
-                stream.stream.append(
-                    self.hidden.operators(self.text, self.drawing.width, self.drawing.height)
-                )
+                text = self.hidden.operators(self.text, self.drawing.width, self.drawing.height)
+                stream.stream.append(text)
+
+    def _operators(self, names: dict[str, str]) -> bytes:
+        """Return all that is drawn, in black, as one run of operators."""
+        made = ["0 g 0 G"]
+        for placed in self.drawing.glyphs:
+            made.append(f"q {_numbers(placed.matrix)} cm /{names[placed.glyph]} Do Q")
+        for rule in self.drawing.rules:
+            made.append(f"q {_numbers(rule.matrix)} cm {rule.stroke:g} w {rule.operators} S Q")
+        return "\n".join(made).encode()
+
+
+def _numbers(matrix: tuple[float, ...]) -> str:
+    return " ".join(f"{number:.5g}" for number in matrix)

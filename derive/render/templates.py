@@ -6,7 +6,6 @@ from functools import lru_cache
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-import derive
 from derive.errors import OutputError
 
 if TYPE_CHECKING:
@@ -19,7 +18,7 @@ def folder() -> Path:
 
     Raises: OutputError when neither place has it, which means a broken installation.
     """
-    package = Path(derive.__file__).resolve().parent
+    package = Path(__file__).resolve().parents[1]
     # In a checkout the folder stands beside the package; the wheel carries it inside.
     for place in (package.parent / "report_templates", package / "report_templates"):
         if (place / "sheet.html.j2").is_file():

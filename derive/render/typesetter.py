@@ -10,6 +10,7 @@ import json
 import re
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from typing import Any
 
 from derive.errors import OutputError
 from derive.render import templates
@@ -21,14 +22,17 @@ _FULL_SIZE = """\
 #show math.equation.where(block: true): it => { show math.frac: x => math.display(x); it }
 """
 
-_PREAMBLE = """\
+_PREAMBLE = (
+    """\
 #set page(width: auto, height: auto, margin: 0pt, fill: none)
 #set text(font: "STIX Two Math", size: 10pt, top-edge: "bounds", bottom-edge: "bounds")
 #set par(leading: 0pt)
 #show math.equation: set text(font: "STIX Two Math")
 #show math.equation.where(block: true): set par(leading: .62em)
 #set math.mat(row-gap: .6em, column-gap: 1.1em)
-""" + _FULL_SIZE
+"""
+    + _FULL_SIZE
+)
 
 # A box of known height set on the same baseline tells what hangs below that baseline.
 _MEASURE = """\
@@ -110,8 +114,7 @@ def mathml(formulas: Sequence[Formula]) -> list[str]:
 
 
 def _query(document: str) -> list[list[float]]:
-    import typst
-
+    typst = _typst()
     try:
         compiler = typst.Compiler(
             document.encode(), font_paths=[str(templates.fonts())], ignore_system_fonts=True
@@ -124,8 +127,7 @@ def _query(document: str) -> list[list[float]]:
 
 
 def _compile(document: str, form: str) -> bytes | list[bytes]:
-    import typst
-
+    typst = _typst()
     try:
         made: bytes | list[bytes] = typst.compile(
             document.encode(),
@@ -136,6 +138,13 @@ def _compile(document: str, form: str) -> bytes | list[bytes]:
     except RuntimeError as problem:
         raise _refused(problem) from problem
     return made
+
+
+def _typst() -> Any:
+    """Import Typst only when a formula is to be set: a start of a tenth of a second."""
+    import typst
+
+    return typst
 
 
 def _refused(problem: object) -> OutputError:

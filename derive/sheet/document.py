@@ -27,7 +27,7 @@ class Reference:
     """The number of an equation of this sheet, as a link: "(7)"."""
 
     anchor: str
-    number: int
+    number: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,7 +68,7 @@ class Display:
 
     content: Equation | Expression | Matrix
     reason: Line = ()
-    number: int | None = None
+    number: str | None = None
     anchor: str = ""
     boxed: bool = False
 

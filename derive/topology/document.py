@@ -45,34 +45,33 @@ def load(text: str, file: str) -> Document:
 
     Raises: InputError, with the line, where the text is not TOML.
     """
+    index = index_lines(text)
+    if index.too_deep:
+        raise InputError(
+            "the file nests tables or lists too deeply",
+            where=f"{file}:{index.too_deep}",
+            cure="a topology needs three levels at most",
+        )
     try:
         data = tomllib.loads(text, parse_float=BareNumber)
     except tomllib.TOMLDecodeError as error:
-        raise _not_toml(text, file, str(error)) from error
-    except RecursionError as error:
-        raise InputError(
-            "the file nests tables or lists too deeply",
-            where=file,
-            cure="a topology needs three levels at most",
-        ) from error
+        raise _not_toml(text, file, str(error), index) from error
     except ValueError as error:
         raise InputError(
             "the file holds a number or date that cannot be read",
             where=file,
             cure='write values in quotes, such as "4k7"',
         ) from error
-    return Document(file, data, index_lines(text))
+    return Document(file, data, index)
 
 
-def _not_toml(text: str, file: str, message: str) -> InputError:
+def _not_toml(text: str, file: str, message: str, index: LineIndex) -> InputError:
     found = _POSITION.search(message)
     says = message[: found.start()] if found else message
     last = text.rstrip().count("\n") + 1
     line = int(found[1]) if found and found[1] else last
-    if any(word in says for word in _TWICE):
-        repeats = index_lines(text).repeats
-        if repeats:
-            return _twice(file, *repeats[0])
+    if index.repeats and any(word in says for word in _TWICE):
+        return _twice(file, *index.repeats[0])
     column = f", column {found[2]}" if found and found[2] else ""
     return InputError(
         f"this is not TOML: {_softened(says)}{column}", where=f"{file}:{line}", cure=_cure(says)
@@ -80,8 +79,8 @@ def _not_toml(text: str, file: str, message: str) -> InputError:
 
 
 def _twice(file: str, path: Path, first: int, second: int) -> InputError:
-    name = quoted(".".join(str(step) for step in path[-1:]))
-    table = f" in [{'.'.join(str(step) for step in path[:-1])}]" if path[:-1] else ""
+    name = quoted(str(path[-1]))
+    table = f" in {quoted('.'.join(str(step) for step in path[:-1]))}" if path[:-1] else ""
     return InputError(
         f"the name {name} is written twice{table}, first in line {first}",
         where=f"{file}:{second}",

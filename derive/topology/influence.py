@@ -30,6 +30,10 @@ class Influence:
             | {drive.name for drive in topology.drives}
             | {part.name for part in topology.parts if output_pair(part)}
         )
+        self.unbound: list[Controlled] = []
+        self.by_node: dict[str, list[Controlled]] = {}
+        self.by_part: dict[str, list[Controlled]] = {}
+        self._index()
         self.near: dict[str, list[str]] = {}
         self._join(topology)
 
@@ -39,36 +43,43 @@ class Influence:
         """Give the nodes and the sources that a change at the start nodes can move.
 
         Given: `without` names a source that is left out; with `rigid` the start nodes move together,
-        so that a pair inside them senses nothing.
+        so that a pair among them senses nothing until a source has moved.
         """
         moved = self._reach(set(start), set(start))
-        sources: set[str] = set()
-        grew = True
-        while grew:
-            grew = False
-            for source in self.sources:
-                if source.name in sources or source.name == without:
-                    continue
-                if self._senses(source, moved, start if rigid else frozenset(), sources):
-                    sources.add(source.name)
-                    ends = {node for node in source.feeds if node not in self.fixed}
-                    moved |= self._reach(ends, moved)
-                    grew = True
-        return moved, sources
+        fired: dict[str, None] = {}
+        held: list[Controlled] = []
+        waiting = [*self.unbound, *self._sensing(sorted(moved))]
+        while waiting:
+            source = waiting.pop()
+            if source.name in fired or source.name == without:
+                continue
+            if rigid and not fired and start.issuperset(source.senses_nodes or ("",)):
+                held.append(source)
+                continue
+            fired[source.name] = None
+            ends = {node for node in source.feeds if node not in self.fixed}
+            new = self._reach(ends, moved) - moved
+            moved |= new
+            waiting += [*held, *self._sensing(sorted(new)), *self.by_part.get(source.name, ())]
+            held = []
+        return moved, set(fired)
 
-    def _senses(
-        self, source: Controlled, moved: set[str], rigid: frozenset[str], sources: set[str]
-    ) -> bool:
-        if source.senses_nodes:
-            plus, minus = source.senses_nodes
-            if plus in rigid and minus in rigid:
-                return False
-            return plus in moved or minus in moved
-        sensed = source.senses_part or ""
-        if sensed in self.always_sensed or sensed in sources:
-            return True
-        part = self.parts.get(sensed)
-        return part is not None and any(node in moved for node in part.all_nodes)
+    def _sensing(self, nodes: list[str]) -> list[Controlled]:
+        return [source for node in nodes for source in self.by_node.get(node, ())]
+
+    def _index(self) -> None:
+        """File every source under the nodes, and the source, that it answers to."""
+        for source in self.sources:
+            sensed = source.senses_part
+            if sensed in self.always_sensed:
+                self.unbound.append(source)
+                continue
+            nodes = source.senses_nodes
+            if sensed is not None:
+                self.by_part.setdefault(sensed, []).append(source)
+                nodes = nodes or self.parts[sensed].all_nodes
+            for node in nodes or ():
+                self.by_node.setdefault(node, []).append(source)
 
     def _reach(self, begin: set[str], known: set[str]) -> set[str]:
         found = set(begin)

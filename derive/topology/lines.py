@@ -8,21 +8,27 @@ from __future__ import annotations
 
 import tomllib
 from bisect import bisect_right
-from contextlib import suppress
 from dataclasses import dataclass
 
 Path = tuple[str | int, ...]
 
+# The standard parser takes time that grows with the square of the depth, and stack with the depth.
+DEEPEST = 20
 _BLANK = " \t\r\n"
 _BARE_END = " \t\r\n=.]}#,"
 
 
 @dataclass(frozen=True, slots=True)
 class LineIndex:
-    """Lines by path; `repeats` holds (path, first line, second line) of names written twice."""
+    """Lines by path.
+
+    `repeats` holds (path, first line, second line) of names written twice; `too_deep` is the line
+    where tables or lists nest deeper than `DEEPEST`, 0 where none do.
+    """
 
     lines: dict[Path, int]
     repeats: tuple[tuple[Path, int, int], ...]
+    too_deep: int = 0
 
     def line(self, path: Path) -> int:
         """Give the line of the item, or of the nearest thing around it that has one."""
@@ -35,16 +41,26 @@ class LineIndex:
 def index_lines(text: str) -> LineIndex:
     """Give the line of every table, key and array item of the text.
 
-    Given: TOML text. A text that is not TOML is indexed as far as it makes sense.
+    Given: TOML text. A text that is not TOML is indexed as far as it makes sense, one that nests too
+    deeply as far as it does not.
     """
     walker = _Walker(text)
-    with suppress(_LostError, RecursionError):
+    too_deep = 0
+    try:
         walker.document()
-    return LineIndex(walker.lines, tuple(walker.repeats))
+    except _TooDeepError:
+        too_deep = walker.line()
+    except _LostError:
+        pass
+    return LineIndex(walker.lines, tuple(walker.repeats), too_deep)
 
 
 class _LostError(Exception):
     """The text makes no sense from here on."""
+
+
+class _TooDeepError(Exception):
+    """The text nests deeper than any topology does."""
 
 
 class _Walker:
@@ -139,6 +155,8 @@ class _Walker:
         while True:
             self.skip()
             keys.append(self.one_key())
+            if len(keys) > DEEPEST:
+                raise _TooDeepError
             self.skip()
             if self.peek() != ".":
                 return tuple(keys)
@@ -163,6 +181,8 @@ class _Walker:
 
     def value(self, path: Path) -> None:
         letter = self.peek()
+        if len(path) > DEEPEST:
+            raise _TooDeepError
         if letter == "":
             raise _LostError
         if letter in ('"', "'"):

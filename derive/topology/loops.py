@@ -16,9 +16,13 @@ def check_loops(topology: Topology, document: Document) -> None:
     near: dict[str, list[tuple[str, str]]] = {}
     sources = _stiff(topology)
     order = [name for name, _, _ in sources]
+    drives = {drive.name for drive in topology.drives}
+    sensed = {part.senses_part for part in topology.parts}
     for name, (first, second), path in sources:
         chain = _chain(near, first, second)
-        if chain is not None:
+        # A source whose current is sensed may settle the current around the loop.
+        loose = chain is not None and not sensed.intersection((*chain, name))
+        if chain is not None and (loose or drives.issuperset((*chain, name))):
             chain.sort(key=order.index)
             _refuse(name, chain, (first, second), kinds, document, path)
         near.setdefault(first, []).append((second, name))

@@ -22,6 +22,7 @@ from derive.topology.kinds import DEVICES, KINDS, OPAMP_PARAMETERS, Kind
 from derive.topology.models import Model, parameters
 from derive.topology.topology import Part
 
+MOST_PARTS = 2000
 _PART_CURE = f"write it as {KINDS['resistor'].example}"
 
 
@@ -38,6 +39,12 @@ def read_parts(document: Document, models: dict[str, Model]) -> tuple[Part, ...]
     parts = table(document, raw, "parts", "parts", cure="write [parts] and one part a line")
     if not parts:
         raise document.error("[parts] names no part", "parts", cure=f"write R_1 = {_example()} under it")
+    if len(parts) > MOST_PARTS:
+        raise document.error(
+            f"[parts] names {len(parts)} parts, more than {MOST_PARTS}",
+            "parts",
+            cure="describe one stage a file",
+        )
     return tuple(_part(document, name, raw, models) for name, raw in parts.items())
 
 

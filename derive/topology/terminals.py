@@ -17,17 +17,16 @@ def check_terminals(topology: Topology, document: Document) -> None:
     for node, here in found.items():
         if node == GROUND:
             continue
-        others = [name for name in found if name != node]
         wired = [mention for mention in here if mention.is_wired]
         if not wired:
             raise document.error(
                 f"{here[0].item}: node {quoted(node)} is sensed, but nothing is wired to it",
                 *here[0].path,
-                cure=did_you_mean(node, others, "wire a part or a drive to it"),
+                cure=did_you_mean(node, found, "wire a part or a drive to it"),
             )
         if len(here) == 1 and node not in wanted:
             raise document.error(
                 f"{here[0].item}: node {quoted(node)} meets one part only",
                 *here[0].path,
-                cure=did_you_mean(node, others, "wire a second part to it, or take this one out"),
+                cure=did_you_mean(node, found, "wire a second part to it, or take this one out"),
             )

@@ -86,7 +86,13 @@ TOML = (
     row("lone carriage return", '[sheet]\rtitle = "Stage"\n', "TOML", line=1),
     row("endless line", SHEET + "number = '" + "9" * 30_000 + "' #<\n", "longer than 20000"),
     row("huge file", "# " + ("x" * 98 + "\n# ") * 11_000, "larger than 1 MB", line=0),
-    row("deep lists", SHEET + "number = " + "[" * 9000, "deeply", line=0),
+    row("deep lists", SHEET + "number = " + "[" * 9000 + " #<", "deeply"),
+    row("deep keys", SHEET + "number" + ".a" * 9000 + " = 1 #<\n", "deeply"),
+    row(
+        "crowd of parts",
+        SHEET + DRIVES + "[parts] #<\n" + "".join(f"R_{n} = {{}}\n" for n in range(2001)),
+        "2001 parts",
+    ),
     row("huge integer", SHEET + "number = " + "9" * 5000, "number or date", line=0),
 )
 

@@ -10,7 +10,7 @@ import numpy as np
 from derive.check.excitation import excite
 from derive.check.points import symbol_names
 from derive.check.reading import value_exact
-from derive.check.solve import NoSolutionError, Sweep, long_double, solve_frequencies
+from derive.check.solve import NoSolutionError, Sweep, long_double, solve_exact, solve_frequencies
 from derive.check.stamp import assemble
 from derive.check.verdict import Solution, Verdict
 from derive.check.words import at_most, frequency
@@ -24,6 +24,8 @@ METHOD = (
 ORDER = 30
 POINTS = 60
 FLOOR = 1e-9
+EXACT_POINTS = 6
+ROOT_ERROR = Fraction(1, 10**25)  # a mutual inductance is a root, held to 40 digits
 NOISE = 1e-12  # smaller differences are rounding and would change from machine to machine
 Pair = tuple[Fraction, Fraction]
 Ratio = tuple[list[Fraction], list[Fraction], int]  # top, bottom, power of s
@@ -36,14 +38,25 @@ def judge(solution: Solution) -> Verdict:
     if values is None:
         return Verdict(NAME, METHOD, None, "not tried: a value is left open", "")
     omegas = [2 * math.pi * hertz for hertz in frequencies_hz(solution)]
-    numbers = {name: long_double(value) for name, value in values.items()}
-    tableau = assemble(system.small_signal, excite(system), numbers.__getitem__)
     try:
-        sweep = solve_frequencies(tableau, omegas)
-        worst, at_hz = _worst(_coefficients(solution, values), omegas, sweep)
+        printed = _coefficients(solution, values)
+        if not any(printed[0]):
+            return _judge_zero(solution, values, omegas)
+        sweep = _sweep(solution, values, omegas)
+        return _verdict(*_worst(printed, omegas, sweep))
     except (NoSolutionError, ZeroDivisionError, OverflowError) as error:
         return Verdict(NAME, METHOD, None, f"not finished: {error}", "")
-    limit = max(FLOOR, 1000 * float(sweep.moved.max()))
+
+
+def _sweep(solution: Solution, values: dict[str, Fraction], omegas: list[float]) -> Sweep:
+    system = solution.derivation.system
+    numbers = {name: long_double(value) for name, value in values.items()}
+    tableau = assemble(system.small_signal, excite(system), numbers.__getitem__)
+    return solve_frequencies(tableau, omegas)
+
+
+def _verdict(worst: float, at_hz: float, moved: float) -> Verdict:
+    limit = max(FLOOR, 1000 * moved)
     bound = f"{at_most(limit)} (or 1000 times what the last refinement still moved)"
     if not limit < 1e-3:
         return Verdict(NAME, METHOD, None, "not decided: the circuit is too ill-conditioned", bound)
@@ -54,16 +67,31 @@ def judge(solution: Solution) -> Verdict:
     return Verdict(NAME, METHOD, worst <= limit, measured, bound)
 
 
-def _worst(printed: Ratio, omegas: list[float], sweep: Sweep) -> tuple[float, float]:
-    """Give the worst relative error and its frequency in hertz."""
-    worst, at_hz = 0.0, omegas[0] / (2 * math.pi)
-    for omega, response, largest in zip(omegas, sweep.responses, sweep.largest, strict=True):
+def _judge_zero(solution: Solution, values: dict[str, Fraction], omegas: list[float]) -> Verdict:
+    """Judge a response that vanishes at these values: no error is relative to nothing, so exactly.
+
+    A ratio of polynomials that is zero for all s is zero for real s too, where the solver is exact.
+    """
+    system = solution.derivation.system
+    tableau = assemble(system.small_signal, excite(system), values.__getitem__)
+    points = [Fraction(round(omega) or 1) for omega in omegas[:: POINTS // EXACT_POINTS]]
+    worst = max(abs(solve_exact(tableau, s).response) for s in points)
+    limit = f"below {at_most(float(ROOT_ERROR))}"
+    if worst < ROOT_ERROR:
+        return Verdict(NAME, METHOD, True, "no response at these values, exactly", limit)
+    return Verdict(NAME, METHOD, False, "a response where none is printed", limit)
+
+
+def _worst(printed: Ratio, omegas: list[float], sweep: Sweep) -> tuple[float, float, float]:
+    """Give the worst relative error, its frequency in hertz, and the worst relative refinement."""
+    worst, at_hz, unsettled = 0.0, omegas[0] / (2 * math.pi), 0.0
+    for omega, response, moved in zip(omegas, sweep.responses, sweep.moved, strict=True):
         value, scale = _response(*printed, Fraction(omega))
-        # A response that vanishes at these values is judged by what else goes on in the circuit.
-        error = _relative(complex(response), value, scale or float(largest))
+        error = abs(complex(response) - value) / scale
+        unsettled = max(unsettled, float(moved) / scale)
         if not error <= worst:
             worst, at_hz = error, omega / (2 * math.pi)
-    return worst, at_hz
+    return worst, at_hz, unsettled
 
 
 def nominal_values(circuit: SmallSignal) -> dict[str, Fraction] | None:
@@ -130,10 +158,3 @@ def _at(coefficients: list[Fraction], omega: Fraction) -> Pair:
     for k, coefficient in enumerate(coefficients):
         parts[k % 2] += coefficient * omega**k * (-1 if k % 4 in (2, 3) else 1)
     return parts[0], parts[1]
-
-
-def _relative(response: complex, printed: complex, scale: float) -> float:
-    difference = abs(response - printed)
-    if scale > 0:
-        return difference / scale
-    return 0.0 if difference == 0 else math.inf

@@ -13,6 +13,7 @@ from derive.check.netlist import write_netlist
 from derive.check.points import stream, values_exact
 from derive.check.reading import value_exact
 from derive.check.verdict import Solution, Verdict
+from derive.errors import DeriveError
 
 NAME = "another engine"
 METHOD = "lcapy solves the circuit as a function of s at whole values, no two alike"
@@ -45,11 +46,11 @@ def start(solutions: Sequence[Solution], seconds: float = SECONDS) -> Begun:
     asked, questions = [], []
     for solution in solutions:
         system = solution.derivation.system
-        values = values_exact(system.small_signal, stream(solution, "other engine"))
         try:
+            values = values_exact(system.small_signal, stream(solution, "other engine"))
             netlist = write_netlist(system.small_signal, excite(system), values)
         except KeyError as error:
-            asked.append(Asked(solution, values, str(error.args[0])))
+            asked.append(Asked(solution, {}, str(error.args[0])))
             continue
         asked.append(Asked(solution, values))
         questions.append({"lines": netlist.lines, "node": netlist.response})
@@ -72,7 +73,12 @@ def _verdict(asked: Asked, answer: dict[str, Any], seconds: float) -> Verdict:
         return _undecided(f"not finished in {seconds:g} s")
     if "error" in answer:
         return _undecided(f"not finished: {answer['error']}")
-    return compare(asked.solution, asked.values, answer)
+    try:
+        return compare(asked.solution, asked.values, answer)
+    except ZeroDivisionError:
+        return _undecided("not decided: a coefficient cannot be formed at these values")
+    except DeriveError as error:
+        return Verdict(NAME, METHOD, False, f"could not be compared: {error}", LIMIT)
 
 
 def _undecided(measured: str) -> Verdict:

@@ -29,7 +29,6 @@ from derive.expressions.tree import (
     Equation,
     Expression,
     Name,
-    Number,
     Power,
     Product,
     Quotient,
@@ -469,6 +468,3 @@ def solution_of(
         steps = LOW_PASS_STEPS if name == "low-pass" else short_steps(system, result)
     derivation = Derivation(system, Plan(()), steps, system.ring.one, system.ring.one)
     return Solution(derivation, result, None if open_value else numbers_of(circuit))
-
-
-TWO = Number(Fraction(2))

@@ -1,3 +1,4 @@
+# ruff: noqa: E501 (formulas and steps are read best on one line each)
 """A sheet written by hand that holds every kind of block, and what is hard to set."""
 
 import json

@@ -30,8 +30,10 @@ def pair(rng, count):
 
 def random_part(rng, name, count, earlier):
     kind = rng.choice(
-        ("resistor", "capacitor", "inductor", "transconductance", "transconductance")
-        + ("voltage_gain", "current_gain", "transresistance", "ideal_opamp", "opamp")
+        (
+            *("resistor", "capacitor", "inductor", "transconductance", "transconductance"),
+            *("voltage_gain", "current_gain", "transresistance", "ideal_opamp", "opamp"),
+        )
     )
     sensed = None
     parameters: tuple[tuple[str, Value], ...] = ()
@@ -86,7 +88,6 @@ class Equations:
         branches += [part.name for part in topology.parts if part.kind != "coupling"]
         self.branch = {name: len(self.index) + i for i, name in enumerate(branches)}
         size = len(self.index) + len(self.branch)
-        # Two currents for an op amp: that of its output, and that of its input resistance.
         self.rows = [[0] * size for _ in range(size)]
         for drive in topology.drives:
             if drive.quantity == "voltage":
@@ -117,7 +118,6 @@ class Equations:
         if len(nodes) == 1:
             nodes = (nodes[0], "gnd")
         self.flow(part.name, nodes)
-        keys = dict(part.parameters)
         if part.kind in ("resistor", "capacitor", "inductor"):
             self.across(row, nodes, 1)
             self.rows[row][row] += self.value()
@@ -139,15 +139,18 @@ class Equations:
         elif part.kind == "ideal_opamp":
             self.across(row, wires["inputs"], 1)
         else:
-            self.across(row, nodes, 1)
-            self.across(row, wires["inputs"], self.value())
-            if "R_out" in keys:
-                self.rows[row][row] += self.value()
-            if "R_in" in keys:
-                conductance = self.value()
-                for node, sign in zip(wires["inputs"], (1, -1), strict=True):
-                    if node in self.index:
-                        self.across(self.index[node], wires["inputs"], sign * conductance)
+            self.opamp(row, nodes, wires["inputs"], dict(part.parameters))
+
+    def opamp(self, row, nodes, inputs, keys):
+        self.across(row, nodes, 1)
+        self.across(row, inputs, self.value())
+        if "R_out" in keys:
+            self.rows[row][row] += self.value()
+        if "R_in" in keys:
+            conductance = self.value()
+            for node, sign in zip(inputs, (1, -1), strict=True):
+                if node in self.index:
+                    self.across(self.index[node], inputs, sign * conductance)
 
     def has_unique_solution(self):
         rows = [[entry % PRIME for entry in row] for row in self.rows]

@@ -1,0 +1,170 @@
+"""The command line: reads arguments, runs the journey, prints, and sets the exit status.
+
+0: all well. 1: the work was done and a check failed. 2: the input could not be used, or a result could
+not be written. Results go to standard output; progress and messages to standard error.
+"""
+
+from __future__ import annotations
+
+import argparse
+import os
+import sys
+from collections.abc import Sequence
+from functools import partial
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from derive.errors import DeriveError, InputError
+from derive.version import VERSION
+
+if TYPE_CHECKING:
+    from derive.pipeline import Results
+
+WELL, FAILED, UNUSABLE = 0, 1, 2
+KINDS = ("html", "pdf", "json")
+BAND = "full"
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run one command and give the exit status."""
+    options = _parser().parse_args(arguments)
+    try:
+        return int(options.run(options))
+    except DeriveError as error:
+        print(f"nodeledger: {error}", file=sys.stderr)
+    except (RecursionError, MemoryError):
+        print("nodeledger: the circuit is too large to be worked on this machine", file=sys.stderr)
+    except BrokenPipeError:
+        # The reader of our output is gone; point the stream elsewhere so that closing it is quiet.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    except KeyboardInterrupt:
+        print("nodeledger: stopped", file=sys.stderr)
+    except Exception as error:  # noqa: BLE001 - a defect of ours must not show a user a traceback
+        print(f"nodeledger: internal error: {type(error).__name__}: {error}", file=sys.stderr)
+        print("nodeledger: this is a defect of the program, not of your file", file=sys.stderr)
+    return UNUSABLE
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(
+        prog="nodeledger", description="Exact, checked derivations of analog circuits."
+    )
+    parser.add_argument("--version", action="version", version=f"nodeledger {VERSION}")
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+    sheet = commands.add_parser("sheet", help="derive, check, and write the sheet of each topology")
+    sheet.add_argument("files", nargs="+", metavar="FILE", help="topology file")
+    sheet.add_argument(
+        "--out", default="sheets", metavar="DIR", help="folder to write to (default sheets)"
+    )
+    sheet.add_argument("--only", default=",".join(KINDS), metavar="KINDS", help="of html,pdf,json")
+    sheet.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    sheet.set_defaults(run=_sheet)
+    show = commands.add_parser("show", help="print a topology's results in the terminal")
+    show.add_argument("file", metavar="FILE", help="topology file")
+    show.add_argument("--find", metavar="NAME", help="one wanted quantity only")
+    show.add_argument("--band", metavar="BAND", help="one band only")
+    show.add_argument("--steps", action="store_true", help="the whole derivation")
+    show.add_argument("--all-checks", action="store_true", help="ask the other engine as well")
+    show.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    show.set_defaults(run=_show)
+    return parser
+
+
+def _sheet(options: argparse.Namespace) -> int:
+    # Imported here so that `show` does not pay for typesetting.
+    from derive.pipeline import derive
+    from derive.progress import Progress
+    from derive.render.files import write_sheet
+    from derive.sheet.compose import compose
+    from derive.topology.read import read
+
+    kinds = _kinds(options.only)
+    names = _names(options.files)
+    topologies = [read(file) for file in options.files]
+    rows = []
+    with Progress(len(names), 4, quiet=options.quiet) as progress:
+        sheets = []
+        for name, topology in zip(names, topologies, strict=True):
+            results = derive(topology, progress=partial(progress.tell, name))
+            sheets.append((name, results))
+        for name, results in sheets:
+            sheet = compose(results.outcome, name)
+            tell = partial(progress.tell, name)
+            files = write_sheet(sheet, Path(options.out), name, kinds, tell)
+            rows.append((name, results, files))
+    _summary(rows)
+    return WELL if all(results.passed for _, results, _ in rows) else FAILED
+
+
+def _show(options: argparse.Namespace) -> int:
+    from derive.pipeline import derive
+    from derive.progress import Progress
+    from derive.sheet.plain import plain_outcome
+    from derive.topology.read import read
+
+    topology = read(options.file)
+    if options.band not in (None, BAND):
+        raise InputError(
+            f'there is no band "{options.band}" in this topology',
+            where=options.file,
+            cure=f"its results are of the band {BAND}",
+        )
+    names = [find.name for find in topology.finds]
+    if options.find is not None and options.find not in names:
+        raise InputError(
+            f'nothing named "{options.find}" is wanted in this topology',
+            where=options.file,
+            cure=f"it has {', '.join(names)}",
+        )
+    with Progress(1, 1 + len(names), quiet=options.quiet) as progress:
+        results = derive(
+            topology,
+            other_engine=options.all_checks,
+            only=options.find,
+            progress=partial(progress.tell, topology.file),
+        )
+    sys.stdout.write(plain_outcome(results.outcome, steps=options.steps))
+    return WELL if results.passed else FAILED
+
+
+def _kinds(text: str) -> tuple[str, ...]:
+    asked = [kind.strip() for kind in text.split(",") if kind.strip()]
+    unknown = [kind for kind in asked if kind not in KINDS]
+    if unknown or not asked:
+        raise InputError(
+            f'--only: "{unknown[0] if unknown else text}" is no kind of file that is written',
+            cure="choose of html, pdf and json, with commas between",
+        )
+    return tuple(kind for kind in KINDS if kind in asked)
+
+
+def _names(files: Sequence[str]) -> tuple[str, ...]:
+    """Give each sheet's name: the file's stem, or its folder's name where the stem is `topology`."""
+    names: dict[str, str] = {}
+    for file in files:
+        path = Path(file)
+        name = path.resolve().parent.name if path.stem == "topology" else path.stem
+        if name in names:
+            raise InputError(
+                f"{names[name]} and {file} would both be written as {name}",
+                cure="rename one of the files, or make the sheets into two folders",
+            )
+        names[name] = file
+    return tuple(names)
+
+
+def _summary(rows: Sequence[tuple[str, Results, tuple[Path, ...]]]) -> None:
+    from rich.console import Console
+    from rich.table import Table
+
+    from derive.sheet.plain import summary_rows
+
+    table = Table(box=None, pad_edge=False)
+    for heading in ("Sheet", "Sought", "Gain", "Checks", "Files"):
+        table.add_column(heading, overflow="fold")
+    for name, results, files in rows:
+        kinds = ", ".join(file.name for file in files)
+        for place, cells in enumerate(summary_rows(results.outcome)):
+            table.add_row(name if place == 0 else "", *cells, kinds if place == 0 else "")
+    width = None if sys.stdout.isatty() else 120
+    Console(width=width, highlight=False).print(table)

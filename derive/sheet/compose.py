@@ -1,0 +1,88 @@
+"""Compose the sheet of an outcome from the sections found in their folder."""
+
+from __future__ import annotations
+
+import importlib
+import pkgutil
+from functools import cache
+from typing import Any
+
+from derive.check.verdict import Outcome
+from derive.sheet import sections as folder
+from derive.sheet.document import Field, Section, Sheet
+from derive.sheet.ledger import digest, ledger_text
+from derive.sheet.view import views
+
+
+@cache
+def section_modules() -> tuple[Any, ...]:
+    """Give the section modules by their ORDER.
+
+    Raises: RuntimeError where two claim one place.
+    """
+    names = sorted(module.name for module in pkgutil.iter_modules(folder.__path__))
+    modules = [importlib.import_module(f"{folder.__name__}.{name}") for name in names]
+    if len({module.ORDER for module in modules}) < len(modules):
+        raise RuntimeError("two sections of the sheet claim one place")
+    return tuple(sorted(modules, key=lambda module: module.ORDER))
+
+
+def compose(outcome: Outcome, name: str) -> Sheet:
+    """Give the sheet as data; `name` is that of its files, without ending."""
+    topology = outcome.circuit.topology
+    return Sheet(
+        title=topology.title_block.title,
+        fields=_fields(outcome),
+        passed=outcome.passed,
+        failures=_failures(outcome),
+        sections=_sections(outcome),
+        topology_name=topology.file,
+        topology_text=topology.text,
+        ledger_name=f"{name}.json",
+        ledger_text=ledger_text(outcome),
+    )
+
+
+def _sections(outcome: Outcome) -> tuple[Section, ...]:
+    modules = section_modules()
+    own = [module for module in modules if module.SCOPE == "result"]
+    first = min(module.ORDER for module in own)
+    before = [module for module in modules if module.SCOPE == "sheet" and first > module.ORDER]
+    after = [module for module in modules if module.SCOPE == "sheet" and first < module.ORDER]
+    sections: list[Section] = []
+    for module in before:
+        sections += module.compose(outcome)
+    for view in views(outcome):
+        for module in own:
+            sections += module.compose(view)
+    for module in after:
+        sections += module.compose(outcome)
+    return tuple(sections)
+
+
+def _fields(outcome: Outcome) -> tuple[Field, ...]:
+    topology = outcome.circuit.topology
+    block = topology.title_block
+    entries = (
+        ("Number", block.number),
+        ("Revision", block.revision),
+        ("Project", block.project),
+        ("Prepared", block.prepared),
+        ("Checked", block.checked),
+        ("Approved", block.approved),
+        ("Date", block.date),
+        ("Notes", block.notes),
+        ("Source", f"{topology.file}, SHA-256 {digest(topology.text)}"),
+    )
+    return tuple(Field(label, text) for label, text in entries if text)
+
+
+def _failures(outcome: Outcome) -> tuple[str, ...]:
+    names = []
+    for result in outcome.results:
+        find = result.solution.derivation.system.find.name
+        names += [f"{find}: {verdict.name}" for verdict in result.verdicts if verdict.passed is False]
+        if result.broken_steps:
+            numbers = ", ".join(str(number) for number, _ in result.broken_steps)
+            names.append(f"{find}: proof of step {numbers}")
+    return tuple(names)

@@ -1,0 +1,64 @@
+"""Numbers of a result as the sheet words them."""
+
+from __future__ import annotations
+
+import math
+from fractions import Fraction
+
+from derive.normalise.form import CertifiedRoot
+from derive.quantities.dimension import RATIO, TIME, Dimension
+from derive.quantities.format import engineering
+from derive.quantities.units import unit_of
+
+
+def figure(value: Fraction | float | None, dimension: Dimension, digits: int = 5) -> str:
+    """Word a value with its unit; "not finite" where there is none."""
+    if value is None:
+        return "not finite at these values"
+    return engineering(value, dimension, digits)
+
+
+def decibels(value: Fraction | None) -> str:
+    """Word the magnitude of a pure ratio in decibels."""
+    if value is None or value == 0:
+        return ""
+    # Logarithms of the integers, because a quotient of huge integers need not fit a float.
+    size = math.log10(abs(value.numerator)) - math.log10(value.denominator)
+    return f"{20 * size:.2f} dB".replace("-", "−")
+
+
+def root_in_hertz(root: CertifiedRoot) -> str:
+    """Word a root's distance from the origin as a frequency."""
+    return engineering(root.hertz, RATIO / TIME, 5, unit="Hz")
+
+
+def root_value(root: CertifiedRoot) -> str:
+    """Word a root in rad/s; a pair as "a ± jb"."""
+    real = engineering(root.real, RATIO / TIME, 6)
+    if root.imaginary == 0:
+        return real
+    imaginary = engineering(abs(root.imaginary), RATIO / TIME, 6)
+    if root.real == 0:
+        return f"±j {imaginary}"
+    return f"{real} ± j {imaginary}"
+
+
+def error_bound(root: CertifiedRoot) -> str:
+    """Word how far a root can be from the truth, relative to its size."""
+    if root.radius == 0 or root.magnitude == 0:
+        return "exact" if root.radius == 0 else f"{root.radius:.0e} rad/s"
+    mantissa, _, exponent = f"{root.radius / root.magnitude:.0e}".partition("e")
+    raised = str(int(exponent)).translate(str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"))
+    return f"{mantissa} · 10{raised}"
+
+
+def side(root: CertifiedRoot) -> str:
+    """Say in which half-plane a root lies."""
+    if root.real == 0:
+        return "on the imaginary axis" if root.imaginary else "at the origin"
+    return "left half-plane" if root.real < 0 else "right half-plane"
+
+
+def unit_words(dimension: Dimension) -> str:
+    """Name a dimension's unit, "pure ratio" where it has none."""
+    return unit_of(dimension) or "pure ratio"

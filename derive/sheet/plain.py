@@ -1,0 +1,135 @@
+"""An outcome as plain text, for a terminal or a notebook."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from derive.check.verdict import Outcome, Verdict
+from derive.expressions.tree import Equation
+from derive.expressions.unicode_text import to_unicode
+from derive.sheet.compose import section_modules
+from derive.sheet.document import (
+    Display,
+    Inline,
+    Line,
+    Maths,
+    Matrix,
+    Paragraph,
+    Reference,
+    Section,
+    SourceText,
+    Table,
+)
+from derive.sheet.figures import figure
+from derive.sheet.view import View, gain_dimension, views
+
+# What a terminal shows of a result, by the files of the sections; the rest with the steps.
+BRIEF = ("glance",)
+RESULT = ("values", "roots")
+STEPS = ("equations", "elimination", "normal_form", *RESULT)
+MARKS = {True: "✓", False: "✗", None: "–"}
+
+
+def plain_outcome(outcome: Outcome, *, steps: bool = False) -> str:
+    """Give title, result and checks; with `steps` the whole derivation as well."""
+    modules = {module.__name__.rpartition(".")[2]: module for module in section_modules()}
+    block = outcome.circuit.topology.title_block
+    lines = [block.title + (f"  ({block.number})" if block.number else ""), ""]
+    for name in BRIEF:
+        lines += _sections(modules[name].compose(outcome))
+    for view in views(outcome):
+        for name in STEPS if steps else RESULT:
+            lines += _sections(modules[name].compose(view))
+        lines += list(_verdicts(view))
+    return "\n".join(lines).rstrip() + "\n"
+
+
+def _sections(sections: tuple[Section, ...]) -> list[str]:
+    lines = []
+    for section in sections:
+        lines += [section.title, "-" * len(section.title)]
+        for block in section.blocks:
+            lines += list(_block(block))
+        lines.append("")
+    return lines
+
+
+def _block(block: object) -> Iterator[str]:
+    if isinstance(block, Paragraph):
+        yield line_text(block.line)
+    elif isinstance(block, Display):
+        yield from _display(block)
+    elif isinstance(block, Table):
+        yield from _table(block)
+    elif isinstance(block, SourceText):
+        yield block.text
+
+
+def _display(block: Display) -> Iterator[str]:
+    content = block.content
+    label = f"({block.number})" if block.number else ""
+    if isinstance(content, Matrix):
+        return
+    text = equation_text(content) if isinstance(content, Equation) else to_unicode(content)
+    yield f"{label:<6}{text}" if label else f"  {text}"
+    if block.reason and label:
+        yield f"      {line_text(block.reason)}"
+
+
+def _table(table: Table) -> Iterator[str]:
+    rows = [[line_text(column.heading) for column in table.columns]]
+    rows += [[line_text(cell) for cell in row] for row in table.rows]
+    widths = [max(len(row[place]) for row in rows) for place in range(len(table.columns))]
+    for row in rows:
+        cells = [
+            cell.rjust(width) if column.numeric else cell.ljust(width)
+            for cell, width, column in zip(row, widths, table.columns, strict=True)
+        ]
+        yield ("  " + "  ".join(cells)).rstrip()
+
+
+def _verdicts(view: View) -> Iterator[str]:
+    yield "Checks" if view.alone else f"Checks on {view.name}"
+    yield from (_verdict(verdict) for verdict in view.result.verdicts)
+    yield from (f"  ✗ step {number}: {why}" for number, why in view.result.broken_steps)
+    yield ""
+
+
+def _verdict(verdict: Verdict) -> str:
+    return f"  {MARKS[verdict.passed]} {verdict.name}: {verdict.measured}"
+
+
+def line_text(line: Line) -> str:
+    """Give a line of words and maths as plain text."""
+    return "".join(_inline(piece) for piece in line)
+
+
+def _inline(piece: Inline) -> str:
+    if isinstance(piece, Maths):
+        content = piece.content
+        return equation_text(content) if isinstance(content, Equation) else to_unicode(content)
+    if isinstance(piece, Reference):
+        return f"({piece.number})"
+    return piece.text
+
+
+def equation_text(equation: Equation) -> str:
+    """Give an equation as plain text."""
+    return f"{to_unicode(equation.left)} = {to_unicode(equation.right)}"
+
+
+def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
+    """Give one row a result: what was sought, its gain, and how its checks went."""
+    rows = []
+    for view in views(outcome):
+        result = view.result
+        numbers = result.solution.numbers
+        gain = "symbolic" if numbers is None else figure(numbers.gain, gain_dimension(view))
+        if result.solution.form.is_zero:
+            gain = "0"
+        failed = [verdict.name for verdict in result.verdicts if verdict.passed is False]
+        failed += [f"step {number}" for number, _ in result.broken_steps]
+        passed = sum(verdict.passed is True for verdict in result.verdicts)
+        count = f"{passed} of {len(result.verdicts)}"
+        rows.append((view.name, gain, f"FAILED: {', '.join(failed)}" if failed else f"{count} passed"))
+    return rows

@@ -1,0 +1,154 @@
+"""Result at a glance: the final equation in a box, gain, poles, zeros, and how the checks went."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from derive.check.verdict import Outcome, Result
+from derive.expressions.polynomials import add, divide, multiply
+from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Power, Sum
+from derive.expressions.walk import children_of
+from derive.normalise import normalise
+from derive.normalise.form import CertifiedRoot, NormalForm
+from derive.quantities.dimension import RATIO
+from derive.sheet.document import Block, Display, Line, Mark, Maths, Paragraph, Section, Text
+from derive.sheet.figures import decibels, figure, root_in_hertz
+from derive.sheet.view import View, gain_dimension, views
+
+ORDER = 10
+SCOPE = "sheet"
+# A final equation of up to this many terms is shown with its coefficients written out.
+EXPLICIT_TERMS = 16
+
+
+def compose(outcome: Outcome) -> tuple[Section, ...]:
+    """Give the section."""
+    blocks: list[Block] = []
+    for view in views(outcome):
+        blocks += _blocks(view)
+    return (Section("Result at a glance", tuple(blocks)),)
+
+
+def _blocks(view: View) -> list[Block]:
+    form = view.result.solution.form
+    if form.is_zero:
+        line: Line = (
+            Text("The response "),
+            Maths(Equation(Name(view.name), ZERO)),
+            Text(" is zero for all values: what is driven does not reach what is sought."),
+        )
+        return [Paragraph(line), Paragraph(_checked(view.result))]
+    display = Display(_final(view, form), _asked(view), boxed=True)
+    blocks: list[Block] = [display, *_names(view, form)]
+    blocks.append(Paragraph(_numbers(view, form)))
+    blocks.append(Paragraph(_checked(view.result)))
+    return blocks
+
+
+def _explicit(form: NormalForm) -> bool:
+    parts: Iterable[Expression] = (form.gain, *form.numerator[1:], *form.denominator[1:])
+    return sum(map(_terms, parts)) <= EXPLICIT_TERMS
+
+
+def _terms(expression: Expression) -> int:
+    inner = sum(_terms(child) for child in children_of(expression))
+    return inner if isinstance(expression, Sum) or inner > 1 else 1
+
+
+def _final(view: View, form: NormalForm) -> Equation:
+    """Write the response with its coefficients where they are short, else with their names."""
+    if not _explicit(form):
+        named = view.step(normalise.NORMAL)
+        if named is not None:
+            return named.equation
+    power = abs(form.power_of_s)
+    s: Expression = Name("s") if power == 1 else Power(Name("s"), power)
+    above, below = _polynomial(form.numerator), _polynomial(form.denominator)
+    above = multiply([s, above]) if form.power_of_s > 0 else above
+    below = multiply([s, below]) if form.power_of_s < 0 else below
+    if below == ONE:
+        return Equation(Name(view.name), multiply([form.gain, above]))
+    if form.gain == ONE:
+        return Equation(Name(view.name), divide(above, below))
+    return Equation(Name(view.name), multiply([form.gain, divide(above, below)]))
+
+
+def _polynomial(found: tuple[Expression, ...]) -> Expression:
+    terms: list[Expression] = []
+    for power, value in enumerate(found):
+        s: Expression = Name("s") if power == 1 else Power(Name("s"), power)
+        if value != ZERO:
+            terms.append(value if power == 0 else multiply([s, value]))
+    return add(terms)
+
+
+def _names(view: View, form: NormalForm) -> list[Block]:
+    """Give the equations that define the names in the box."""
+    if _explicit(form):
+        return []
+    blocks: list[Block] = []
+    for step in view.result.solution.derivation.steps:
+        if step.rule in (normalise.GAIN, normalise.COEFFICIENT):
+            reference = view.wording.reference(step.number)
+            shown = view.shown_equation(step.equation, step.number)
+            blocks.append(Display(shown, (Text("from "), reference)))
+    return blocks
+
+
+def _asked(view: View) -> Line:
+    find = view.result.solution.derivation.system.find
+    if find.quantity == "impedance" and find.nodes:
+        plus, minus = find.nodes
+        return (Text(f"Impedance seen between {plus} and {minus}, all drives at zero."),)
+    what = f"Current through {find.part}" if find.quantity == "current" else _voltage(find.nodes)
+    per = ", ".join(f"{name} × {weight}" if weight != 1 else name for name, weight in find.per)
+    return (Text(f"{what}, per {per}."),)
+
+
+def _voltage(nodes: tuple[str, str] | None) -> str:
+    plus, minus = nodes or ("", "")
+    return f"Voltage of {plus}" if minus == "gnd" else f"Voltage of {plus} against {minus}"
+
+
+def _numbers(view: View, form: NormalForm) -> Line:
+    numbers = view.result.solution.numbers
+    if numbers is None:
+        return (Text("A value was left open, so this sheet is symbolic only."),)
+    dimension = gain_dimension(view)
+    gain = figure(numbers.gain, dimension)
+    level = decibels(numbers.gain) if dimension == RATIO else ""
+    words = f" = {gain}" + (f" ({level})" if level else "")
+    name = view.step(normalise.GAIN)
+    label = Name(name.subject or "K") if name else Name("K")
+    lead: Line = (Text("At the nominal values "), Maths(label), Text(words))
+    return (*lead, Text(f"; {_roots('pole', numbers.poles)}; {_roots('zero', numbers.zeros)}."))
+
+
+def _roots(word: str, roots: tuple[CertifiedRoot, ...]) -> str:
+    shown = [_root(root) for root in roots if root.imaginary >= 0]
+    if not shown:
+        return f"no {word}s"
+    single = len(shown) == 1 and roots[0].multiplicity == 1 and roots[0].imaginary == 0
+    return f"{word if single else word + 's'} at {', '.join(shown)}"
+
+
+def _root(root: CertifiedRoot) -> str:
+    words = root_in_hertz(root)
+    if root.imaginary:
+        quality = root.quality
+        words += f" (pair, Q = {quality:.3g})" if quality else " (pair on the imaginary axis)"
+    if root.multiplicity > 1:
+        words += f" ({root.multiplicity}-fold)"
+    return words + (" (right half-plane)" if root.real > 0 else "")
+
+
+def _checked(result: Result) -> Line:
+    passed = sum(verdict.passed is True for verdict in result.verdicts)
+    failed = sum(verdict.passed is False for verdict in result.verdicts)
+    left = len(result.verdicts) - passed - failed
+    words = f"{passed} of {len(result.verdicts)} checks passed"
+    if failed:
+        words += f", {failed} failed"
+    if left:
+        words += f", {left} not finished or not asked for"
+    return (Mark(not failed and not result.broken_steps, words),)

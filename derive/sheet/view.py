@@ -1,0 +1,117 @@
+"""One result as its sections look at it."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from derive.check.verdict import Outcome, Result
+from derive.devices.elements import Coupling
+from derive.eliminate.derivation import Step
+from derive.expressions.tree import Elided, Equation, Expression, Negative, Product, Quotient, Sum
+from derive.quantities.dimension import (
+    CURRENT,
+    RESISTANCE,
+    TIME,
+    VOLTAGE,
+    Dimension,
+)
+from derive.sheet.wording import Wording
+
+# More unknowns than this, and long coefficients are shown by their leading terms.
+FULL_UNKNOWNS = 4
+TERM_LIMIT = 60
+LEADING_TERMS = 12
+
+
+@dataclass(frozen=True, slots=True)
+class View:
+    """A result, its place among the results of the sheet, and the wording of its steps."""
+
+    outcome: Outcome
+    result: Result
+    place: int
+    wording: Wording
+
+    @property
+    def name(self) -> str:
+        """The wanted quantity's name."""
+        return self.result.solution.derivation.system.find.name
+
+    @property
+    def alone(self) -> bool:
+        """Whether the sheet has no other result."""
+        return len(self.outcome.results) == 1
+
+    def heading(self, words: str) -> str:
+        """Give a section's title, with the quantity's name where there are several."""
+        return words if self.alone else f"{self.name}: {words[:1].lower()}{words[1:]}"
+
+    def step(self, rule: str) -> Step | None:
+        """Give the last step of a rule, or None."""
+        return next((s for s in reversed(self.result.solution.derivation.steps) if s.rule == rule), None)
+
+    def shown(self, content: Expression, number: int) -> Expression:
+        """Give an expression as it is shown: whole, or its leading terms and a pointer."""
+        if len(self.result.solution.derivation.system.unknowns) <= FULL_UNKNOWNS:
+            return content
+        return abridged(content, f"ledger, result {self.name}, step {number}")
+
+    def shown_equation(self, equation: Equation, number: int) -> Equation:
+        """Give an equation as it is shown."""
+        return Equation(self.shown(equation.left, number), self.shown(equation.right, number))
+
+
+def views(outcome: Outcome) -> tuple[View, ...]:
+    """Give a view of each result; equation numbers carry the result's place where there are several."""
+    several = len(outcome.results) > 1
+    return tuple(
+        View(
+            outcome,
+            result,
+            place,
+            Wording(result.solution.derivation, f"{place + 1}." if several else ""),
+        )
+        for place, result in enumerate(outcome.results)
+    )
+
+
+def abridged(expression: Expression, pointer: str) -> Expression:
+    """Replace all but the leading terms of every sum of over TERM_LIMIT terms."""
+    if isinstance(expression, Sum):
+        terms = expression.terms
+        if len(terms) > TERM_LIMIT:
+            return Sum((*terms[:LEADING_TERMS], Elided(len(terms) - LEADING_TERMS, pointer)))
+        return Sum(tuple(abridged(term, pointer) for term in terms))
+    if isinstance(expression, Product):
+        return Product(tuple(abridged(factor, pointer) for factor in expression.factors))
+    if isinstance(expression, Quotient):
+        return Quotient(
+            abridged(expression.numerator, pointer), abridged(expression.denominator, pointer)
+        )
+    if isinstance(expression, Negative):
+        return Negative(abridged(expression.operand, pointer))
+    return expression
+
+
+def gain_dimension(view: View) -> Dimension:
+    """Give the dimension of the wanted quantity per input, a power of s not counted."""
+    system = view.result.solution.derivation.system
+    if system.find.quantity == "impedance":
+        wanted = RESISTANCE
+    else:
+        above = CURRENT if system.find.quantity == "current" else VOLTAGE
+        wanted = above / _input_dimension(view)
+    return wanted * TIME**view.result.solution.form.power_of_s
+
+
+def _input_dimension(view: View) -> Dimension:
+    system = view.result.solution.derivation.system
+    kinds: Mapping[str, str] = {d.name: d.quantity for d in view.outcome.circuit.topology.drives}
+    quantity = {kinds.get(name, "voltage") for name, _ in system.weights}
+    return CURRENT if quantity == {"current"} else VOLTAGE
+
+
+def mutual_names(outcome: Outcome) -> tuple[Coupling, ...]:
+    """Give the couplings, whose mutual inductances are symbols of their own."""
+    return tuple(e for e in outcome.circuit.elements if isinstance(e, Coupling))

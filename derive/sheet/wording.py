@@ -1,0 +1,209 @@
+"""What each step says: one sentence a rule, with the equations and names that it is about."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping
+
+from derive.eliminate.derivation import Derivation, Step
+from derive.eliminate.rules import (
+    cancel,
+    clear,
+    current_law,
+    form_ratio,
+    multiply_out,
+    solve_for,
+    substitute,
+    wanted,
+    weigh,
+)
+from derive.expressions.text import to_text
+from derive.expressions.tree import Expression, Name
+from derive.normalise import normalise
+from derive.sheet.document import Inline, Line, Maths, Reference, Text
+
+Sentence = Callable[["Wording", Step], Line]
+
+
+class Wording:
+    """The sentences of one derivation; `label` turns a step's number into what the sheet prints."""
+
+    def __init__(self, derivation: Derivation, prefix: str = "") -> None:
+        self.derivation = derivation
+        self.prefix = prefix
+        system = derivation.system
+        names = [symbol.name for symbol in system.small_signal.symbols]
+        names += [drive.name for drive in system.small_signal.drives]
+        names += [unknown.name for unknown in system.unknowns]
+        self.names = frozenset([*names, system.input, system.find.name])
+
+    def label(self, number: int) -> str:
+        """Give a step's number as printed."""
+        return f"{self.prefix}{number}"
+
+    def anchor(self, number: int) -> str:
+        """Give the anchor of a step's equation."""
+        return f"{self.derivation.system.find.name}-{number}"
+
+    def reference(self, number: int) -> Reference:
+        """Refer to a step's equation."""
+        return Reference(self.anchor(number), self.label(number))
+
+    def says(self, step: Step) -> Line:
+        """Give the sentence of a step."""
+        return joined(SENTENCES[step.rule](self, step))
+
+    def with_names(self, words: str) -> Line:
+        """Set the names of symbols among words as maths."""
+        line: list[Inline] = []
+        for word in words.split(" "):
+            bare = word.rstrip(",")
+            if bare in self.names:
+                line += [Maths(Name(bare)), Text(word[len(bare) :] + " ")]
+            else:
+                line.append(Text(word + " "))
+        last = line.pop()
+        return (*line, Text(last.text.rstrip(" "))) if isinstance(last, Text) else (*line, last)
+
+
+def joined(line: Line) -> Line:
+    """Join neighbouring words into one piece, and leave out empty ones."""
+    result: list[Inline] = []
+    for piece in line:
+        if isinstance(piece, Text) and result and isinstance(result[-1], Text):
+            result[-1] = Text(result[-1].text + piece.text)
+        elif not (isinstance(piece, Text) and not piece.text):
+            result.append(piece)
+    return tuple(result)
+
+
+def plain_line(line: Line) -> str:
+    """Give a line as plain text; maths in the user's own language."""
+    return "".join(_plain(piece) for piece in line)
+
+
+def _plain(piece: Inline) -> str:
+    if isinstance(piece, Maths):
+        return to_text(piece.content)
+    if isinstance(piece, Reference):
+        return f"({piece.number})"
+    return piece.text
+
+
+def _used(wording: Wording, step: Step, place: int = 0) -> Reference:
+    certificate = step.certificate
+    return wording.reference(certificate.uses[place][0] if certificate else step.number)
+
+
+def _not_zero(expression: Expression | None) -> Line:
+    if expression is None:
+        return ()
+    return (Text(" Divisor, not zero: "), Maths(expression), Text("."))
+
+
+def _wanted(wording: Wording, step: Step) -> Line:
+    system = wording.derivation.system
+    tail = ""
+    if system.find.quantity == "impedance":
+        tail = " (a test current, all drives at zero)"
+    return (
+        Text("Sought: "),
+        Maths(Name(system.find.name)),
+        Text(", that is "),
+        Maths(Name(system.wanted)),
+        Text(" per "),
+        Maths(Name(system.input)),
+        Text(f"{tail}."),
+    )
+
+
+def _weigh(wording: Wording, step: Step) -> Line:
+    drive, common = Name(step.subject or ""), Name(wording.derivation.system.input)
+    return Text("Drive "), Maths(drive), Text(" in terms of the common input "), Maths(common), Text(".")
+
+
+def _current_law(wording: Wording, step: Step) -> Line:
+    equation = wording.derivation.system.equations[step.row or 0]
+    words = equation.meaning
+    return (*wording.with_names(words[:1].upper() + words[1:]), Text(": their sum is zero."))
+
+
+def _law(wording: Wording, step: Step) -> Line:
+    words = wording.derivation.system.equations[step.row or 0].meaning
+    return (*wording.with_names(words[:1].upper() + words[1:]), Text("."))
+
+
+def _multiply_out(wording: Wording, step: Step) -> Line:
+    used = _used(wording, step)
+    if step.factor is None:
+        return used, Text(" multiplied out and collected.")
+    return used, Text(" times "), Maths(step.factor), Text(", multiplied out and collected.")
+
+
+def _solve_for(wording: Wording, step: Step) -> Line:
+    head = (_used(wording, step), Text(" solved for "), Maths(Name(step.subject or "")), Text("."))
+    return (*head, *_not_zero(step.nonzero))
+
+
+def _substitute(wording: Wording, step: Step) -> Line:
+    solved, target = _used(wording, step, 1), _used(wording, step)
+    return solved, Text(" put into "), target, Text(" for "), Maths(Name(step.subject or "")), Text(".")
+
+
+def _clear(wording: Wording, step: Step) -> Line:
+    used = _used(wording, step)
+    head: Line = (used, Text(" multiplied out and collected"))
+    if step.factor is not None:
+        head = (used, Text(" times "), Maths(step.factor), Text(", multiplied out and collected"))
+    divisor = step.certificate.divisor if step.certificate else None
+    if divisor is not None and to_text(divisor) != "1":
+        return (*head, Text("; the common factor "), Maths(divisor), Text(" cancelled."))
+    return (*head, Text("."))
+
+
+def _cancel(wording: Wording, step: Step) -> Line:
+    if step.factor is None:
+        return _used(wording, step), Text(" divided by a common factor.")
+    return _used(wording, step), Text(" divided by its common factor "), Maths(step.factor), Text(".")
+
+
+def _form_ratio(wording: Wording, step: Step) -> Line:
+    system = wording.derivation.system
+    divided = Text(" divided by the coefficient of ")
+    head: Line = (_used(wording, step), divided, Maths(Name(system.wanted)), Text(" and by "))
+    return (*head, Maths(Name(system.input)), Text("."), *_not_zero(step.nonzero))
+
+
+def _reduce(wording: Wording, step: Step) -> Line:
+    return _used(wording, step), Text(" with the factors cancelled that top and bottom share.")
+
+
+def _gain(wording: Wording, step: Step) -> Line:
+    return (Text("The gain: the lowest coefficient of the numerator over that of the denominator."),)
+
+
+def _coefficient(wording: Wording, step: Step) -> Line:
+    name = step.subject or ""
+    which = "numerator" if name.startswith("a_") else "denominator"
+    return (Text(f"Coefficient of the {which}, divided by its lowest one."),)
+
+
+def _normal(wording: Wording, step: Step) -> Line:
+    return _used(wording, step), Text(" in normal form, with the names just given.")
+
+
+SENTENCES: Mapping[str, Sentence] = {
+    wanted.NAME: _wanted,
+    weigh.NAME: _weigh,
+    current_law.NAME: _current_law,
+    current_law.LAW: _law,
+    multiply_out.NAME: _multiply_out,
+    solve_for.NAME: _solve_for,
+    substitute.NAME: _substitute,
+    clear.NAME: _clear,
+    cancel.NAME: _cancel,
+    form_ratio.NAME: _form_ratio,
+    form_ratio.REDUCE: _reduce,
+    normalise.GAIN: _gain,
+    normalise.COEFFICIENT: _coefficient,
+    normalise.NORMAL: _normal,
+}

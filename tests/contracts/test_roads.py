@@ -1,0 +1,105 @@
+"""What every road of checking must do, whoever wrote it."""
+
+import ast
+import importlib.util
+import sys
+from dataclasses import replace
+from pathlib import Path
+
+import pytest
+
+import derive.check
+from derive.check.protocol import find_roads, refuse_duplicates
+from derive.check.verdict import Verdict
+from derive.expressions.tree import Name, Product
+
+HAND = Path(__file__).parents[1] / "unit" / "check" / "hand_solutions.py"
+
+
+def load_hand_solutions():
+    if "hand_solutions" not in sys.modules:
+        spec = importlib.util.spec_from_file_location("hand_solutions", HAND)
+        module = importlib.util.module_from_spec(spec)
+        sys.modules["hand_solutions"] = module
+        spec.loader.exec_module(module)
+    return sys.modules["hand_solutions"]
+
+
+hand = load_hand_solutions()
+ROADS = find_roads()
+
+
+class Untouchable:
+    """Stands where a road must not look: any use of it is an error."""
+
+    def __getattribute__(self, name):
+        raise AssertionError(f"a road looked at what the derivation computed: {name}")
+
+
+def sealed(solution):
+    derivation = replace(solution.derivation, numerator=Untouchable(), denominator=Untouchable())
+    system = replace(derivation.system, ring=Untouchable())
+    return replace(solution, derivation=replace(derivation, system=system))
+
+
+@pytest.fixture(params=ROADS, ids=[road.key for road in ROADS])
+def road(request):
+    return request.param
+
+
+def test_the_seven_roads_are_found():
+    assert [road.key for road in ROADS] == [
+        "identity",
+        "generic",
+        "nominal",
+        "asymptotes",
+        "dimensions",
+        "steps",
+        "other_engine",
+    ]
+
+
+def test_two_roads_of_one_name_or_place_are_refused(road):
+    others = [other for other in ROADS if other is not road]
+    with pytest.raises(ValueError, match=road.key):
+        refuse_duplicates([*others, road, replace(road, order=999)])
+    with pytest.raises(ValueError, match=road.key):
+        refuse_duplicates([*others, road, replace(road, name="another name")])
+
+
+def test_a_right_solution_passes_without_a_look_at_the_solvers_polynomials(road):
+    verdict = road.judge(sealed(hand.solution_of("emitter follower at high frequency")))
+    assert isinstance(verdict, Verdict)
+    assert (verdict.name, verdict.method) == (road.name, road.method)
+    assert verdict.passed is True
+    assert verdict.measured
+    assert verdict.limit
+
+
+def test_a_wrong_gain_fails(road):
+    right = hand.solution_of("emitter follower at high frequency")
+    form = replace(right.form, gain=Product((right.form.gain, Name("R_S"))))
+    assert road.judge(sealed(replace(right, form=form))).passed is False
+
+
+def test_a_response_of_zero_is_judged_like_any_other(road):
+    zero = hand.solution_of("node that the drive does not reach")
+    assert road.judge(sealed(zero)).passed is True
+
+
+def test_a_road_that_works_beside_the_others_can_be_begun_and_ended(road):
+    assert (road.start is None) == (road.finish is None)
+
+
+def test_no_check_uses_what_the_solution_was_made_with():
+    allowed = {"derive.nodal.system", "derive.eliminate.derivation"}
+    for path in sorted(Path(derive.check.__file__).parent.rglob("*.py")):
+        if path.name == "verdict.py":
+            continue
+        for node in ast.walk(ast.parse(path.read_text(encoding="utf-8"))):
+            modules = [node.module or ""] if isinstance(node, ast.ImportFrom) else []
+            if isinstance(node, ast.Import):
+                modules = [alias.name for alias in node.names]
+            for module in modules:
+                forbidden = ("derive.nodal", "derive.eliminate", "derive.algebra")
+                assert module in allowed or not module.startswith(forbidden), (path.name, module)
