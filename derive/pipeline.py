@@ -52,11 +52,12 @@ def derive(
     engine_seconds: float = ENGINE_SECONDS,
     only: str | None = None,
     progress: Callable[[str], None] = lambda stage: None,
+    meanwhile: Callable[[], None] = lambda: None,
 ) -> Results:
     """Derive and check what a topology asks for.
 
     Given: whether the other engine is asked as well, and for how long; `only` names one quantity;
-    `progress` is told the stages.
+    `progress` is told the stages; `meanwhile` is run while the other engine works.
 
     Raises: InputError, TooLargeError or SingularError where the circuit cannot be worked.
     """
@@ -68,6 +69,7 @@ def derive(
             solutions.append(solve(circuit, find))
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
+    meanwhile()
     verdicts = finish(begun)
     results = map(Result, solutions, verdicts)
     return Results(Outcome(circuit, tuple(results)))

@@ -23,8 +23,8 @@ else:
     LIMITS = hasattr(signal, "setitimer")
 
 
-class LateError(Exception):
-    """Raised inside a solution when its time is up."""
+class LateError(BaseException):
+    """Raised inside a solution when its time is up; no handler for mere errors may swallow it."""
 
 
 def _ring(signal_number: int, frame: Any) -> None:
@@ -40,9 +40,10 @@ def limit_memory(megabytes: int) -> None:
 
 
 def set_alarm(seconds: float) -> None:
-    """Ring after so many seconds; 0 to cancel."""
+    """Ring after so many seconds, and go on ringing; 0 to cancel."""
+    # Once is not enough: the engine has handlers that catch everything and try another way.
     if LIMITS:
-        signal.setitimer(signal.ITIMER_REAL, seconds)
+        signal.setitimer(signal.ITIMER_REAL, seconds, 0.5)
 
 
 def solve(lines: list[str], node: str) -> dict[str, Any]:
@@ -67,15 +68,18 @@ def solve(lines: list[str], node: str) -> dict[str, Any]:
 
 def answer(question: dict[str, Any], seconds: float) -> dict[str, Any]:
     """Answer one question within its time; whatever goes wrong is an answer too."""
-    set_alarm(seconds)
     try:
-        return solve(question["lines"], question["node"])
+        try:
+            set_alarm(seconds)
+            return solve(question["lines"], question["node"])
+        finally:
+            set_alarm(0)
     except LateError:
+        set_alarm(0)
         return {"late": True}
     except Exception as error:  # noqa: BLE001 - whatever went wrong over here is reported, not raised
-        return {"error": f"{type(error).__name__}: {error}".splitlines()[0]}
-    finally:
-        set_alarm(0)
+        words = f"{type(error).__name__}: {error}".splitlines()[0]
+        return {"error": words.rstrip(": ")}
 
 
 def main() -> None:

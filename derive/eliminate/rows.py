@@ -74,7 +74,9 @@ class RowBook:
         self.shown += sum(len(entry) for entry in entries)
         if self.shown > SHOWN_LIMIT:
             raise too_large(SHOWN_LIMIT)
-        plain, raised, content = _tidy(self.system.ring, entries)
+        # An equation of the circuit keeps its sign; one that was eliminated from is written so that
+        # most of its terms are positive.
+        plain, raised, content = _tidy(self.system.ring, entries, turn=done != 0)
         present = {
             self.unknowns[column]: entry
             for column, entry in zip(columns[:-1], plain, strict=False)
@@ -126,11 +128,13 @@ def input_row(
     return row
 
 
-def _tidy(ring: Ring, entries: list[Polynomial]) -> tuple[list[Polynomial], Polynomial, Polynomial]:
+def _tidy(
+    ring: Ring, entries: list[Polynomial], *, turn: bool
+) -> tuple[list[Polynomial], Polynomial, Polynomial]:
     """Write minors without reciprocals and divide them by what they share."""
     plain, raised = exchange(ring, entries)
     content = common_monomial(plain)
-    if _negative(next(entry for entry in plain if entry != 0)):
+    if turn and _negative(next(entry for entry in plain if entry != 0)):
         content = -content
     plain = [entry / content for entry in plain]
     filled = [entry for entry in plain if entry != 0]

@@ -11,7 +11,7 @@ from derive.algebra.ring import Polynomial
 from derive.eliminate.derivation import Certificate, Step
 from derive.eliminate.rows import Row
 from derive.expressions.polynomials import Writer, add, divide, multiply, writing_order
-from derive.expressions.tree import Equation, Expression, Name, Number
+from derive.expressions.tree import Equation, Expression, Name, Negative, Number
 from derive.nodal.system import NodalSystem
 from derive.quantities.dimension import (
     CAPACITANCE,
@@ -73,7 +73,7 @@ class Scribe:
     def left_of(self, row: Row, names: Sequence[str] | None = None) -> Expression:
         """Write the sum of coefficient times unknown, of all of a row's unknowns or of some."""
         chosen = row.entries if names is None else names
-        return add([self.times(row.entries[name], name) for name in chosen])
+        return add(positive_first([self.times(row.entries[name], name) for name in chosen]))
 
     def equation(self, row: Row) -> Equation:
         """Write a row as "unknowns = input"."""
@@ -87,3 +87,9 @@ class Scribe:
 def number(value: int | Fraction) -> Expression:
     """Write a number."""
     return Number(Fraction(value))
+
+
+def positive_first(terms: Sequence[Expression]) -> list[Expression]:
+    """Bring the first positive term to the front, where there is one."""
+    first = next((k for k, term in enumerate(terms) if not isinstance(term, Negative)), 0)
+    return [*terms[first : first + 1], *terms[:first], *terms[first + 1 :]]

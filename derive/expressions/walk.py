@@ -212,3 +212,9 @@ def _residue(node: Expression, lookup: Mapping[str, int], prime: int) -> int:  #
     if isinstance(node, Elided):
         raise _elided()
     raise DeriveError("a square root has no value modulo a prime")
+
+
+def term_count(expression: Expression) -> int:
+    """Give the number of terms in all sums of an expression; that of one without a sum is 1."""
+    inner = sum(term_count(child) for child in children_of(expression))
+    return inner if isinstance(expression, Sum) or inner > 1 else 1

@@ -174,7 +174,7 @@ def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) 
     page = template.render(
         page=Page(sheet, maths, set_piece),
         sheet=sheet,
-        rows=title_rows(sheet, paper=bool(more.get("paper"))),
+        rows=title_rows(sheet),
         groups=groups(sheet.sections),
         **more,
     )
@@ -186,7 +186,7 @@ def digest(sheet: Sheet) -> str:
     return hashlib.sha256(sheet.topology_text.encode("utf-8", errors="replace")).hexdigest()
 
 
-def title_rows(sheet: Sheet, paper: bool) -> list[list[Cell]]:
+def title_rows(sheet: Sheet) -> list[list[Cell]]:
     """Return the cells of the title block, row by row, each row twelve twelfths wide."""
     fields = list(sheet.fields)
     number = next((f for f in fields if f.label.casefold() in ("number", "document")), None)
@@ -200,9 +200,7 @@ def title_rows(sheet: Sheet, paper: bool) -> list[list[Cell]]:
         entries.append((Field("Status", "✓ all checks passed"), "status pass"))
     else:
         entries.append((Field("Status", f"✗ {_failed(sheet)}"), "status fail"))
-    last = [Cell("Source", sheet.topology_name, 10 if paper else 12, "digest")]
-    if paper:
-        last.append(Cell("Sheets", "", 2, "pages"))
+    last = [Cell("Source", sheet.topology_name, 12, "digest")]
     long = [[Cell(f.label, f.text, 12, "long")] for f in fields if f not in short]
     return [first, *_spread(entries), *long, last]
 

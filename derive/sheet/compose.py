@@ -10,7 +10,7 @@ from typing import Any
 from derive.check.verdict import Outcome
 from derive.sheet import sections as folder
 from derive.sheet.document import Field, Section, Sheet
-from derive.sheet.ledger import digest, ledger_text
+from derive.sheet.ledger import ledger_text
 from derive.sheet.view import views
 
 
@@ -72,7 +72,6 @@ def _fields(outcome: Outcome) -> tuple[Field, ...]:
         ("Approved", block.approved),
         ("Date", block.date),
         ("Notes", block.notes),
-        ("Source", f"{topology.file}, SHA-256 {digest(topology.text)}"),
     )
     return tuple(Field(label, text) for label, text in entries if text)
 

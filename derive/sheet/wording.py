@@ -18,9 +18,12 @@ from derive.eliminate.rules import (
 )
 from derive.expressions.text import to_text
 from derive.expressions.tree import Expression, Name
+from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.sheet.document import Inline, Line, Maths, Reference, Text
 
+# A divisor of more terms than this stands in the equation above anyway; it is not repeated.
+STATED_TERMS = 6
 Sentence = Callable[["Wording", Step], Line]
 
 
@@ -97,6 +100,8 @@ def _used(wording: Wording, step: Step, place: int = 0) -> Reference:
 def _not_zero(expression: Expression | None) -> Line:
     if expression is None:
         return ()
+    if term_count(expression) > STATED_TERMS:
+        return (Text(" The divisor is not zero."),)
     return (Text(" Divisor, not zero: "), Maths(expression), Text("."))
 
 

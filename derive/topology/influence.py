@@ -74,11 +74,11 @@ class Influence:
             if sensed in self.always_sensed:
                 self.unbound.append(source)
                 continue
-            nodes = source.senses_nodes
+            nodes: tuple[str, ...] = source.senses_nodes or ()
             if sensed is not None:
                 self.by_part.setdefault(sensed, []).append(source)
-                nodes = nodes or self.parts[sensed].all_nodes
-            for node in nodes or ():
+                nodes = self.parts[sensed].all_nodes
+            for node in nodes:
                 self.by_node.setdefault(node, []).append(source)
 
     def _reach(self, begin: set[str], known: set[str]) -> set[str]:

@@ -6,8 +6,8 @@ from collections.abc import Iterable
 
 from derive.check.verdict import Outcome, Result
 from derive.expressions.polynomials import add, divide, multiply
-from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Power, Sum
-from derive.expressions.walk import children_of
+from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Power
+from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.normalise.form import CertifiedRoot, NormalForm
 from derive.quantities.dimension import RATIO
@@ -47,12 +47,7 @@ def _blocks(view: View) -> list[Block]:
 
 def _explicit(form: NormalForm) -> bool:
     parts: Iterable[Expression] = (form.gain, *form.numerator[1:], *form.denominator[1:])
-    return sum(map(_terms, parts)) <= EXPLICIT_TERMS
-
-
-def _terms(expression: Expression) -> int:
-    inner = sum(_terms(child) for child in children_of(expression))
-    return inner if isinstance(expression, Sum) or inner > 1 else 1
+    return sum(map(term_count, parts)) <= EXPLICIT_TERMS
 
 
 def _final(view: View, form: NormalForm) -> Equation:

@@ -1,4 +1,3 @@
-
 import pytest
 from hand_solutions import CIRCUITS, form_of, solution_of, system_of
 from sympy import isprime

@@ -1,5 +1,7 @@
 """Every road passes on circuits whose responses were worked by hand."""
 
+from dataclasses import replace
+
 import pytest
 from hand_solutions import CIRCUITS, solution_of
 
@@ -12,6 +14,7 @@ from derive.check.roads import (
     nominal,
     steps,
 )
+from derive.devices.elements import CurrentDrive
 
 IN_PLACE = (identity, generic, nominal, asymptotes, dimensions, steps)
 
@@ -61,6 +64,23 @@ def test_the_bound_on_a_false_pass_is_stated_with_its_degree():
     limit = identity.judge(solution_of("low-pass")).limit
     # 1/(1 + s·R·C) against a 7-row tableau: small degrees over 2⁶⁰, some 9·10⁻¹⁹ each.
     assert limit == "a wrong result passes a point with a chance of 6·10⁻¹⁸ at most (degree 6 or less)"
+
+
+def test_drives_of_two_kinds_have_no_common_dimension_to_judge():
+    solution = solution_of("difference of two drives")
+    system = solution.derivation.system
+    first, second = system.small_signal.drives
+    drives = (first, CurrentDrive(second.name, second.nodes))
+    circuit = replace(system.small_signal, drives=drives)
+    derivation = replace(solution.derivation, system=replace(system, small_signal=circuit))
+    verdict = dimensions.judge(replace(solution, derivation=derivation))
+    assert verdict.passed is None
+    assert verdict.measured == "not tried: the drives are of two kinds"
+
+
+def test_a_response_that_vanishes_at_nominal_values_is_judged_exactly():
+    bridge = "balanced bridge, whose output vanishes at its nominal values only"
+    assert nominal.judge(solution_of(bridge)).measured == "no response at these values, exactly"
 
 
 def test_an_open_value_leaves_the_nominal_check_untried_and_the_others_at_work():

@@ -68,6 +68,12 @@ def test_a_process_that_does_not_answer_is_ended(monkeypatch, tmp_path):
     assert child.process.returncode is not None
 
 
+def test_a_late_question_does_not_take_the_next_one_with_it():
+    child = ask([{"lines": ["R1 1 0 {1}"], "node": "1"}] * 2, 0.02)
+    assert answers_of(child) == [{"late": True}, {"late": True}]
+    assert child.process.returncode == 0
+
+
 def test_a_process_that_breaks_is_reported_in_words(monkeypatch, tmp_path):
     script = tmp_path / "breaker.py"
     script.write_text("raise SystemExit(3)\n")
