@@ -7,7 +7,8 @@ from dataclasses import dataclass
 from typing import Any
 
 from derive.check.judge import finish, start
-from derive.check.verdict import Outcome, Result, Solution
+from derive.check.roads import steps
+from derive.check.verdict import Outcome, Result, Solution, Verdict
 from derive.devices.elements import SmallSignal
 from derive.devices.linearise import linearise
 from derive.eliminate.eliminate import eliminate
@@ -71,8 +72,19 @@ def derive(
     progress("checking")
     meanwhile()
     verdicts = finish(begun)
-    results = map(Result, solutions, verdicts)
+    results = map(_result, solutions, verdicts)
     return Results(Outcome(circuit, tuple(results)))
+
+
+def _result(solution: Solution, verdicts: tuple[Verdict, ...]) -> Result:
+    """Keep the verdicts, and name the broken steps where the replay of the steps failed."""
+    if all(verdict.passed is not False for verdict in verdicts if verdict.name == steps.NAME):
+        return Result(solution, verdicts)
+    try:
+        return Result(solution, verdicts, steps.broken_steps(solution))
+    except ValueError:
+        # The fault is in no single step; the verdict says what it is.
+        return Result(solution, verdicts)
 
 
 def solve(circuit: SmallSignal, find: Find) -> Solution:

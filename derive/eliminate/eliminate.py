@@ -84,13 +84,13 @@ def _eliminate_one(
     """Substitute, clear the fraction and cancel, in one row."""
     unknown = book.unknowns[stage]
     after = book.row(index, target.row.done | pivot.row.done | 1 << stage)
-    divisor = book.divisor(pivot.row, target.row, after, stage)
+    divisor, extra = book.divisor(pivot.row, target.row, after, stage)
     source = substitute.apply(scribe, target.number, target.row, solved, unknown)
     pivot_entry = pivot.row.entries[unknown]
     if pivot_entry in (1, -1):
         # The solution has no fraction, so there is nothing to clear: the terms are only collected.
         divisor, pivot_entry = divisor * pivot_entry, book.system.ring.one
-    factor = scribe.polynomial(pivot_entry)
+    factor = scribe.polynomial(pivot_entry * extra)
     shared = scribe.polynomial(divisor)
     if divisor == 1 or after.size * len(divisor) > UNCANCELLED_LIMIT:
         return Numbered(clear.apply(scribe, source, scribe.equation(after), factor, shared), after)

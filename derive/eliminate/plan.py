@@ -25,6 +25,8 @@ def plan(system: NodalSystem) -> Plan:
     Raises: SingularError naming the unknowns that the equations leave open.
     """
     names = [unknown.name for unknown in system.unknowns]
+    if len(system.equations) != len(names):
+        raise _contradictory(system)
     wanted = names.index(system.wanted)
     values, sizes = _at_random_point(system, names)
     left = set(range(len(values)))
@@ -40,8 +42,8 @@ def plan(system: NodalSystem) -> Plan:
         into = tuple(row for row in sorted(left) if unknown in values[row])
         terms = sum(_eliminate(values, sizes, equation, row, unknown) for row in into)
         lines.append(PlanLine(names[unknown], equation, into, terms))
-    (last,) = left or {-1}
-    if last < 0 or wanted not in values[last]:
+    (last,) = left
+    if wanted not in values[last]:
         raise _singular(system, [wanted])
     lines.append(PlanLine(system.wanted, last, (), sum(sizes[last].values())))
     return Plan(tuple(lines))
@@ -101,4 +103,13 @@ def _singular(system: NodalSystem, unknowns: Sequence[int]) -> SingularError:
         where=str(system.find.place),
         cure="look for a controlled source or op amp whose loop gain is exactly one, "
         "or whose output its inputs cannot see",
+    )
+
+
+def _contradictory(system: NodalSystem) -> SingularError:
+    return SingularError(
+        f"the circuit has no unique solution for {system.find.name}: voltage sources, controlled sources "
+        "or op amps tie the same nodes in two ways",
+        where=str(system.find.place),
+        cure="take one source out of the loop, or put a resistance into it",
     )

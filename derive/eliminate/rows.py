@@ -12,6 +12,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import reduce
 
+from derive.algebra.common_factor import remove_common_factor
 from derive.algebra.exchange import exchange
 from derive.algebra.minors import Minors, too_large
 from derive.algebra.ring import Polynomial, Ring, common_monomial
@@ -88,11 +89,14 @@ class RowBook:
         """Give the minor over the pivots of some stages."""
         return self.minors.minor(done, done)
 
-    def divisor(self, pivot: Row, row: Row, after: Row, stage: int) -> Polynomial:
+    def divisor(self, pivot: Row, row: Row, after: Row, stage: int) -> tuple[Polynomial, Polynomial]:
         """Give the factor that pivot·row − entry·pivot row has beyond the row that comes after.
 
-        With reduced rows r = minors/principal minor, elimination is r_i − (r_ip/r_pp)·r_p; what
-        remains when both sides are written with minors is a product of principal minors.
+        It is a ratio, without common factor: the second polynomial is 1 but where rows were too long for
+        all that they share to be cancelled.
+
+        With reduced rows r = minors/principal minor, elimination is r_i − (r_ip/r_pp)·r_p; what remains
+        when both sides are written with minors is a product of principal minors.
         """
         ring = self.system.ring
         with_pivot = pivot.done | 1 << stage
@@ -104,7 +108,7 @@ class RowBook:
         (top, bottom), _ = exchange(ring, [above, below])
         top = top * pivot.raised * row.raised * after.content
         bottom = bottom * pivot.content * row.content * after.raised
-        return top / bottom
+        return remove_common_factor(top, bottom)
 
 
 def input_row(
@@ -138,7 +142,10 @@ def _tidy(
         content = -content
     plain = [entry / content for entry in plain]
     filled = [entry for entry in plain if entry != 0]
-    if len(filled) > 1 and all(len(e) > 1 for e in filled) and sum(map(len, filled)) < FACTOR_LIMIT:
+    if len(filled) == 1:
+        # An unknown that is zero: its coefficient, which is not zero, is all that there is to divide by.
+        return [ring.one if entry != 0 else entry for entry in plain], raised, content * filled[0]
+    if all(len(e) > 1 for e in filled) and sum(map(len, filled)) < FACTOR_LIMIT:
         shared = reduce(lambda a, b: a.gcd(b), filled)
         if len(shared) > 1:
             return [entry / shared for entry in plain], raised, content * shared

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from derive.algebra.ring import Ring
 from derive.devices.elements import VoltageDrive
+from derive.errors import SingularError
 from derive.expressions.polynomials import add, subtract
 from derive.expressions.tree import ZERO, Expression, Name, Negative, Sum
 from derive.nodal.linear_form import LinearForm, combine
@@ -58,7 +59,18 @@ class Voltages:
 
 
 def tie_nodes(nodes: Sequence[str], drives: Sequence[VoltageDrive]) -> dict[str, Tie]:
-    """Express each node by the first node of its group of drive-tied nodes; ground before all."""
+    """Express each node by the first node of its group of drive-tied nodes; ground before all.
+
+    Raises: SingularError where drives form a loop, so that they could contradict each other.
+    """
+    for count, drive in enumerate(drives):
+        joined = groups(nodes, [earlier.nodes for earlier in drives[:count]])
+        if joined(drive.nodes[0]) == joined(drive.nodes[1]):
+            raise SingularError(
+                f"drive {drive.name} closes a loop of voltage drives between nodes "
+                f"{drive.nodes[0]} and {drive.nodes[1]}",
+                cure="take one of them out of the loop, or put its source resistance into it",
+            )
     neighbours: dict[str, list[tuple[str, str, int]]] = {node: [] for node in (GROUND, *nodes)}
     for drive in drives:
         plus, minus = drive.nodes

@@ -21,6 +21,7 @@ BOX_EM = 1.8
 REASON_EM = 13.6
 PARAGRAPH_EM = 48.0
 TABLE_EM = 52.0
+NARROW_TABLE_EM = 25.0  # of one or two columns
 PADDING_EM = 1.2  # of a cell, left and right
 LETTER_EM = 0.52  # of words, on average, with room to spare
 WORDS_EM = 9.0  # the most that a column of words takes from those of formulas
@@ -179,7 +180,8 @@ def cell_em(table: Table) -> float:
         else:
             taken += min(longest * LETTER_EM, WORDS_EM) + PADDING_EM
     # Rounded, so that tables of one shape share their formulas.
-    return float(max(4, int((TABLE_EM - taken) / max(sharing, 1) - PADDING_EM)))
+    room = TABLE_EM if len(table.columns) > 2 else NARROW_TABLE_EM
+    return float(max(4, int((room - taken) / max(sharing, 1) - PADDING_EM)))
 
 
 def _gather(

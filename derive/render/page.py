@@ -46,6 +46,7 @@ _KINDS: dict[type, str] = {
 }
 _LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
 _SHORT_TABLE = 10  # rows
+_FEW_COLUMNS = 2  # spread over the whole page, the eye would lose the row
 _MANY_COLUMNS = 8
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
 
@@ -138,9 +139,10 @@ class Page:
         """Say whether a table is short enough to be kept on one page."""
         return len(block.rows) <= _SHORT_TABLE
 
-    def has_many_columns(self, block: Table) -> bool:
-        """Say whether a table has more columns than fit at the usual size."""
-        return len(block.columns) > _MANY_COLUMNS
+    def breadth(self, block: Table) -> str:
+        """Return the class of a table that has fewer or more columns than the page's width suits."""
+        columns = len(block.columns)
+        return " many" if columns > _MANY_COLUMNS else " few" if columns <= _FEW_COLUMNS else ""
 
     def breaks_words(self, line: Line) -> bool:
         """Say whether a cell holds a word too long to be kept whole in a narrow column."""

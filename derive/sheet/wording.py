@@ -17,7 +17,7 @@ from derive.eliminate.rules import (
     weigh,
 )
 from derive.expressions.text import to_text
-from derive.expressions.tree import Expression, Name
+from derive.expressions.tree import ONE, Expression, Name
 from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.sheet.document import Inline, Line, Maths, Reference, Text
@@ -139,9 +139,24 @@ def _law(wording: Wording, step: Step) -> Line:
 
 def _multiply_out(wording: Wording, step: Step) -> Line:
     used = _used(wording, step)
-    if step.factor is None:
-        return used, Text(" multiplied out and collected.")
-    return used, Text(" times "), Maths(step.factor), Text(", multiplied out and collected.")
+    return (used, *_times(step.factor, "a factor"), Text(" multiplied out and collected."))
+
+
+def _times(factor: Expression | None, otherwise: str) -> Line:
+    """Say by what was multiplied; a long factor is not repeated."""
+    if factor is None:
+        return ()
+    if term_count(factor) > STATED_TERMS:
+        return (Text(f" times {otherwise},"),)
+    return Text(" times "), Maths(factor), Text(",")
+
+
+def _factor(factor: Expression) -> Line:
+    """Name a common factor; one too long for a sentence by its number of terms."""
+    count = term_count(factor)
+    if count > 2 * STATED_TERMS:
+        return (Text(f"common factor, which has {count} terms and stands in the step's proof"),)
+    return Text("common factor "), Maths(factor)
 
 
 def _solve_for(wording: Wording, step: Step) -> Line:
@@ -155,20 +170,21 @@ def _substitute(wording: Wording, step: Step) -> Line:
 
 
 def _clear(wording: Wording, step: Step) -> Line:
-    used = _used(wording, step)
-    head: Line = (used, Text(" multiplied out and collected"))
-    if step.factor is not None:
-        head = (used, Text(" times "), Maths(step.factor), Text(", multiplied out and collected"))
-    divisor = step.certificate.divisor if step.certificate else None
-    if divisor is not None and to_text(divisor) != "1":
-        return (*head, Text("; the common factor "), Maths(divisor), Text(" cancelled."))
-    return (*head, Text("."))
+    head = (_used(wording, step), *_times(step.factor, "its denominator"))
+    head = (*head, Text(" multiplied out and collected"))
+    divisor = step.certificate.divisor if step.certificate else ONE
+    if divisor == ONE:
+        return (*head, Text("."))
+    return (*head, Text("; the "), *_factor(divisor), Text(" cancelled."))
 
 
 def _cancel(wording: Wording, step: Step) -> Line:
-    if step.factor is None:
-        return _used(wording, step), Text(" divided by a common factor.")
-    return _used(wording, step), Text(" divided by its common factor "), Maths(step.factor), Text(".")
+    return (
+        _used(wording, step),
+        Text(" divided by its "),
+        *_factor(ONE if step.factor is None else step.factor),
+        Text("."),
+    )
 
 
 def _form_ratio(wording: Wording, step: Step) -> Line:

@@ -88,7 +88,7 @@ def _worst(printed: Ratio, omegas: list[float], sweep: Sweep) -> tuple[float, fl
     for omega, response, moved in zip(omegas, sweep.responses, sweep.moved, strict=True):
         value, scale = _response(*printed, Fraction(omega))
         error = abs(complex(response) - value) / scale
-        unsettled = max(unsettled, float(moved) / scale)
+        unsettled = max(unsettled, float(moved) / max(scale, abs(complex(response))))
         if not error <= worst:
             worst, at_hz = error, omega / (2 * math.pi)
     return worst, at_hz, unsettled

@@ -36,26 +36,37 @@ class Point:
 
 
 class StepError(ValueError):
-    """Raised for the first step that does not hold."""
+    """Raised for a step that does not hold, or a derivation that does not give the result."""
 
 
 def judge(solution: Solution) -> Verdict:
     """Judge whether every step follows and is true, and whether the last ones give the result."""
+    try:
+        broken = broken_steps(solution)
+    except StepError as error:
+        return Verdict(NAME, METHOD, False, str(error), LIMIT)
+    total = len(solution.derivation.steps)
+    if broken:
+        number, why = broken[0]
+        more = f" (and {count(len(broken) - 1, 'further step')})" if len(broken) > 1 else ""
+        return Verdict(NAME, METHOD, False, f"step {number}: {why}{more}", LIMIT)
+    return Verdict(NAME, METHOD, True, f"{count(total, 'step')} of {total}", LIMIT)
+
+
+def broken_steps(solution: Solution) -> tuple[tuple[int, str], ...]:
+    """Give the steps that do not hold, by their numbers, each with what is wrong.
+
+    Raises: StepError where the fault is in no single step.
+    """
     numbers = stream(solution, "steps")
     prime = numbers.prime()
     why = ""
     for _ in range(TRIES):
         try:
-            point = _draw(solution, numbers, prime)
-            _replay(solution, point)
-        except StepError as error:
-            return Verdict(NAME, METHOD, False, str(error), LIMIT)
+            return _replay(solution, _draw(solution, numbers, prime))
         except (NoSolutionError, ZeroDivisionError) as error:
             why = str(error)
-            continue
-        steps = solution.derivation.steps
-        return Verdict(NAME, METHOD, True, f"{count(len(steps), 'step')} of {len(steps)}", LIMIT)
-    return Verdict(NAME, METHOD, False, f"no point could be worked: {why}", LIMIT)
+    raise StepError(f"no point could be worked: {why}")
 
 
 def _draw(solution: Solution, numbers: Stream, prime: int) -> Point:
@@ -72,10 +83,11 @@ def _draw(solution: Solution, numbers: Stream, prime: int) -> Point:
     return Point(free, settled, prime)
 
 
-def _replay(solution: Solution, point: Point) -> None:
+def _replay(solution: Solution, point: Point) -> tuple[tuple[int, str], ...]:
     system, form = solution.derivation.system, solution.form
     stated = {system.find.name, *(drive.name for drive in system.small_signal.drives)}
     done: dict[int, Step] = {}
+    broken: list[tuple[int, str]] = []
     reached = False
     for step in solution.derivation.steps:
         try:
@@ -88,10 +100,11 @@ def _replay(solution: Solution, point: Point) -> None:
             if step.equation.left == Name(system.find.name) and step.defines is None:
                 reached = _gives_form(step, form, point)
         except (StepError, DeriveError) as error:
-            raise StepError(f"step {step.number}: {error}") from None
+            broken.append((step.number, str(error)))
         done[step.number] = step
-    if not reached:
+    if not reached and not broken:
         raise StepError(f"no step gives the result for {system.find.name}")
+    return tuple(broken)
 
 
 def _define(step: Step, point: Point, stated: set[str]) -> None:

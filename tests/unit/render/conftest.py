@@ -177,13 +177,13 @@ def words(*parts: str | Expression | Equation | Reference | Mark) -> tuple[objec
 
 
 def ref(number: int) -> Reference:
-    return Reference(f"eq {number}", number)
+    return Reference(f"eq {number}", str(number))
 
 
 def step(
     number: int, content: Equation | Expression | Matrix, *reason: object, boxed: bool = False
 ) -> Display:
-    return Display(content, words(*reason), number, f"eq {number}", boxed)
+    return Display(content, words(*reason), str(number), f"eq {number}", boxed)
 
 
 def elements_table() -> Table:

@@ -163,3 +163,9 @@ def test_a_sheet_without_any_formula_is_a_page_too(sheet):
 def test_every_font_that_the_style_names_is_inside(page):
     assert page.count("data:font/woff2;base64,") == 5
     assert len(page) < 1_000_000
+
+
+def test_what_no_page_may_hold_is_shown_as_unknown(sheet):
+    page = to_html(replace(sheet, title="bell \x07 and half \ud800 a pair")).decode("utf-8")
+    assert "bell \N{REPLACEMENT CHARACTER} and half \N{REPLACEMENT CHARACTER} a pair" in page
+    assert "\x07" not in page

@@ -72,9 +72,10 @@ def decoded(data, mapping):
     return "".join(mapping.get(code, "") for code in codes)
 
 
-def test_the_pages_are_a4_and_as_many_as_the_title_block_says(opened):
+def test_the_pages_are_a4_and_numbered(opened):
     assert len(opened.pages) == 4
-    for page in opened.pages:
+    for number, page in enumerate(opened.pages, start=1):
+        assert f"page {number} of 4" in page_text(page)
         width, height = (float(v) / 72 * 25.4 for v in page.MediaBox[2:])
         assert (round(width), round(height)) == (210, 297)
 
