@@ -28,6 +28,10 @@ def remove_common_content(
     """Divide both by their common monomial, and by their common factor in one generator alone."""
     numerator, denominator = remove_common_monomial(numerator, denominator)
     index = ring.names.index(name)
+    # What divides a polynomial divides the coefficient of every monomial in the other generators.
+    hint = _leading_content(numerator, index).gcd(_leading_content(denominator, index))
+    if hint.degree() < 1:
+        return numerator, denominator
     shared = _content(numerator, index).gcd(_content(denominator, index))
     if shared.degree() < 1:
         return numerator, denominator
@@ -38,11 +42,48 @@ def remove_common_content(
 def remove_common_factor(numerator: Polynomial, denominator: Polynomial) -> tuple[Polynomial, Polynomial]:
     """Divide both by their greatest common divisor; the denominator's lead becomes positive."""
     numerator, denominator = remove_common_monomial(numerator, denominator)
-    if len(numerator) > 1 and len(denominator) > 1:
-        common = numerator.gcd(denominator)
-        if common != 1:
+    return remove_bounded_factor(numerator, denominator, *bounds(numerator, denominator))
+
+
+def remove_bounded_factor(
+    numerator: Polynomial, denominator: Polynomial, one: Polynomial, other: Polynomial
+) -> tuple[Polynomial, Polynomial]:
+    """Divide both by their greatest common divisor, which must divide `one` and `other` too."""
+    if len(one) > 1 and len(other) > 1:
+        common = one.gcd(other)
+        if len(common) > 1:
+            common = common.gcd(numerator).gcd(denominator)
             return remove_common_monomial(numerator / common, denominator / common)
     return numerator, denominator
+
+
+def bounds(one: Polynomial, other: Polynomial) -> tuple[Polynomial, Polynomial]:
+    """Give two shorter polynomials that every common divisor of the two divides.
+
+    A common divisor is free of a generator that only one of them has, and so divides the coefficient of
+    that generator's highest power. Only generators to the first power are used: there the coefficient is
+    the derivative.
+    """
+    while True:
+        degrees = list(zip(one.degrees(), other.degrees(), strict=True))
+        own = next((index for index, pair in enumerate(degrees) if pair == (1, 0)), None)
+        theirs = next((index for index, pair in enumerate(degrees) if pair == (0, 1)), None)
+        if own is None and theirs is None:
+            return one, other
+        one = one if own is None else one.derivative(own)
+        other = other if theirs is None else other.derivative(theirs)
+
+
+def _leading_content(polynomial: Polynomial, index: int) -> Any:
+    """Give the coefficient of the leading monomial in the other generators, as a polynomial in one."""
+    exponents = list(polynomial.monomial(0))
+    powers = []
+    for power in range(polynomial.degrees()[index] + 1):
+        exponents[index] = power
+        powers.append(int(polynomial[tuple(exponents)]))
+    # Without its power of the generator: monomials in common have been removed already.
+    lowest = next(power for power, value in enumerate(powers) if value)
+    return fmpz_poly(powers[lowest:])
 
 
 def _content(polynomial: Polynomial, index: int) -> Any:

@@ -7,7 +7,7 @@ are coprime are coprime. The other way round proves nothing: then a real greates
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Sequence
 
 from flint import nmod_poly
 
@@ -15,42 +15,24 @@ from derive.algebra import modular
 from derive.algebra.modular import PRIME
 from derive.algebra.ring import Polynomial, Ring
 
-Line = Callable[[int], list[int]]
-
-
-def line(ring: Ring, seed: str) -> Line:
-    """Give a random line through the space of the ring's generators, as points by whole parameter."""
-    # Small numbers, because FLINT evaluates over the integers before they are reduced.
-    base = [value % 65_521 + 1 for value in modular.residues(len(ring.names) or 1, seed + " base")]
-    slope = [value % 251 + 1 for value in modular.residues(len(ring.names) or 1, seed + " slope")]
-    return lambda step: [start + step * rise for start, rise in zip(base, slope, strict=True)]
-
 
 def coprime(ring: Ring, one: Polynomial, other: Polynomial) -> bool:
     """Whether two polynomials certainly share no factor (but for a number)."""
     degree = max(one.total_degree(), other.total_degree())
-    points = line(ring, "coprime")
-    values = [(one(*points(step)), other(*points(step))) for step in range(degree + 1)]
-    return _shared_degree([int(a) for a, _ in values], [int(b) for _, b in values]) == 0
+    values = [(one(*point), other(*point)) for point in _line(ring, degree + 1)]
+    first, second = ([int(value) for value in column] for column in zip(*values, strict=True))
+    return bool(_interpolate(first).gcd(_interpolate(second)).degree() == 0)
 
 
-def cramer_shared_degree(ring: Ring, rows: Sequence[Mapping[int, Polynomial]], degree: int) -> int:
-    """Give the degree, on a random line, of what Cramer's two determinants for the last unknown share.
-
-    `degree` is the greater of their total degrees.
-    """
-    size = len(rows)
-    points = line(ring, "cramer")
-    above, below = [], []
-    for step in range(degree + 1):
-        dense = modular.evaluate_rows(rows, size + 1, points(step))
-        below.append(int(modular.matrix([row[:size] for row in dense]).det()))
-        above.append(int(modular.matrix([[*row[: size - 1], row[size]] for row in dense]).det()))
-    return _shared_degree(above, below)
-
-
-def _shared_degree(one: Sequence[int], other: Sequence[int]) -> int:
-    return int(_interpolate(one).gcd(_interpolate(other)).degree())
+def _line(ring: Ring, count: int) -> list[list[int]]:
+    """Give the first points, at whole parameters, of a random line through the generators' space."""
+    # Small numbers, because FLINT evaluates over the integers before they are reduced.
+    width = len(ring.names) or 1
+    base = [value % 65_521 + 1 for value in modular.residues(width, "coprime base")]
+    slope = [value % 251 + 1 for value in modular.residues(width, "coprime slope")]
+    return [
+        [start + step * rise for start, rise in zip(base, slope, strict=True)] for step in range(count)
+    ]
 
 
 def _interpolate(values: Sequence[int]) -> nmod_poly:

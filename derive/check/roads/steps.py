@@ -48,8 +48,7 @@ def judge(solution: Solution) -> Verdict:
     total = len(solution.derivation.steps)
     if broken:
         number, why = broken[0]
-        more = f" (and {count(len(broken) - 1, 'further step')})" if len(broken) > 1 else ""
-        return Verdict(NAME, METHOD, False, f"step {number}: {why}{more}", LIMIT)
+        return Verdict(NAME, METHOD, False, f"step {number}: {why}", LIMIT)
     return Verdict(NAME, METHOD, True, f"{count(total, 'step')} of {total}", LIMIT)
 
 
