@@ -7,6 +7,7 @@ not be written. Results go to standard output; progress and messages to standard
 from __future__ import annotations
 
 import argparse
+import io
 import os
 import sys
 from collections.abc import Sequence
@@ -18,7 +19,7 @@ from derive.errors import DeriveError, InputError
 from derive.version import VERSION
 
 if TYPE_CHECKING:
-    from derive.pipeline import Results
+    from derive.batch import Made
 
 WELL, FAILED, UNUSABLE = 0, 1, 2
 KINDS = ("html", "pdf", "json")
@@ -28,6 +29,7 @@ BAND = "full"
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command and give the exit status."""
     options = _parser().parse_args(arguments)
+    _never_stumble_over_letters()
     try:
         return int(options.run(options))
     except DeriveError as error:
@@ -43,6 +45,12 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print(f"nodeledger: internal error: {type(error).__name__}: {error}", file=sys.stderr)
         print("nodeledger: this is a defect of the program, not of your file", file=sys.stderr)
     return UNUSABLE
+
+
+def _never_stumble_over_letters() -> None:
+    """Let a terminal that lacks our letters show question marks in their place."""
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        sys.stdout.reconfigure(errors="replace")
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -72,28 +80,14 @@ def _parser() -> argparse.ArgumentParser:
 
 def _sheet(options: argparse.Namespace) -> int:
     # Imported here so that `show` does not pay for typesetting.
-    from derive.pipeline import derive
+    from derive.batch import make_sheets
     from derive.progress import Progress
-    from derive.render.files import write_sheet
-    from derive.sheet.compose import compose
-    from derive.topology.read import read
 
     kinds = _kinds(options.only)
-    names = _names(options.files)
-    topologies = [read(file) for file in options.files]
-    rows = []
-    with Progress(len(names), 4, quiet=options.quiet) as progress:
-        sheets = []
-        for name, topology in zip(names, topologies, strict=True):
-            results = derive(topology, progress=partial(progress.tell, name))
-            sheets.append((name, results))
-        for name, results in sheets:
-            sheet = compose(results.outcome, name)
-            tell = partial(progress.tell, name)
-            files = write_sheet(sheet, Path(options.out), name, kinds, tell)
-            rows.append((name, results, files))
-    _summary(rows)
-    return WELL if all(results.passed for _, results, _ in rows) else FAILED
+    with Progress(len(options.files), 2 + len(kinds), quiet=options.quiet) as progress:
+        made = make_sheets(options.files, Path(options.out), kinds, progress.tell)
+    _summary(made)
+    return WELL if all(sheet.results.passed for sheet in made) else FAILED
 
 
 def _show(options: argparse.Namespace) -> int:
@@ -138,22 +132,7 @@ def _kinds(text: str) -> tuple[str, ...]:
     return tuple(kind for kind in KINDS if kind in asked)
 
 
-def _names(files: Sequence[str]) -> tuple[str, ...]:
-    """Give each sheet's name: the file's stem, or its folder's name where the stem is `topology`."""
-    names: dict[str, str] = {}
-    for file in files:
-        path = Path(file)
-        name = path.resolve().parent.name if path.stem == "topology" else path.stem
-        if name in names:
-            raise InputError(
-                f"{names[name]} and {file} would both be written as {name}",
-                cure="rename one of the files, or make the sheets into two folders",
-            )
-        names[name] = file
-    return tuple(names)
-
-
-def _summary(rows: Sequence[tuple[str, Results, tuple[Path, ...]]]) -> None:
+def _summary(made: Sequence[Made]) -> None:
     from rich.console import Console
     from rich.table import Table
 
@@ -162,9 +141,9 @@ def _summary(rows: Sequence[tuple[str, Results, tuple[Path, ...]]]) -> None:
     table = Table(box=None, pad_edge=False)
     for heading in ("Sheet", "Sought", "Gain", "Checks", "Files"):
         table.add_column(heading, overflow="fold")
-    for name, results, files in rows:
-        kinds = ", ".join(file.name for file in files)
-        for place, cells in enumerate(summary_rows(results.outcome)):
-            table.add_row(name if place == 0 else "", *cells, kinds if place == 0 else "")
+    for sheet in made:
+        files = ", ".join(file.name for file in sheet.files)
+        for place, cells in enumerate(summary_rows(sheet.results.outcome)):
+            table.add_row(sheet.name if place == 0 else "", *cells, files if place == 0 else "")
     width = None if sys.stdout.isatty() else 120
     Console(width=width, highlight=False).print(table)

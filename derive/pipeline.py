@@ -53,12 +53,13 @@ def derive(
     engine_seconds: float = ENGINE_SECONDS,
     only: str | None = None,
     progress: Callable[[str], None] = lambda stage: None,
-    meanwhile: Callable[[], None] = lambda: None,
+    meanwhile: Callable[[Outcome], None] = lambda outcome: None,
 ) -> Results:
     """Derive and check what a topology asks for.
 
     Given: whether the other engine is asked as well, and for how long; `only` names one quantity;
-    `progress` is told the stages; `meanwhile` is run while the other engine works.
+    `progress` is told the stages; `meanwhile` is given the outcome without its verdicts,
+    while the other engine works.
 
     Raises: InputError, TooLargeError or SingularError where the circuit cannot be worked.
     """
@@ -70,7 +71,7 @@ def derive(
             solutions.append(solve(circuit, find))
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
-    meanwhile()
+    meanwhile(Outcome(circuit, tuple(Result(solution, ()) for solution in solutions)))
     verdicts = finish(begun)
     results = map(_result, solutions, verdicts)
     return Results(Outcome(circuit, tuple(results)))

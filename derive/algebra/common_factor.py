@@ -65,13 +65,19 @@ def bounds(one: Polynomial, other: Polynomial) -> tuple[Polynomial, Polynomial]:
     the derivative.
     """
     while True:
-        degrees = list(zip(one.degrees(), other.degrees(), strict=True))
-        own = next((index for index, pair in enumerate(degrees) if pair == (1, 0)), None)
-        theirs = next((index for index, pair in enumerate(degrees) if pair == (0, 1)), None)
-        if own is None and theirs is None:
+        degrees = list(enumerate(zip(one.degrees(), other.degrees(), strict=True)))
+        shorter = _coefficient(one, [index for index, pair in degrees if pair == (1, 0)])
+        others = _coefficient(other, [index for index, pair in degrees if pair == (0, 1)])
+        if len(shorter) == len(one) and len(others) == len(other):
             return one, other
-        one = one if own is None else one.derivative(own)
-        other = other if theirs is None else other.derivative(theirs)
+        one, other = shorter, others
+
+
+def _coefficient(polynomial: Polynomial, indices: list[int]) -> Polynomial:
+    """Give the coefficient of a product of generators, leaving out those that drop out on the way."""
+    for index in indices:
+        polynomial = polynomial.derivative(index) or polynomial
+    return polynomial
 
 
 def _leading_content(polynomial: Polynomial, index: int) -> Any:

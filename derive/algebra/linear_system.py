@@ -22,14 +22,14 @@ from derive.algebra.common_factor import (
 )
 from derive.algebra.coprime import coprime
 from derive.algebra.minors import Minors
-from derive.algebra.ring import Polynomial, Ring
+from derive.algebra.ring import Polynomial, Ring, used_names
 from derive.algebra.sensitivity import idle_names
 from derive.errors import SingularError
 
 Row = Mapping[int, Polynomial]
 
 # Below this many terms FLINT's general greatest common divisor is quicker than the derivatives.
-GENERAL_LIMIT = 1_000
+GENERAL_LIMIT = 100
 
 # Small primes, pairwise distinct, for generators on which the answer does not depend.
 FILLING = (3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53, 59, 61, 67, 71, 73, 79, 83)
@@ -72,11 +72,15 @@ def solve(system: LinearSystem) -> Quotient:
     if numerator == 0:
         return Quotient(system.ring.zero, system.ring.one)
     numerator, denominator = remove_common_monomial(numerator, denominator)
+    if min(len(numerator), len(denominator)) == 1:
+        return Quotient(numerator, denominator)
     one, other = bounds(numerator, denominator)
     if min(len(one), len(other)) == 1 or len(one) + len(other) <= GENERAL_LIMIT:
         return Quotient(*remove_bounded_factor(numerator, denominator, one, other))
     if _multilinear(system, numerator, denominator):
-        return _cancel_multilinear(system, numerator, denominator)
+        shared = used_names(system.ring, [one]), used_names(system.ring, [other])
+        names = [name for name in shared[0] if name in shared[1] and name != system.degree_variable]
+        return _cancel_multilinear(system, numerator, denominator, names)
     if coprime(system.ring, one, other):
         return Quotient(numerator, denominator)
     return Quotient(*remove_bounded_factor(numerator, denominator, one, other))
@@ -126,12 +130,10 @@ def _multilinear(system: LinearSystem, *polynomials: Polynomial) -> bool:
 
 
 def _cancel_multilinear(
-    system: LinearSystem, numerator: Polynomial, denominator: Polynomial
+    system: LinearSystem, numerator: Polynomial, denominator: Polynomial, names: list[str]
 ) -> Quotient:
-    """Cancel what two multilinear determinants share."""
-    pairs = zip(system.ring.names, numerator.degrees(), denominator.degrees(), strict=False)
-    shared = [name for name, a, b in pairs if a and b and name != system.degree_variable]
-    idle = idle_names(system.ring, system.rows, shared)
+    """Cancel what two multilinear determinants share; a common factor has no generators but `names`."""
+    idle = idle_names(system.ring, system.rows, names)
     if idle:
         numerator, denominator = raw_quotient(system.ring, _fill(system, idle))
     numerator, denominator = remove_common_content(

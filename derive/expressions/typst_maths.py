@@ -144,9 +144,12 @@ def _is_word(node: Expression) -> bool:
     """Say whether a factor is set as an upright word, which would run into its neighbours."""
     if isinstance(node, Power):
         node = node.base
-    if not isinstance(node, Name):
-        return False
-    base = shape_of(node.text).base
+    return isinstance(node, Name) and _is_set_upright(node.text)
+
+
+@lru_cache(maxsize=4096)
+def _is_set_upright(name: str) -> bool:
+    base = shape_of(name).base
     return len(base) > 1 and base not in GREEK
 
 

@@ -88,11 +88,13 @@ class Breaker:
 
     def __init__(self, measurer: Measurer) -> None:
         self._measurer = measurer
+        # Long formulas are asked for again and again; by identity, because hashing a tree walks it.
+        self._sources: dict[int, tuple[Expression, str]] = {}
 
     def prepare(self, wholes: list[Expression | Equation]) -> None:
         """Measure in one run everything that breaking these formulas will ask for."""
         self._measurer.measure(
-            displayed(to_typst(part)) for whole in wholes for part in subexpressions(whole)
+            displayed(self._source(part)) for whole in wholes for part in subexpressions(whole)
         )
 
     def rows(self, whole: Expression | Equation, limit: float) -> list[Row]:
@@ -102,7 +104,7 @@ class Breaker:
         """
         if not isinstance(whole, Equation):
             return _packed(self._tokens(whole, limit - INDENT_EM), limit)
-        left = to_typst(whole.left)
+        left = self._source(whole.left)
         lead = self._width(whole.left) + _SIGN_EM["="]
         if lead > LONGEST_LEAD * limit:
             tokens = self._tokens(whole.left, limit - INDENT_EM)
@@ -173,7 +175,7 @@ class Breaker:
         """Put brackets round tokens; square ones of a fixed size where they fall on several lines."""
         width = self._width(inner) + _BRACKETS_EM
         if width + 0.4 * bool(after) <= limit:
-            return [Token(f"({to_typst(inner)}){after}", width, self._height(inner))]
+            return [Token(f"({self._source(inner)}){after}", width, self._height(inner))]
         tokens = self._tokens(inner, limit - _BRACKETS_EM)
         size = max(token.height for token in tokens)
         left, right = (_bracket(side, size) for side in "[]")
@@ -199,14 +201,21 @@ class Breaker:
         room = limit - 0.2
         return _packed(self._tokens(expression, room - INDENT_EM), room)
 
+    def _source(self, expression: Expression) -> str:
+        known = self._sources.get(id(expression))
+        if known is None:
+            known = expression, to_typst(expression)
+            self._sources[id(expression)] = known
+        return known[1]
+
     def _whole(self, expression: Expression) -> Token:
-        return Token(to_typst(expression), self._width(expression), self._height(expression))
+        return Token(self._source(expression), self._width(expression), self._height(expression))
 
     def _width(self, expression: Expression) -> float:
-        return self._measurer[displayed(to_typst(expression))].width
+        return self._measurer[displayed(self._source(expression))].width
 
     def _height(self, expression: Expression) -> float:
-        return self._measurer[displayed(to_typst(expression))].height
+        return self._measurer[displayed(self._source(expression))].height
 
 
 def _packed(tokens: list[Token], limit: float, lead: float = 0.0, opening: str = "& ") -> list[Row]:

@@ -14,18 +14,37 @@ from derive.sheet.document import Sheet
 KINDS = ("html", "pdf", "json")
 
 
+def prepare(sheet: Sheet, kinds: Sequence[str]) -> SheetMaths | None:
+    """Set the maths of a sheet whose verdicts are still to come, and load what writing will need."""
+    if not {"html", "pdf"} & set(kinds):
+        return None
+    maths = SheetMaths(sheet)
+    if "html" in kinds:
+        _ = maths.marked_up
+    if "pdf" in kinds:
+        from derive.render.pdf import load
+
+        _ = maths.drawn
+        load()
+    return maths
+
+
 def write_sheet(
     sheet: Sheet,
     folder: Path,
     name: str,
     kinds: Sequence[str] = KINDS,
+    *,
+    maths: SheetMaths | None = None,
     progress: Callable[[str], None] = lambda stage: None,
 ) -> tuple[Path, ...]:
     """Write NAME.html, NAME.pdf and NAME.json, or those asked for, into a folder.
 
+    Given: the `maths` prepared for this sheet, where they were.
     Raises: OutputError; where only the PDF cannot be made, the other files are written first.
     """
-    maths = SheetMaths(sheet) if {"html", "pdf"} & set(kinds) else None
+    if {"html", "pdf"} & set(kinds) and (maths is None or not maths.covers(sheet)):
+        maths = SheetMaths(sheet)
     made: dict[Path, bytes] = {}
     failure: OutputError | None = None
     if "html" in kinds:

@@ -12,7 +12,7 @@ from markupsafe import Markup
 from derive.render import templates
 from derive.render.maths import Piece, SheetMaths
 from derive.render.page import compose, digest
-from derive.render.typesetter import Formula, mathml
+from derive.render.typesetter import Formula
 from derive.sheet.document import Sheet
 
 _FONT_MARK = re.compile(r'url\("fonts/([\w.-]+)"\)')
@@ -29,7 +29,7 @@ def to_html(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
     """
     maths = maths or SheetMaths(sheet)
     formulas = maths.formulas()
-    elements = dict(zip(formulas, map(tidy, mathml(formulas)), strict=True))
+    elements = dict(zip(formulas, map(tidy, maths.marked_up), strict=True))
     page = compose(
         sheet,
         maths,

@@ -4,13 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cached_property
 
 from derive.expressions.speech import to_speech
 from derive.expressions.tree import ZERO, Equation, Expression, Negative, Product, Sum
 from derive.expressions.typst_maths import to_typst
 from derive.expressions.unicode_text import to_unicode
 from derive.render.breaking import Breaker, displayed
-from derive.render.typesetter import Formula, Measurer, Size
+from derive.render.typesetter import Formula, Measurer, Size, draw, mathml
 from derive.render.within_words import run_on, slashed
 from derive.sheet.document import Display, Line, Maths, Matrix, Paragraph, Sheet, Table, Text
 
@@ -84,6 +85,21 @@ class SheetMaths:
         pieces = [p for ps in self._inline.values() for p in ps]
         pieces += [p for shown in self._display.values() for p in shown.pieces]
         return list(dict.fromkeys(piece.formula for piece in pieces))
+
+    def covers(self, sheet: Sheet) -> bool:
+        """Say whether every formula of a sheet is among these."""
+        inlines, displays = _gather(sheet)
+        return inlines.keys() <= self._inline.keys() and displays.keys() <= self._display.keys()
+
+    @cached_property
+    def drawn(self) -> list[bytes]:
+        """Every formula as an SVG page, in the order of `formulas`."""
+        return draw(self.formulas())
+
+    @cached_property
+    def marked_up(self) -> list[str]:
+        """Every formula as a `<math>` element, in the order of `formulas`."""
+        return mathml(self.formulas())
 
     def _too_wide(
         self, inlines: dict[tuple[_Content, float], None], displays: dict[Display, None]

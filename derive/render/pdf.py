@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import hashlib
 import io
 import mimetypes
@@ -17,7 +18,6 @@ from derive.render.hidden_text import HiddenText
 from derive.render.maths import Piece, SheetMaths
 from derive.render.outline import read_page
 from derive.render.page import compose, digest
-from derive.render.typesetter import Formula, draw
 from derive.sheet.document import Sheet
 
 # The same bytes from the same input: the files inside bear a date that says nothing.
@@ -37,8 +37,7 @@ def to_pdf(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
     from weasyprint.text.fonts import FontConfiguration
 
     maths = maths or SheetMaths(sheet)
-    formulas = maths.formulas()
-    pictures = Pictures(formulas)
+    pictures = Pictures(maths)
     page = compose(sheet, maths, pictures.markup, paper=True, digest=digest(sheet), style=None)
     fetcher = weasyprint.urls.URLFetcher(allowed_protocols=("file",), fail_on_errors=False)
     base = templates.folder().as_uri() + "/"
@@ -69,13 +68,13 @@ def to_pdf(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
 class Pictures:
     """The formulas of a document as images, each under its own address in the cache."""
 
-    def __init__(self, formulas: list[Formula]) -> None:
+    def __init__(self, maths: SheetMaths) -> None:
         from derive.render.picture import FormulaImage, GlyphForm
 
         self.hidden = HiddenText()
-        self._addresses = {formula: f"eq:{i}" for i, formula in enumerate(formulas)}
+        self._addresses = {formula: f"eq:{i}" for i, formula in enumerate(maths.formulas())}
         outlines: dict[str, str] = {}
-        drawings = [read_page(page, outlines) for page in draw(formulas)]
+        drawings = [read_page(page, outlines) for page in maths.drawn]
         forms = {
             key: GlyphForm(f"g{i}-", operators) for i, (key, operators) in enumerate(outlines.items())
         }
@@ -126,6 +125,12 @@ def _finish(pdf: Any, pictures: Pictures) -> None:
     if "AF" in pdf.catalog:
         once = list(dict.fromkeys(pdf.catalog["AF"]))
         pdf.catalog["AF"][:] = once
+
+
+def load() -> None:
+    """Import the PDF writer ahead of need; that it is missing is said when it is needed."""
+    with contextlib.suppress(OutputError):
+        _weasyprint()
 
 
 def _weasyprint() -> Any:

@@ -27,7 +27,7 @@ def section_modules() -> tuple[Any, ...]:
     return tuple(sorted(modules, key=lambda module: module.ORDER))
 
 
-def compose(outcome: Outcome, name: str) -> Sheet:
+def compose(outcome: Outcome, name: str, *, with_ledger: bool = True) -> Sheet:
     """Give the sheet as data; `name` is that of its files, without ending."""
     topology = outcome.circuit.topology
     return Sheet(
@@ -39,7 +39,7 @@ def compose(outcome: Outcome, name: str) -> Sheet:
         topology_name=topology.file,
         topology_text=topology.text,
         ledger_name=f"{name}.json",
-        ledger_text=ledger_text(outcome),
+        ledger_text=ledger_text(outcome) if with_ledger else "",
     )
 
 

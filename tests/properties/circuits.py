@@ -9,7 +9,7 @@ from derive.errors import InputError
 from derive.topology.read import parse
 from derive.topology.topology import Topology
 
-RESISTANCES = ("100", "470R", "1k", "2k2", "4.7 kΩ", "33k", "1M")
+RESISTANCES = ("100R", "470R", "1k", "2k2", "4.7 kΩ", "33k", "1M")
 CAPACITANCES = ("2p2", "10p", "470 pF", "1n", "100n", "4u7")
 INDUCTANCES = ("1u", "10 uH", "470u", "1 mH", "22 mH")
 TRANSCONDUCTANCES = ("40 mS", "1 mS", "250 uS", "-2 mS")
@@ -100,7 +100,7 @@ def _ideal_opamp(draft: Draft) -> None:
 def _opamp(draft: Draft) -> None:
     output = draft.chance.choice(draft.nodes)
     entries = f'opamp = true, output = "{output}", inputs = {quoted(draft.pair())}'
-    optional = ('A_0 = "100000"', 'f_unity = "1 MHz"', 'R_in = "1M"', 'R_out = "75"')
+    optional = ('A_0 = "100000"', 'f_unity = "1 MHz"', 'R_in = "1M"', 'R_out = "75R"')
     for parameter in optional:
         if draft.chance.random() < 0.5:
             entries += f", {parameter}"

@@ -1,0 +1,194 @@
+"""The interface contract of a ledger, as assertions on its data and on its text."""
+
+from __future__ import annotations
+
+import hashlib
+import json
+import math
+import re
+from fractions import Fraction
+from typing import Any
+
+import mpmath
+from ledger_arithmetic import PRIME, RESIDUES, LedgerResult, complex_field, names_in
+
+TOP = ["ledger", "made_by", "topology", "symbols", "results"]
+SYMBOL = ["value", "unit", "origin"]
+RESULT = [
+    "find",
+    "band",
+    "per",
+    "gain",
+    "power_of_s",
+    "numerator",
+    "denominator",
+    "definitions",
+    "zeros",
+    "poles",
+    "steps",
+    "approximations",
+    "checks",
+]
+STEP = ["n", "rule", "says", "before", "after", "proof"]
+CHECK = ["name", "method", "passed", "measured", "limit"]
+NAME = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
+# Names, integers, + - * / ** and parentheses: no point, no comma, no other sign.
+EXPR = re.compile(r"(?:[A-Za-z][A-Za-z0-9_]*|\d+|\*\*|[-+*/()]| )+")
+EXACT = re.compile(r"-?\d+(?:\.\d+)?(?:e-?\d+)?|-?\d+/\d+")
+# What a part or a parameter of one can be measured in.
+UNITS = {"ohm", "F", "H", "S", "1", "rad/s"}
+ROOT_TOLERANCE = 1e-9
+
+
+def check_ledger(text: str, *, passed: bool = True) -> dict[str, Any]:
+    """Assert that a ledger's text keeps the contract; give its data.
+
+    Given: `passed` asserts as well that no check on it failed.
+    """
+    data = json.loads(text, parse_constant=_no_constant)
+    # Written again with its keys in the order read, it is the same text: nothing hangs on hashing.
+    assert json.dumps(data, ensure_ascii=False, indent=1, allow_nan=False) + "\n" == text
+    assert list(data) == TOP
+    assert data["ledger"] == 1
+    assert list(data["made_by"]) == ["name", "version"]
+    assert data["made_by"]["name"] == "nodeledger"
+    topology = data["topology"]
+    assert list(topology) == ["file", "sha256", "text"]
+    assert topology["sha256"] == hashlib.sha256(topology["text"].encode()).hexdigest()
+    for name, symbol in data["symbols"].items():
+        check_symbol(name, symbol)
+    finds = [result["find"] for result in data["results"]]
+    assert finds
+    assert len(set(finds)) == len(finds)
+    for result in data["results"]:
+        check_result(result, data["symbols"], passed=passed)
+    return data
+
+
+def _no_constant(name: str) -> None:
+    raise AssertionError(f"{name} is no JSON")
+
+
+def check_symbol(name: str, symbol: dict[str, Any]) -> None:
+    """Assert what is promised of a symbol."""
+    assert NAME.fullmatch(name)
+    assert list(symbol) == SYMBOL
+    assert symbol["value"] is None or EXACT.fullmatch(symbol["value"])
+    assert symbol["unit"] in UNITS
+    assert symbol["origin"]
+
+
+def check_result(result: dict[str, Any], symbols: dict[str, Any], *, passed: bool) -> None:
+    """Assert what is promised of a result."""
+    assert list(result) == RESULT
+    assert result["band"] == "full"
+    assert NAME.fullmatch(result["find"])
+    check_per(result["per"])
+    check_expressions(result, symbols)
+    check_roots(result, symbols)
+    assert result["approximations"] == []
+    for number, step in enumerate(result["steps"], start=1):
+        check_step(step, number, passed=passed)
+    assert result["checks"]
+    for check in result["checks"]:
+        assert list(check) == CHECK
+        assert check["passed"] in ((True, None) if passed else (True, False, None))
+        assert all(isinstance(check[key], str) for key in CHECK if key != "passed")
+
+
+def check_per(per: Any) -> None:
+    """Assert that `per` is a drive, weights, or nothing for an impedance."""
+    if isinstance(per, dict):
+        assert per
+        assert all(NAME.fullmatch(name) and EXACT.fullmatch(weight) for name, weight in per.items())
+    else:
+        assert per is None or NAME.fullmatch(per)
+
+
+def check_expressions(result: dict[str, Any], symbols: dict[str, Any]) -> None:
+    """Assert the characters and the names of every expression, and that H is finite at a point."""
+    assert list(result["gain"]) == ["exact", "value"]
+    value = result["gain"]["value"]
+    assert value is None or (type(value) is float and math.isfinite(value))
+    assert type(result["power_of_s"]) is int
+    numerator, denominator = result["numerator"], result["denominator"]
+    assert numerator[0] == denominator[0] == "1"
+    assert numerator[-1] != "0"
+    assert denominator[-1] != "0"
+    known = set(symbols)
+    for name, text in result["definitions"]:
+        assert NAME.fullmatch(name)
+        assert name not in known
+        check_expression(text, known)
+        known.add(name)
+    for text in (result["gain"]["exact"], *numerator, *denominator):
+        check_expression(text, known)
+    if result["gain"]["exact"] == "0":
+        assert (numerator, denominator, result["power_of_s"]) == (["1"], ["1"], 0)
+        assert value in (0.0, None)
+    # Squares, so that a mutual inductance exists.
+    values = {name: (3 + index) ** 2 for index, name in enumerate(symbols)}
+    assert 0 <= LedgerResult(result).at(values, RESIDUES).at(2) < PRIME
+
+
+def check_expression(text: str, known: set[str]) -> None:
+    """Assert the characters of an expression, and that its names are known."""
+    assert EXPR.fullmatch(text), text
+    assert names_in(text) <= known, text
+    assert "s" not in names_in(text), text
+
+
+def check_roots(result: dict[str, Any], symbols: dict[str, Any]) -> None:
+    """Assert that the roots are those of the coefficients, by rising magnitude, in conjugate pairs.
+
+    What power_of_s says is at the origin stands there alone and in no list.
+    """
+    if any(symbol["value"] is None for symbol in symbols.values()):
+        assert result["zeros"] == result["poles"] == []
+        return
+    mp = mpmath.MPContext()
+    mp.dps = 60
+    field = complex_field(mp)
+    values = {name: field.number(exact(symbol["value"])) for name, symbol in symbols.items()}
+    try:
+        response = LedgerResult(result).at(values, field)
+    except ZeroDivisionError:
+        return
+    for roots, coefficients in (
+        (result["zeros"], response.numerator),
+        (result["poles"], response.denominator),
+    ):
+        degree = max(k for k, coefficient in enumerate(coefficients) if coefficient)
+        assert len(roots) == degree
+        for root in roots:
+            assert len(root) == 2
+            assert all(type(part) is float and math.isfinite(part) for part in root)
+            terms = [coefficient * mp.mpc(*root) ** k for k, coefficient in enumerate(coefficients)]
+            assert abs(sum(terms)) <= ROOT_TOLERANCE * sum(map(abs, terms))
+        magnitudes = [math.hypot(*root) for root in roots]
+        for lower, higher in zip(magnitudes, magnitudes[1:], strict=False):
+            assert lower <= higher * (1 + ROOT_TOLERANCE)
+        assert sorted(roots) == sorted([real, -imaginary + 0.0] for real, imaginary in roots)
+
+
+def check_step(step: dict[str, Any], number: int, *, passed: bool) -> None:
+    """Assert what is promised of a step."""
+    assert list(step) == STEP
+    assert step["n"] == number
+    assert step["rule"]
+    assert step["says"]
+    assert isinstance(step["before"], list)
+    assert len(step["after"]) == 1
+    for equation in (*step["before"], *step["after"]):
+        left, equals, right = equation.partition(" = ")
+        assert equals
+        assert EXPR.fullmatch(left)
+        assert EXPR.fullmatch(right)
+    assert list(step["proof"])[:2] == ["method", "passed"]
+    assert type(step["proof"]["passed"]) is bool
+    assert step["proof"]["passed"] or not passed
+
+
+def exact(value: str) -> Fraction:
+    """Give an exact value as it stands in a ledger."""
+    return Fraction(value)
