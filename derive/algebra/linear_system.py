@@ -146,7 +146,7 @@ def _cancel_multilinear(
 
 def _fill(system: LinearSystem, idle: list[str]) -> tuple[Row, ...]:
     safe = {
-        system.ring.context.py_names[system.ring.names.index(name)]: FILLING[k % len(FILLING)] + k
+        system.ring.names.index(name): FILLING[k % len(FILLING)] + k
         for k, name in enumerate(idle)
     }
     filled = []

@@ -216,5 +216,7 @@ def _residue(node: Expression, lookup: Mapping[str, int], prime: int) -> int:  #
 
 def term_count(expression: Expression) -> int:
     """Give the number of terms in all sums of an expression; that of one without a sum is 1."""
-    inner = sum(term_count(child) for child in children_of(expression))
-    return inner if isinstance(expression, Sum) or inner > 1 else 1
+    if isinstance(expression, Sum):
+        return sum(map(term_count, expression.terms))
+    inner = (term_count(child) for child in children_of(expression))
+    return sum(count for count in inner if count > 1) or 1

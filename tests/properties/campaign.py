@@ -25,6 +25,8 @@ def main() -> int:
     begun = time.perf_counter()
     totals: Counter[str] = Counter()
     kinds: Counter[str] = Counter()
+    opened: Counter[str] = Counter()
+    shown = 0
     for index in range(options.count):
         seed = options.seed * 10**9 + index
         outcome = compare(seed)
@@ -34,16 +36,17 @@ def main() -> int:
         totals["too large"] += outcome.too_large
         totals["drafts refused by the reader"] += outcome.drafts_refused
         kinds.update(outcome.kinds)
-        if outcome.differences:
-            totals["DIFFERENT"] += 1
-            if totals["DIFFERENT"] <= SHOWN:
-                print(f"seed {seed}: {outcome.differences}\n{outcome.text}")  # noqa: T201 - its job
-    totals["DIFFERENT"] += 0
-    for table in (totals, kinds):
+        opened.update(outcome.left_open)
+        totals["DIFFERENT"] += bool(outcome.differences)
+        totals["CHECKS FAILED"] += bool(outcome.failed)
+        if (outcome.differences or outcome.failed) and shown < SHOWN:
+            shown += 1
+            print(f"seed {seed}: {outcome.differences} {outcome.failed}\n{outcome.text}")  # noqa: T201 - its job
+    for table in (totals, kinds, opened):
         for name, count in sorted(table.items()):
             print(f"{count:8d}  {name}")  # noqa: T201 - its job
     print(f"{time.perf_counter() - begun:8.0f}  seconds")  # noqa: T201 - its job
-    return 1 if totals["DIFFERENT"] else 0
+    return 1 if totals["DIFFERENT"] or totals["CHECKS FAILED"] else 0
 
 
 if __name__ == "__main__":

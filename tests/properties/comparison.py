@@ -17,7 +17,10 @@ POINTS = 3
 
 @dataclass(frozen=True)
 class Comparison:
-    """How one circuit went: `differences` is empty where product and solver agree."""
+    """How one circuit went: `differences` is empty where product and solver agree.
+
+    `failed` names the product's own checks that failed, `left_open` those that neither passed nor failed.
+    """
 
     text: str
     kinds: tuple[str, ...]
@@ -25,6 +28,8 @@ class Comparison:
     results: int
     drafts_refused: int
     differences: tuple[str, ...]
+    failed: tuple[str, ...] = ()
+    left_open: tuple[str, ...] = ()
     too_large: bool = False
 
 
@@ -48,6 +53,7 @@ def compare(seed: int) -> Comparison:
     kinds = tuple(sorted({part.kind for part in topology.parts}))
     singular = all(truth is None for truth in truths)
     differences: list[str] = []
+    checks: list[dict] = []
     count, too_large = 0, False
     try:
         results = derive(topology, other_engine=False)
@@ -66,13 +72,23 @@ def compare(seed: int) -> Comparison:
                 differences.append(f"other symbols: {sorted(ledger['symbols'])}")
             for result in ledger["results"]:
                 differences += _differences(result, points, truths)
-                differences += [
-                    f"check failed: {check['name']}: {check['measured']}"
-                    for check in result["checks"]
-                    if check["passed"] is not True and check["name"] != "another engine"
-                ]
+                checks += [check for check in result["checks"] if check["name"] != "another engine"]
     return Comparison(
-        topology.text, kinds, singular, count, refused, tuple(differences), too_large
+        topology.text,
+        kinds,
+        singular,
+        count,
+        refused,
+        tuple(differences),
+        _named(checks, False),
+        _named(checks, None),
+        too_large,
+    )
+
+
+def _named(checks: list[dict], passed: bool | None) -> tuple[str, ...]:
+    return tuple(
+        f"{check['name']}: {check['measured']}" for check in checks if check["passed"] is passed
     )
 
 
