@@ -2,16 +2,12 @@
 
 from __future__ import annotations
 
-from functools import cache, reduce
+from functools import reduce
 from typing import Any
 
 from flint import fmpz_poly
 
-from derive.algebra import modular
 from derive.algebra.ring import Polynomial, Ring
-
-# Up to this many terms, evaluating two polynomials is cheap beside their greatest common divisor.
-EVALUATION_LIMIT = 2_000
 
 
 def remove_common_monomial(
@@ -64,24 +60,16 @@ def remove_bounded_factor(
 def bounds(one: Polynomial, other: Polynomial) -> tuple[Polynomial, Polynomial]:
     """Give two shorter polynomials that every common divisor of the two divides.
 
-    A common divisor is free of a generator that only one of them has. It is free, too, of a generator x
-    that both have to the first power, one = a_0 + a_1·x and other = b_0 + b_1·x, wherever
-    a_1·other − b_1·one, which it divides, is not zero: for that is free of x. So it divides the
-    coefficient of x, which is the derivative.
+    A common divisor is free of a generator that only one of them has, and so divides every coefficient
+    of it. Only generators to the first power are used: there the coefficient is the derivative.
     """
-    while min(len(one), len(other)) > 1:
+    while True:
         degrees = list(enumerate(zip(one.degrees(), other.degrees(), strict=True)))
         shorter = _coefficient(one, [index for index, pair in degrees if pair == (1, 0)])
         others = _coefficient(other, [index for index, pair in degrees if pair == (0, 1)])
-        if len(shorter) == len(one) and len(others) == len(other):
-            if len(one) + len(other) > EVALUATION_LIMIT:
-                break
-            both = [index for index, pair in degrees if pair == (1, 1)]
-            shorter, others = _without_shared(one, other, both)
-            if len(shorter) == len(one):
-                break
+        if shorter is one and others is other:
+            return one, other
         one, other = shorter, others
-    return one, other
 
 
 def _coefficient(polynomial: Polynomial, indices: list[int]) -> Polynomial:
@@ -89,25 +77,6 @@ def _coefficient(polynomial: Polynomial, indices: list[int]) -> Polynomial:
     for index in indices:
         polynomial = polynomial.derivative(index) or polynomial
     return polynomial
-
-
-def _without_shared(
-    one: Polynomial, other: Polynomial, indices: list[int]
-) -> tuple[Polynomial, Polynomial]:
-    """Give the coefficients of the first generator that certainly stands in no common divisor."""
-    point = _point(one.context().nvars())
-    first, second = one(*point), other(*point)
-    for index in indices:
-        a, b = one.derivative(index), other.derivative(index)
-        # Not zero at one point is proof; zero at it proves nothing, and the next generator is tried.
-        if a(*point) * second != b(*point) * first:
-            return a, b
-    return one, other
-
-
-@cache
-def _point(width: int) -> tuple[int, ...]:
-    return tuple(value % 1009 + 2 for value in modular.residues(width, "bounds"))
 
 
 def _leading_content(polynomial: Polynomial, index: int) -> Any:

@@ -29,7 +29,10 @@ from derive.errors import SingularError
 Row = Mapping[int, Polynomial]
 
 # Below this many terms FLINT's general greatest common divisor is quicker than the derivatives.
-GENERAL_LIMIT = 100
+GENERAL_LIMIT = 400
+
+# Smaller systems lose more by the sum of their rows than it saves.
+SHORTENING_SIZE = 4
 
 # Small primes, pairwise distinct, for generators on which the answer does not depend.
 FILLING = (3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53, 59, 61, 67, 71, 73, 79, 83)
@@ -105,13 +108,15 @@ def _shortened(rows: Sequence[Row]) -> list[Row]:
     Neither changes a determinant but for its sign. In the sum much cancels where entries stand in one
     row with one sign and in another with the other, and long rows then meet short minors only.
     """
+    if len(rows) < SHORTENING_SIZE:
+        return list(rows)
     total: dict[int, Polynomial] = {}
     for row in rows:
         for column, entry in row.items():
             total[column] = total[column] + entry if column in total else entry
     total = {column: entry for column, entry in total.items() if entry}
     ordered = sorted(rows, key=_length, reverse=True)
-    if ordered and _length(total) < _length(ordered[0]):
+    if _length(total) < _length(ordered[0]):
         ordered[0] = total
     return ordered
 
@@ -135,7 +140,11 @@ def _cancel_multilinear(
     """Cancel what two multilinear determinants share; a common factor has no generators but `names`."""
     idle = idle_names(system.ring, system.rows, names)
     if idle:
-        numerator, denominator = raw_quotient(system.ring, _fill(system, idle))
+        filled = raw_quotient(system.ring, _fill(system, idle))
+        if filled[1] == 0:
+            # The integers happen to be a root of the common factor itself.
+            return Quotient(*remove_common_factor(numerator, denominator))
+        numerator, denominator = filled
     numerator, denominator = remove_common_content(
         system.ring, numerator, denominator, system.degree_variable
     )
@@ -145,10 +154,7 @@ def _cancel_multilinear(
 
 
 def _fill(system: LinearSystem, idle: list[str]) -> tuple[Row, ...]:
-    safe = {
-        system.ring.names.index(name): FILLING[k % len(FILLING)] + k
-        for k, name in enumerate(idle)
-    }
+    safe = {system.ring.names.index(name): FILLING[k % len(FILLING)] + k for k, name in enumerate(idle)}
     filled = []
     for row in system.rows:
         entries = {column: entry.subs(safe) for column, entry in row.items()}

@@ -77,3 +77,9 @@ def common_monomial(polynomials: Iterable[Polynomial]) -> Polynomial:
     """Give the greatest term, with its whole-number factor, that divides all of the polynomials."""
     contents = [polynomial.term_content() for polynomial in polynomials if polynomial != 0]
     return reduce(lambda a, b: a.gcd(b), contents)
+
+
+def negative(polynomial: Polynomial) -> bool:
+    """Whether most terms are negative; on a draw, whether the leading one is."""
+    signs = [1 if coefficient > 0 else -1 for coefficient in polynomial.coeffs()]
+    return sum(signs) < 0 or (sum(signs) == 0 and bool(signs) and signs[0] < 0)

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import Any
 
@@ -41,7 +41,25 @@ def roots(coefficients: Sequence[Fraction]) -> tuple[Root, ...]:
         return ()
     balls: Any = polynomial.numer().complex_roots()
     found = [_root(ball, count) for ball, count in balls]
+    near = [root for root in found if root.imaginary and abs(root.real) <= root.radius]
+    if sum(root.multiplicity for root in near) == 2 * _pairs_on_axis(polynomial):
+        found = [replace(root, real=0.0) if root in near else root for root in found]
     return tuple(sorted(found, key=_order))
+
+
+def _pairs_on_axis(polynomial: fmpq_poly) -> int:
+    """Count the pairs of roots that lie exactly on the imaginary axis.
+
+    They are roots of the polynomial and of its mirror image p(−s); what the two share is even or odd,
+    so that it is a polynomial in s², and its pairs on the axis are that one's negative real roots.
+    """
+    mirrored = fmpq_poly([value * (-1) ** power for power, value in enumerate(polynomial.coeffs())])
+    shared = polynomial.gcd(mirrored).coeffs()
+    in_square = fmpq_poly(list(shared[::2]) if shared[0] != 0 else list(shared[1::2]))
+    if in_square.degree() < 1:
+        return 0
+    balls: Any = in_square.numer().complex_roots()
+    return sum(count for ball, count in balls if not hasattr(ball, "imag") and ball < 0)
 
 
 def shared_roots(one: Sequence[Fraction], other: Sequence[Fraction]) -> tuple[Root, ...]:

@@ -1,0 +1,1 @@
+"""The order of elimination, and its execution as steps that can each be replayed."""

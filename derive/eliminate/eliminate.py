@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from derive.algebra.common_factor import remove_common_monomial
 from derive.algebra.exchange import exchange
 from derive.algebra.linear_system import LinearSystem, solve
-from derive.algebra.ring import Polynomial
+from derive.algebra.ring import Polynomial, negative
 from derive.eliminate.derivation import Derivation, Plan
 from derive.eliminate.rows import Row, RowBook
 from derive.eliminate.rules import (
@@ -22,6 +22,7 @@ from derive.eliminate.rules import (
     weigh,
 )
 from derive.eliminate.scribe import Scribe, number, writer_for
+from derive.expressions.tree import Expression
 from derive.nodal.system import NodalSystem
 
 # Up to this many terms, an equation is shown before its common factor is cancelled.
@@ -83,21 +84,32 @@ def _eliminate_one(
 ) -> Numbered:
     """Substitute, clear the fraction and cancel, in one row."""
     unknown = book.unknowns[stage]
+    source = substitute.apply(scribe, target.number, target.row, solved, unknown)
     after = book.row(index, target.row.done | pivot.row.done | 1 << stage)
     divisor, extra = book.divisor(pivot.row, target.row, after, stage)
-    source = substitute.apply(scribe, target.number, target.row, solved, unknown)
-    pivot_entry = pivot.row.entries[unknown]
-    if pivot_entry in (1, -1):
-        # The solution has no fraction, so there is nothing to clear: the terms are only collected.
-        divisor, pivot_entry = divisor * pivot_entry, book.system.ring.one
-    factor = scribe.polynomial(pivot_entry * extra)
+    denominator = pivot.row.entries[unknown]
+    if negative(denominator):
+        # The unknown was solved for with all signs turned.
+        denominator, divisor = -denominator, -divisor
+    if negative(divisor):
+        after, divisor = after.times(book.system.ring.constant(-1)), -divisor
+    factor = scribe.polynomial(denominator * extra)
+    cleared = after.times(divisor)
+    if divisor == 1 or cleared.size > UNCANCELLED_LIMIT:
+        return _finish(scribe, source, after, factor, divisor)
+    number_of_cleared = clear.apply(scribe, source, scribe.equation(cleared), factor, number(1))
+    if after.negative:
+        after, divisor = after.times(book.system.ring.constant(-1)), -divisor
     shared = scribe.polynomial(divisor)
-    if divisor == 1 or after.size * len(divisor) > UNCANCELLED_LIMIT:
-        return Numbered(clear.apply(scribe, source, scribe.equation(after), factor, shared), after)
-    entries = {name: entry * divisor for name, entry in after.entries.items()}
-    whole = Row(entries, after.right * divisor, after.done, after.raised, after.content)
-    cleared = clear.apply(scribe, source, scribe.equation(whole), factor, number(1))
-    return Numbered(cancel.apply(scribe, cleared, scribe.equation(after), shared), after)
+    return Numbered(cancel.apply(scribe, number_of_cleared, scribe.equation(after), shared), after)
+
+
+def _finish(scribe: Scribe, source: int, after: Row, factor: Expression, divisor: Polynomial) -> Numbered:
+    """Clear the fraction and cancel in one step; turn all signs where all would be negative."""
+    if after.negative:
+        after, divisor = after.times(scribe.system.ring.constant(-1)), -divisor
+    shared = scribe.polynomial(divisor)
+    return Numbered(clear.apply(scribe, source, scribe.equation(after), factor, shared), after)
 
 
 def _lowest_terms(book: RowBook) -> tuple[Polynomial, Polynomial]:

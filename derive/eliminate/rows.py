@@ -15,7 +15,7 @@ from functools import reduce
 from derive.algebra.common_factor import remove_common_factor
 from derive.algebra.exchange import exchange
 from derive.algebra.minors import Minors, too_large
-from derive.algebra.ring import Polynomial, Ring, common_monomial
+from derive.algebra.ring import Polynomial, Ring, common_monomial, negative
 from derive.eliminate.derivation import Plan
 from derive.nodal.system import NodalSystem
 
@@ -44,6 +44,16 @@ class Row:
     def size(self) -> int:
         """The number of terms in the row."""
         return sum(len(entry) for entry in self.entries.values()) + len(self.right)
+
+    @property
+    def negative(self) -> bool:
+        """Whether all of the equation's terms would be written with a minus sign."""
+        return all(map(negative, self.entries.values())) and (self.right == 0 or negative(self.right))
+
+    def times(self, factor: Polynomial) -> Row:
+        """Give the same equation times a factor, its scale still true."""
+        entries = {name: entry * factor for name, entry in self.entries.items()}
+        return Row(entries, self.right * factor, self.done, self.raised * factor, self.content)
 
 
 @dataclass(slots=True, eq=False)
@@ -75,9 +85,7 @@ class RowBook:
         self.shown += sum(len(entry) for entry in entries)
         if self.shown > SHOWN_LIMIT:
             raise too_large(SHOWN_LIMIT)
-        # An equation of the circuit keeps its sign; one that was eliminated from is written so that
-        # most of its terms are positive.
-        plain, raised, content = _tidy(self.system.ring, entries, turn=done != 0)
+        plain, raised, content = _tidy(self.system.ring, entries)
         present = {
             self.unknowns[column]: entry
             for column, entry in zip(columns[:-1], plain, strict=False)
@@ -132,14 +140,10 @@ def input_row(
     return row
 
 
-def _tidy(
-    ring: Ring, entries: list[Polynomial], *, turn: bool
-) -> tuple[list[Polynomial], Polynomial, Polynomial]:
+def _tidy(ring: Ring, entries: list[Polynomial]) -> tuple[list[Polynomial], Polynomial, Polynomial]:
     """Write minors without reciprocals and divide them by what they share."""
     plain, raised = exchange(ring, entries)
     content = common_monomial(plain)
-    if turn and _negative(next(entry for entry in plain if entry != 0)):
-        content = -content
     plain = [entry / content for entry in plain]
     filled = [entry for entry in plain if entry != 0]
     if len(filled) == 1:
@@ -150,9 +154,3 @@ def _tidy(
         if len(shared) > 1:
             return [entry / shared for entry in plain], raised, content * shared
     return plain, raised, content
-
-
-def _negative(polynomial: Polynomial) -> bool:
-    """Whether most terms are negative; on a draw, whether the leading one is."""
-    signs = [1 if coefficient > 0 else -1 for coefficient in polynomial.coeffs()]
-    return sum(signs) < 0 or (sum(signs) == 0 and signs[0] < 0)

@@ -17,7 +17,7 @@ from derive.eliminate.rules import (
     weigh,
 )
 from derive.expressions.text import to_text
-from derive.expressions.tree import ONE, Expression, Name
+from derive.expressions.tree import ONE, Expression, Name, Negative
 from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.sheet.document import Inline, Line, Maths, Reference, Text
@@ -175,6 +175,8 @@ def _clear(wording: Wording, step: Step) -> Line:
     divisor = step.certificate.divisor if step.certificate else ONE
     if divisor == ONE:
         return (*head, Text("."))
+    if divisor == Negative(ONE):
+        return (*head, Text(", with all signs turned."))
     return (*head, Text("; the "), *_factor(divisor), Text(" cancelled."))
 
 

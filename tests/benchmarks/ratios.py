@@ -28,8 +28,7 @@ from sympy.polys.matrices import DomainMatrix  # noqa: E402
 
 from derive.algebra.linear_system import LinearSystem, solve  # noqa: E402
 from derive.devices.linearise import linearise  # noqa: E402
-from derive.eliminate.plan import plan  # noqa: E402
-from derive.eliminate.rows import RowBook  # noqa: E402
+from derive.eliminate.rows import input_row  # noqa: E402
 from derive.nodal.write import write_equations  # noqa: E402
 from derive.topology.read import read  # noqa: E402
 
@@ -74,10 +73,13 @@ def quickest(work: Callable[[], object], repeats: int) -> float:
 
 
 def prepared(name: str) -> LinearSystem:
-    """Give a circuit's equations as a linear system, the wanted unknown last."""
+    """Give a circuit's equations in the order in which they are written, the wanted unknown last."""
     topology = read(CIRCUITS / f"{name}.toml")
     system = write_equations(linearise(topology), topology.finds[0])
-    rows = RowBook.of(system, plan(system)).minors.rows
+    names = [unknown.name for unknown in system.unknowns if unknown.name != system.wanted]
+    columns = (*names, system.wanted)
+    order = range(len(system.equations))
+    rows = [input_row(system, columns, 1, index) for index in order]
     return LinearSystem(system.ring, tuple(rows), "s")
 
 
@@ -217,6 +219,12 @@ TABLES = {
 }
 
 
+def write(line: str) -> None:
+    """Write a line at once, for these tables grow slowly."""
+    sys.stdout.write(line + "\n")
+    sys.stdout.flush()
+
+
 def main() -> int:
     """Print the tables asked for; the exit status is 1 where a target is missed."""
     parser = argparse.ArgumentParser(description="Prints ratios of times beside their targets.")
@@ -226,14 +234,14 @@ def main() -> int:
     missed = 0
     for key in options.only.split(","):
         compare, heading = TABLES[key]
-        print(heading)
-        print(f"  {'circuit':<18}{'ours':>12}{'other':>12}{'ratio':>10}{'target':>10}")
+        write(heading)
+        write(f"  {'circuit':<18}{'ours':>12}{'other':>12}{'ratio':>10}{'target':>10}")
         for line in compare(options.repeats):
             missed += not line.met
             ours, other = f"{line.ours_seconds * 1e3:.3f} ms", f"{line.other_seconds * 1e3:.2f} ms"
             words = f"  {line.name:<18}{ours:>12}{other:>12}{line.ratio:>10.1f}{line.target:>10}"
-            print(words + ("" if line.met else "  missed"), flush=True)
-        print()
+            write(words + ("" if line.met else "  missed"))
+        write("")
     return 1 if missed else 0
 
 

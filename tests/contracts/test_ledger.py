@@ -17,7 +17,10 @@ from derive.topology.read import parse
 
 HEAD = '[sheet]\ntitle = "Stage"\n[drives]\nV_s = { voltage = ["in", "gnd"] }\n[parts]\n'
 VOLTAGE = '[find.A_v]\nvoltage = "out"\nper = "V_s"\n'
-LOW_PASS = 'R_1 = { resistor = "1k", between = ["in", "out"] }\nC_1 = { capacitor = "1u", between = ["out", "gnd"] }\n'
+LOW_PASS = (
+    'R_1 = { resistor = "1k", between = ["in", "out"] }\n'
+    'C_1 = { capacitor = "1u", between = ["out", "gnd"] }\n'
+)
 CIRCUITS = {
     "low-pass": HEAD + LOW_PASS + VOLTAGE + '[find.Z_out]\nimpedance = "out"\n',
     "open value": HEAD + LOW_PASS.replace("1k", "?") + VOLTAGE,
@@ -110,7 +113,8 @@ def test_impedance_is_per_nothing():
 SCRIPT = (
     "import sys; from derive.pipeline import derive; from derive.sheet.ledger import ledger_text; "
     "from derive.topology.read import parse; "
-    "sys.stdout.write(ledger_text(derive(parse(sys.stdin.read(), 'stage.toml'), other_engine=False).outcome))"
+    "topology = parse(sys.stdin.read(), 'stage.toml'); "
+    "sys.stdout.write(ledger_text(derive(topology, other_engine=False).outcome))"
 )
 
 

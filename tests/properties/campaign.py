@@ -1,4 +1,7 @@
-"""Compares many random circuits and prints the totals: `python tests/properties/campaign.py --count 1000`."""
+"""Compares many random circuits and prints the totals.
+
+Run as `python tests/properties/campaign.py --count 1000 --seed 1`.
+"""
 
 from __future__ import annotations
 

@@ -67,13 +67,17 @@ def quoted(nodes: tuple[str, str]) -> str:
 
 def _transconductance(draft: Draft) -> None:
     value = draft.chance.choice(TRANSCONDUCTANCES)
-    entries = f'transconductance = "{value}", flows = {quoted(draft.pair())}, senses = {quoted(draft.pair())}'
+    entries = (
+        f'transconductance = "{value}", flows = {quoted(draft.pair())}, senses = {quoted(draft.pair())}'
+    )
     draft.part(draft.name("g"), entries)
 
 
 def _voltage_gain(draft: Draft) -> None:
     value = draft.chance.choice(RATIOS)
-    entries = f'voltage_gain = "{value}", output = {quoted(draft.pair())}, senses = {quoted(draft.pair())}'
+    entries = (
+        f'voltage_gain = "{value}", output = {quoted(draft.pair())}, senses = {quoted(draft.pair())}'
+    )
     draft.part(draft.name("A"), entries)
 
 
@@ -112,9 +116,7 @@ def _coupling(draft: Draft) -> None:
         draft.passive(draft.pair(), "L")
     first, second = draft.chance.sample(draft.coils, 2)
     value = draft.chance.choice(COEFFICIENTS)
-    draft.part(
-        draft.name("k"), f'coupling = "{value}", coils = {quoted((first, second))}', carries=False
-    )
+    draft.part(draft.name("k"), f'coupling = "{value}", coils = {quoted((first, second))}', carries=False)
 
 
 ACTIVE: tuple[Callable[[Draft], None], ...] = (

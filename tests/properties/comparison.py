@@ -87,9 +87,7 @@ def compare(seed: int) -> Comparison:
 
 
 def _named(checks: list[dict], passed: bool | None) -> tuple[str, ...]:
-    return tuple(
-        f"{check['name']}: {check['measured']}" for check in checks if check["passed"] is passed
-    )
+    return tuple(f"{check['name']}: {check['measured']}" for check in checks if check["passed"] is passed)
 
 
 def _differences(result: dict, points: list, truths: list) -> list[str]:

@@ -193,9 +193,7 @@ class Laws:
         if solved is None:
             return None
         return {
-            name: sum(
-                factor * solved[unknown][index] for unknown, factor in self.sought(find).items()
-            )
+            name: sum(factor * solved[unknown][index] for unknown, factor in self.sought(find).items())
             % PRIME
             for index, (name, find) in enumerate(finds.items())
         }

@@ -119,7 +119,9 @@ def test_zeros_at_the_origin_and_response_there_are_those_of_the_other_solver(fi
 def test_magnitude_and_phase_are_those_of_the_other_solver(file):
     for hertz, row in numbers_of(file)["at"].items():
         expected = cmath.rect(row["mag"], math.radians(row["deg"]))
-        assert abs(response_of(ledger_of(file), float(hertz)) - expected) <= RESPONSE_TOLERANCE * row["mag"]
+        assert (
+            abs(response_of(ledger_of(file), float(hertz)) - expected) <= RESPONSE_TOLERANCE * row["mag"]
+        )
 
 
 def test_impedance_is_that_of_the_other_solver():

@@ -132,7 +132,8 @@ def test_published_magnitude_at_the_centre_holds_for_all_values(name):
     chance = random.Random(name)
     for _ in range(POINTS):
         values = {
-            symbol: mp.mpc(chance.randint(1, 10**6)) / 1000 for symbol in ledger_of(check.topology)["symbols"]
+            symbol: mp.mpc(chance.randint(1, 10**6)) / 1000
+            for symbol in ledger_of(check.topology)["symbols"]
         }
         for symbol, tie in check.ties:
             values[symbol] = calculate(tie, values, field)
@@ -145,7 +146,9 @@ def test_published_magnitude_at_the_centre_holds_for_all_values(name):
 
 def test_closed_forms_name_symbols_of_their_circuits_alone():
     for check in CHECKS.values():
-        known = {*ledger_of(check.topology)["symbols"], "s", "pi"} | {name for name, _ in check.definitions}
+        known = {*ledger_of(check.topology)["symbols"], "s", "pi"} | {
+            name for name, _ in check.definitions
+        }
         assert names_in(check.closed_form) <= known, check.id
 
 

@@ -7,6 +7,7 @@ import json
 import math
 import re
 from fractions import Fraction
+from itertools import pairwise
 from typing import Any
 
 import mpmath
@@ -166,7 +167,7 @@ def check_roots(result: dict[str, Any], symbols: dict[str, Any]) -> None:
             terms = [coefficient * mp.mpc(*root) ** k for k, coefficient in enumerate(coefficients)]
             assert abs(sum(terms)) <= ROOT_TOLERANCE * sum(map(abs, terms))
         magnitudes = [math.hypot(*root) for root in roots]
-        for lower, higher in zip(magnitudes, magnitudes[1:], strict=False):
+        for lower, higher in pairwise(magnitudes):
             assert lower <= higher * (1 + ROOT_TOLERANCE)
         assert sorted(roots) == sorted([real, -imaginary + 0.0] for real, imaginary in roots)
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from derive.eliminate.rows import Row
 from derive.eliminate.scribe import Scribe, number
 from derive.expressions.polynomials import divide, multiply
+from derive.expressions.tree import ONE
 
 NAME = "multiply out"
 
@@ -19,4 +20,4 @@ def apply(scribe: Scribe, source: int, row: Row, common: int) -> int:
         return source
     factor = divide(multiply([number(common), raised]), content)
     uses = [(source, multiply([number(common), raised]))]
-    return scribe.follow(NAME, equation, uses, content, factor=factor)
+    return scribe.follow(NAME, equation, uses, content, factor=None if factor == ONE else factor)

@@ -10,6 +10,8 @@ from pathlib import Path
 
 import pytest
 
+from derive.version import VERSION
+
 ROOT = Path(__file__).parents[3]
 CASE = ROOT / "cases" / "echo_preamp" / "topology.toml"
 
@@ -54,16 +56,18 @@ def test_every_file_of_the_package_and_the_templates_is_in_the_wheel(installed):
 
 
 def test_nothing_but_the_package_and_its_description_is_in_the_wheel(installed):
-    assert sorted(path.name for path in installed.iterdir()) == ["derive", "nodeledger-0.1.0.dist-info"]
-    facts = installed / "nodeledger-0.1.0.dist-info"
+    package, facts = sorted(installed.iterdir())
+    assert package.name == "derive"
+    assert facts.name == f"nodeledger-{VERSION}.dist-info"
     assert "nodeledger = derive.cli:main" in (facts / "entry_points.txt").read_text(encoding="utf-8")
     assert (facts / "licenses" / "LICENSE").is_file()
 
 
 def test_version_of_the_wheel_is_that_of_the_program(installed, tmp_path):
     out = run(installed, "-m", "derive", "--version", cwd=tmp_path)
-    facts = (installed / "nodeledger-0.1.0.dist-info" / "METADATA").read_text(encoding="utf-8")
-    assert f"Version: {out.split()[1]}\n" in facts
+    facts = (installed / f"nodeledger-{VERSION}.dist-info" / "METADATA").read_text(encoding="utf-8")
+    assert out == f"nodeledger {VERSION}\n"
+    assert f"Version: {VERSION}\n" in facts
 
 
 def test_a_sheet_is_made_from_the_wheel_alone(installed, tmp_path):
