@@ -59,7 +59,7 @@ def _pairs_on_axis(polynomial: fmpq_poly) -> int:
     if in_square.degree() < 1:
         return 0
     balls: Any = in_square.numer().complex_roots()
-    return sum(count for ball, count in balls if not hasattr(ball, "imag") and ball < 0)
+    return sum(count for ball, count in balls if ball.imag == 0 and ball.real < 0)
 
 
 def shared_roots(one: Sequence[Fraction], other: Sequence[Fraction]) -> tuple[Root, ...]:
@@ -69,8 +69,8 @@ def shared_roots(one: Sequence[Fraction], other: Sequence[Fraction]) -> tuple[Ro
 
 
 def _root(ball: Any, multiplicity: int) -> Root:
-    real, real_radius = _float(getattr(ball, "real", ball))
-    imaginary, imaginary_radius = _float(ball.imag) if hasattr(ball, "imag") else (0.0, 0.0)
+    real, real_radius = _float(ball.real)
+    imaginary, imaginary_radius = _float(ball.imag)
     return Root(real, imaginary, max(real_radius, imaginary_radius), multiplicity)
 
 
