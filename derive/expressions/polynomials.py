@@ -43,7 +43,7 @@ class Writer:
         return self._sum(_terms(polynomial))
 
     def collected(self, polynomial: Polynomial) -> Expression:
-        """Write a polynomial as c_0 + s·(c_1) + s²·(c_2) + …"""
+        """Write a polynomial collected: c_0 + s·(c_1) + s²·(c_2) and so on."""
         parts: list[Expression] = []
         for power, terms in sorted(self.by_degree(polynomial).items()):
             parts.append(_times_power(self._sum(terms), Name(self.degree_name), power))

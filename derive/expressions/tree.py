@@ -79,9 +79,7 @@ class Elided:
     pointer: str
 
 
-Expression = (
-    Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided
-)
+Expression = Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided
 
 
 @dataclass(frozen=True, slots=True)

@@ -14,9 +14,7 @@ class Dimension:
     second: int = 0
 
     def __mul__(self, other: Dimension) -> Dimension:
-        return Dimension(
-            self.volt + other.volt, self.ohm + other.ohm, self.second + other.second
-        )
+        return Dimension(self.volt + other.volt, self.ohm + other.ohm, self.second + other.second)
 
     def __truediv__(self, other: Dimension) -> Dimension:
         return self * other**-1

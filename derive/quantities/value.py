@@ -187,9 +187,7 @@ class _Reading:
 def _exact(number: str, where: str) -> Fraction:
     digits, _, exponent = number.replace("E", "e").partition("e")
     # Judged by its length first: a huge exponent must be refused before it is computed.
-    if exponent and (
-        len(exponent.lstrip("+-").lstrip("0")) > 2 or abs(int(exponent)) > LARGEST_EXPONENT
-    ):
+    if exponent and (len(exponent.lstrip("+-").lstrip("0")) > 2 or abs(int(exponent)) > LARGEST_EXPONENT):
         raise InputError(
             f"the number {quoted(number)} has an exponent beyond ±{LARGEST_EXPONENT}",
             where=where,

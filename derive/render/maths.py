@@ -206,6 +206,8 @@ def _gather(
     inlines: dict[tuple[_Content, float], None] = {}
     displays: dict[Display, None] = {}
     for section in sheet.sections:
+        if section.about is not None:
+            inlines[section.about.content, PARAGRAPH_EM] = None
         for block in section.blocks:
             if isinstance(block, Display):
                 displays[block] = None

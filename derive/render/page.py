@@ -70,6 +70,7 @@ class Heading:
     number: str
     title: str
     level: int
+    about: Maths | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -101,6 +102,11 @@ class Page:
     def reason(self, line: Line) -> Markup:
         """Return the words at the side of a formula."""
         return self.words(line, REASON_EM)
+
+    def title(self, heading: Heading) -> Markup:
+        """Return the words of a heading, and what it is about."""
+        line: Line = (Text(heading.title),)
+        return self.words((*line, Text(" "), heading.about) if heading.about else line, PARAGRAPH_EM)
 
     def cell(self, line: Line, limit: float) -> Markup:
         """Return the words of a cell of a table whose formulas have this width in em."""
@@ -236,7 +242,7 @@ def groups(sections: tuple[Section, ...]) -> list[Group]:
         else:
             part += 1
         number = f"{main}" if section.level == 1 else f"{main}.{part}"
-        waiting.append(Heading(number, section.title, section.level + 1))
+        waiting.append(Heading(number, section.title, section.level + 1, section.about))
         if section.blocks:
             kept = _kept(section.blocks)
             made.append(Group(tuple(waiting), section.blocks[:kept], section.blocks[kept:]))

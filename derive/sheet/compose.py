@@ -53,6 +53,7 @@ def _sections(outcome: Outcome) -> tuple[Section, ...]:
     for module in before:
         sections += module.compose(outcome)
     for view in views(outcome):
+        sections += view.headline
         for module in own:
             sections += module.compose(view)
     for module in after:

@@ -102,11 +102,15 @@ Block = Paragraph | Display | Table | SourceText
 
 @dataclass(frozen=True, slots=True)
 class Section:
-    """A headed part of the sheet; `level` 1 is a main section, 2 a part of one."""
+    """A headed part of the sheet; `level` 1 is a main section, 2 a part of one.
+
+    `about` is set as maths behind the words of the title.
+    """
 
     title: str
     blocks: tuple[Block, ...]
     level: Literal[1, 2] = 1
+    about: Maths | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -38,6 +38,7 @@ def plain_outcome(outcome: Outcome, *, steps: bool = False) -> str:
     for name in BRIEF:
         lines += _sections(modules[name].compose(outcome))
     for view in views(outcome):
+        lines += _sections(view.headline)
         for name in STEPS if steps else RESULT:
             lines += _sections(modules[name].compose(view))
         lines += list(_verdicts(view))
@@ -47,7 +48,8 @@ def plain_outcome(outcome: Outcome, *, steps: bool = False) -> str:
 def _sections(sections: tuple[Section, ...]) -> list[str]:
     lines = []
     for section in sections:
-        lines += [section.title, "-" * len(section.title)]
+        title = section.title + (f" {_inline(section.about)}" if section.about else "")
+        lines += [title, "-" * len(title)]
         for block in section.blocks:
             lines += list(_block(block))
         lines.append("")

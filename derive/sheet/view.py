@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from derive.check.verdict import Outcome, Result
 from derive.devices.elements import Coupling
 from derive.eliminate.derivation import Step
-from derive.expressions.tree import Elided, Equation, Expression, Negative, Product, Quotient, Sum
+from derive.expressions.tree import Elided, Equation, Expression, Name, Negative, Product, Quotient, Sum
 from derive.quantities.dimension import (
     CURRENT,
     RESISTANCE,
@@ -16,6 +16,7 @@ from derive.quantities.dimension import (
     VOLTAGE,
     Dimension,
 )
+from derive.sheet.document import Block, Maths, Section
 from derive.sheet.wording import Wording
 
 # More unknowns than this, and long coefficients are shown by their leading terms.
@@ -43,9 +44,14 @@ class View:
         """Whether the sheet has no other result."""
         return len(self.outcome.results) == 1
 
-    def heading(self, words: str) -> str:
-        """Give a section's title, with the quantity's name where there are several."""
-        return words if self.alone else f"{self.name}: {words[:1].lower()}{words[1:]}"
+    def section(self, title: str, blocks: tuple[Block, ...]) -> Section:
+        """Give a section on this result: a main one, or a part of the derivation of one of several."""
+        return Section(title, blocks, 1 if self.alone else 2)
+
+    @property
+    def headline(self) -> tuple[Section, ...]:
+        """Give the heading over this result's sections, where there are several results."""
+        return () if self.alone else (Section("Derivation of", (), about=Maths(Name(self.name))),)
 
     def step(self, rule: str) -> Step | None:
         """Give the last step of a rule, or None."""

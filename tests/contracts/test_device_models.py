@@ -8,7 +8,6 @@ from derive.devices import models as folder
 from derive.devices.elements import Element
 from derive.devices.linearise import linearise
 from derive.devices.registry import models
-from derive.expressions.typst_maths import to_typst  # noqa: F401 - the station before must load
 from derive.topology.kinds import KINDS
 from derive.topology.read import parse
 

@@ -13,7 +13,5 @@ KIND = "transresistance"
 def linearise(part: Part, names: Names) -> Model:
     """Give the one element that the part is."""
     first, second = part.nodes("output")
-    element = Transresistance(
-        part.name, part.name, (first, second), part.senses_part or "", part.name
-    )
+    element = Transresistance(part.name, part.name, (first, second), part.senses_part or "", part.name)
     return Model((element,), (value_symbol(part, RESISTANCE, positive=False),))

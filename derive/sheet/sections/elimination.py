@@ -25,7 +25,7 @@ def compose(view: View) -> tuple[Section, ...]:
     if view.result.broken_steps:
         broken = "; ".join(f"({view.wording.label(n)}) {why}" for n, why in view.result.broken_steps)
         blocks.insert(0, Paragraph((Text(f"Steps whose proof failed: {broken}."),), "alarm"))
-    return (Section(view.heading("Elimination"), tuple(blocks)),)
+    return (view.section("Elimination", tuple(blocks)),)
 
 
 def _plan(view: View, plan: Plan) -> Table:

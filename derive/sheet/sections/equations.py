@@ -30,7 +30,7 @@ def compose(view: View) -> tuple[Section, ...]:
         form = matrix_form(system)
         reason = (Text("The same equations as a matrix, in the order in which they stand above."),)
         blocks.append(Display(Matrix(form.rows, form.unknowns, form.right), reason))
-    return (Section(view.heading("Equations of the circuit"), tuple(blocks)),)
+    return (view.section("Equations of the circuit", tuple(blocks)),)
 
 
 def _lead(view: View) -> Line:

@@ -11,9 +11,20 @@ from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.normalise.form import CertifiedRoot, NormalForm
 from derive.quantities.dimension import RATIO
-from derive.sheet.document import Block, Display, Line, Mark, Maths, Paragraph, Section, Text
+from derive.sheet.document import (
+    Block,
+    Display,
+    Inline,
+    Line,
+    Mark,
+    Maths,
+    Paragraph,
+    Section,
+    Text,
+)
 from derive.sheet.figures import decibels, figure, root_in_hertz
 from derive.sheet.view import View, gain_dimension, views
+from derive.topology.topology import GROUND
 
 ORDER = 10
 SCOPE = "sheet"
@@ -92,17 +103,20 @@ def _names(view: View, form: NormalForm) -> list[Block]:
 
 def _asked(view: View) -> Line:
     find = view.result.solution.derivation.system.find
-    if find.quantity == "impedance" and find.nodes:
-        plus, minus = find.nodes
+    plus, minus = find.nodes or ("", "")
+    if find.quantity == "impedance":
         return (Text(f"Impedance seen between {plus} and {minus}, all drives at zero."),)
-    what = f"Current through {find.part}" if find.quantity == "current" else _voltage(find.nodes)
-    per = ", ".join(f"{name} × {weight}" if weight != 1 else name for name, weight in find.per)
-    return (Text(f"{what}, per {per}."),)
-
-
-def _voltage(nodes: tuple[str, str] | None) -> str:
-    plus, minus = nodes or ("", "")
-    return f"Voltage of {plus}" if minus == "gnd" else f"Voltage of {plus} against {minus}"
+    if find.quantity == "current":
+        what: Line = Text("Current through "), Maths(Name(find.part or ""))
+    else:
+        against = "" if minus == GROUND else f" against {minus}"
+        what = (Text(f"Voltage of {plus}{against}"),)
+    line: list[Inline] = [*what, Text(", per ")]
+    for place, (name, weight) in enumerate(find.per):
+        line.append(Text(", " if place else ""))
+        line.append(Maths(Name(name)))
+        line.append(Text(f" × {weight}".replace("-", "−") if weight != 1 else ""))
+    return (*line, Text("."))
 
 
 def _numbers(view: View, form: NormalForm) -> Line:

@@ -16,7 +16,7 @@ def compose(view: View) -> tuple[Section, ...]:
     solution = view.result.solution
     if solution.form.is_zero:
         words = "The response is identically zero; there is no gain to factor out."
-        return (Section(view.heading("Normal form"), (Paragraph((Text(words),)),)),)
+        return (view.section("Normal form", (Paragraph((Text(words),)),)),)
     steps = solution.derivation.steps
     blocks: list[Block] = [numbered(view, step) for step in steps if step.rule in NORMALISING]
-    return (Section(view.heading("Normal form"), tuple(blocks)),)
+    return (view.section("Normal form", tuple(blocks)),)

@@ -38,7 +38,7 @@ def compose(view: View) -> tuple[Section, ...]:
                 "them the response is simpler, but only as long as the values match exactly."
             )
             blocks.append(Paragraph((Text(words),), "note"))
-    return (Section(view.heading("Poles and zeros"), tuple(blocks)),) if blocks else ()
+    return (view.section("Poles and zeros", tuple(blocks)),) if blocks else ()
 
 
 def _row(kind: str, root: CertifiedRoot) -> tuple[Line, ...]:

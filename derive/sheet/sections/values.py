@@ -22,7 +22,7 @@ def compose(view: View) -> tuple[Section, ...]:
         return ()
     blocks: list[Block] = [_values(view, numbers)]
     blocks += [Paragraph((Text(note),), "note") for note in _notes(numbers)]
-    return (Section(view.heading("Numeric values"), tuple(blocks)),)
+    return (view.section("Numeric values", tuple(blocks)),)
 
 
 def _values(view: View, numbers: NominalNumbers) -> Table:

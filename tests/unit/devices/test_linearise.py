@@ -1,9 +1,10 @@
 """What parts become: elements with the part they came from, and symbols with value and origin."""
 
+from dataclasses import replace
 from fractions import Fraction
 
 import pytest
-from road import DRIVE, circuit_of
+from road import DRIVE, circuit_of, topology_of
 
 from derive.devices.elements import (
     Capacitor,
@@ -20,7 +21,10 @@ from derive.devices.registry import models
 from derive.errors import InputError
 from derive.quantities.dimension import CAPACITANCE, FREQUENCY, RATIO, RESISTANCE
 
-ENDS = 'R_a = { resistor = "1k", between = ["in", "out"] }\nR_b = { resistor = "1k", between = ["out", "gnd"] }'
+ENDS = (
+    'R_a = { resistor = "1k", between = ["in", "out"] }\n'
+    'R_b = { resistor = "1k", between = ["out", "gnd"] }'
+)
 
 
 def named(circuit):
@@ -61,13 +65,15 @@ def test_a_controlled_source_may_have_either_sign():
     assert not named(circuit)["g"].positive
 
 
-OPAMP = 'U1 = {{ opamp = true, output = "x", inputs = ["in", "out"]{0} }}\nR_x = {{ resistor = "1k", between = ["x", "out"] }}'
+OPAMP = (
+    'U1 = {{ opamp = true, output = "x", inputs = ["in", "out"]{0} }}\n'
+    'R_x = {{ resistor = "1k", between = ["x", "out"] }}'
+)
 
 
 @pytest.mark.parametrize(
     ("given", "expected"),
     [
-        ("", VirtualShort("U1", "U1", "x", ("in", "out"))),
         (', A_0 = "1e5"', OnePoleGain("U1", "U1", "x", ("in", "out"), "A_0", None)),
         (', w_unity = "1e7 rad/s"', OnePoleGain("U1", "U1", "x", ("in", "out"), None, "w_u")),
         (
@@ -81,8 +87,16 @@ def test_an_op_amp_is_what_is_given_of_it(given, expected):
     assert [element for element in circuit.elements if element.part == "U1"] == [expected]
 
 
+def test_an_op_amp_of_which_nothing_is_given_is_ideal():
+    topology = topology_of(f"{ENDS}\n{OPAMP.format(', A_0 = 1e5')}".replace("1e5", "'1e5'"))
+    parts = tuple(replace(part, parameters=()) for part in topology.parts)
+    circuit = linearise(replace(topology, parts=parts))
+    assert circuit.elements[2] == VirtualShort("U1", "U1", "x", ("in", "out"))
+
+
 def test_the_unity_gain_frequency_becomes_two_pi_times_it():
-    symbol = named(circuit_of(f"{ENDS}\n{OPAMP.format(', f_unity = ' + chr(34) + '1 MHz' + chr(34))}"))["w_u"]
+    given = ", f_unity = '1 MHz'"
+    symbol = named(circuit_of(f"{ENDS}\n{OPAMP.format(given)}"))["w_u"]
     assert symbol.dimension == FREQUENCY
     # 2π to 25 digits, from memory: 6.283185307179586476925287
     assert abs(symbol.value / 10**6 - Fraction("6.283185307179586476925287")) < Fraction(1, 10**24)
@@ -90,9 +104,8 @@ def test_the_unity_gain_frequency_becomes_two_pi_times_it():
 
 
 def test_op_amp_resistances_stand_at_its_input_and_behind_an_inner_node():
-    circuit = circuit_of(
-        f"{ENDS}\n{OPAMP.format(', A_0 = ' + repr('1e5') + ', R_in = ' + repr('2M') + ', R_out = ' + repr('75R'))}"
-    )
+    given = ", A_0 = '1e5', R_in = '2M', R_out = '75R'"
+    circuit = circuit_of(f"{ENDS}\n{OPAMP.format(given)}")
     gain, r_in, r_out = (element for element in circuit.elements if element.part == "U1")
     assert gain.output == "U1_in"
     assert r_in == Resistor("U1.R_in", "U1", ("in", "out"), "R_in")
