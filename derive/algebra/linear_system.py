@@ -21,7 +21,7 @@ from derive.algebra.common_factor import (
     remove_common_monomial,
 )
 from derive.algebra.coprime import coprime
-from derive.algebra.minors import Minors
+from derive.algebra.minors import Minors, refuse_large
 from derive.algebra.ring import Polynomial, Ring, used_names
 from derive.algebra.sensitivity import idle_names
 from derive.errors import SingularError
@@ -95,6 +95,8 @@ def raw_quotient(ring: Ring, rows: Sequence[Row]) -> tuple[Polynomial, Polynomia
     Nothing is cancelled but what the sum of all rows saves.
     """
     size = len(rows)
+    if size >= SHORTENING_SIZE:
+        refuse_large(rows)
     minors = Minors(ring, _shortened(rows))
     all_columns = (1 << size) - 1
     denominator = minors.minor(all_columns, all_columns)

@@ -7,8 +7,11 @@ to eight rows with distinct symbols this road is two to three orders of magnitud
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
+
+from flint import fmpz_mat
 
 from derive.algebra.ring import Polynomial, Ring
 from derive.errors import TooLargeError
@@ -67,6 +70,28 @@ class Minors:
                 if len(total) > self.limit:
                     raise too_large(self.limit)
         return self.ring.zero if total is None else total
+
+
+def refuse_large(rows: Sequence[Mapping[int, Polynomial]], limit: int = TERM_LIMIT) -> None:
+    """Refuse a square matrix (further columns are not looked at) whose determinant is surely too long.
+
+    With every generator at one, a determinant adds up its coefficients. Where these are 1 and -1, as
+    they are where each generator stands for one thing, it has at least as many terms; the margin of ten
+    leaves room for others. A small sum proves nothing: then the expansion itself keeps count.
+
+    Raises: TooLargeError.
+    """
+    size = len(rows)
+    dense = [[_sum(row, column) for column in range(size)] for row in rows]
+    for row, entries in zip(dense, rows, strict=True):
+        shared = math.gcd(*(int(value) for entry in entries.values() for value in entry.coeffs()))
+        row[:] = [value // (shared or 1) for value in row]
+    if abs(int(fmpz_mat(dense).det())) > 10 * limit:
+        raise too_large(limit)
+
+
+def _sum(row: Mapping[int, Polynomial], column: int) -> int:
+    return sum(int(value) for value in row[column].coeffs()) if column in row else 0
 
 
 def too_large(limit: int) -> TooLargeError:

@@ -14,7 +14,7 @@ from functools import reduce
 
 from derive.algebra.common_factor import remove_common_factor
 from derive.algebra.exchange import exchange
-from derive.algebra.minors import Minors, too_large
+from derive.algebra.minors import Minors, refuse_large, too_large
 from derive.algebra.ring import Polynomial, Ring, common_monomial, negative
 from derive.eliminate.derivation import Plan
 from derive.nodal.system import NodalSystem
@@ -74,6 +74,7 @@ class RowBook:
         equations = tuple(line.equation for line in plan.lines)
         common = reduce(math.lcm, (weight.denominator for _, weight in system.weights), 1)
         rows = [input_row(system, unknowns, common, index) for index in equations]
+        refuse_large(rows)
         return RowBook(system, unknowns, equations, common, Minors(system.ring, rows))
 
     def row(self, equation: int, done: int) -> Row:

@@ -1,4 +1,4 @@
-"""Parts, drives, nodes and wanted quantities may bear any name, that of a function or a number among them."""
+"""Parts, drives, nodes and wanted quantities may bear any name, that of a function among them."""
 
 from __future__ import annotations
 

@@ -133,7 +133,7 @@ def _coefficients(solution: Solution, values: dict[str, Fraction]) -> Ratio:
         # The lowest coefficient vanishes at these values: only the unnormalised ratio is left.
         if numbers is None:
             raise
-        return list(numbers.top), list(numbers.bottom), 0
+        return list(numbers.top), list(numbers.bottom), int(form.power_of_s)
 
 
 def _response(

@@ -6,7 +6,7 @@ import pytest
 import sympy
 from sympy_bridge import matrix_of, to_sympy
 
-from derive.algebra.minors import Minors
+from derive.algebra.minors import Minors, refuse_large
 from derive.algebra.ring import ring
 from derive.errors import TooLargeError
 
@@ -82,3 +82,30 @@ def test_one_product_too_large_is_refused_before_it_is_formed():
     with pytest.raises(TooLargeError):
         Minors(r, [{0: long}, {1: other}], limit=399).minor(0b11, 0b11)
     assert len(Minors(r, [{0: long}, {1: other}], limit=400).minor(0b11, 0b11)) == 1_600
+
+
+def complete(size):
+    """A network in which every pair is joined, and each to ground: its determinant counts trees."""
+    names = [f"y{i}_{j}" for i in range(size) for j in range(i + 1, size + 1)]
+    r = ring(names)
+    rows = [{k: r.zero for k in range(size)} for _ in range(size)]
+    for i in range(size):
+        for j in range(i + 1, size + 1):
+            y = r.generator(f"y{i}_{j}")
+            rows[i][i] += y
+            if j < size:
+                rows[j][j] += y
+                rows[i][j] -= y
+                rows[j][i] -= y
+    return r, rows
+
+
+def test_a_determinant_surely_too_long_is_refused_without_forming_a_minor():
+    # Cayley's formula: a complete graph of n points has n^(n-2) spanning trees, 6^4 for five and ground.
+    r, rows = complete(5)
+    assert len(Minors(r, rows).minor(0b11111, 0b11111)) == 6**4
+    refuse_large(rows, limit=130)
+    with pytest.raises(TooLargeError, match="more than 129 terms"):
+        refuse_large(rows, limit=129)
+    # A number in all of a row lengthens nothing.
+    refuse_large([{column: entry * 60 for column, entry in row.items()} for row in rows], limit=130)
