@@ -95,7 +95,8 @@ def _replay(solution: Solution, point: Point) -> tuple[tuple[int, str], ...]:
             if step.defines is not None:
                 _define(step, point, stated)
             _judge_step(step, done, point)
-            _judge_definition(step, form, point)
+            if step.defines not in stated:
+                _judge_definition(step, form, point)
             if step.equation.left == Name(system.find.name) and step.defines is None:
                 reached = _gives_form(step, form, point)
         except (StepError, DeriveError) as error:
