@@ -54,7 +54,7 @@ def kind(request):
 def test_every_file_of_the_folder_is_a_model_of_the_kind_of_its_name():
     files = sorted(module.name for module in pkgutil.iter_modules(folder.__path__))
     assert files == sorted(models())
-    assert all(models()[name].KIND == name for name in files)
+    assert all(name == models()[name].KIND for name in files)
 
 
 def test_every_model_is_of_a_kind_that_a_topology_may_name(kind):

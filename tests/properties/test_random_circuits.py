@@ -6,12 +6,17 @@ import random
 from functools import cache
 
 import pytest
+from circuits import random_text
 from comparison import Comparison, compare, random_point
 from ledger_arithmetic import PRIME
 from modular_solver import Circuit
 
+from derive.errors import InputError
+from derive.topology.read import parse
+
 COUNT, BATCH = 500, 25
 SEED = 2_000_000
+DRAFTS = 600
 
 
 @cache
@@ -57,6 +62,25 @@ def test_random_circuits_are_of_every_kind_and_some_have_no_solution():
     text = "".join(circuit.text for circuit in every)
     for words in ("impedance = ", "current = ", "voltage = [", 'A_0 = "', 'R_out = "', "per = {"):
         assert words in text
+
+
+# What the reader says of circuits that have no unique solution, for any values of their parts.
+NO_SOLUTION = ("form a loop of voltage sources", "has no feedback", "share the output")
+
+
+def test_reader_calls_only_those_circuits_unsolvable_that_are():
+    chance = random.Random(SEED)
+    refused = 0
+    for _ in range(DRAFTS):
+        text = random_text(chance)
+        try:
+            parse(text, "draft.toml")
+        except InputError as error:
+            if any(words in error.what for words in NO_SOLUTION):
+                refused += 1
+                circuit = Circuit(text)
+                assert circuit.solve(*random_point(circuit, chance)) is None, text
+    assert refused >= DRAFTS // 20
 
 
 DIVIDER = """[sheet]

@@ -70,7 +70,8 @@ def equal(one, other) -> bool:
     first, second = (parse_expression(side) if isinstance(side, str) else side for side in (one, other))
     names = sorted({*names_of(first), *names_of(second)})
     return all(
-        evaluate(first, values, Fraction) == evaluate(second, values, Fraction) for values in points(names)
+        evaluate(first, values, Fraction) == evaluate(second, values, Fraction)
+        for values in points(names)
     )
 
 

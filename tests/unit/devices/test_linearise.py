@@ -135,11 +135,12 @@ def test_an_inner_node_never_meets_a_node_of_the_user():
 
 
 def test_a_devices_symbol_may_not_be_another_parts_name():
-    with pytest.raises(InputError, match=r"part U1: its symbol A_0 is also the name of another item") as told:
+    with pytest.raises(
+        InputError, match=r"part U1: its symbol A_0 is also the name of another item"
+    ) as told:
         circuit_of(
             'A_0 = { resistor = "1k", between = ["in", "out"] }\n'
-            'R_b = { resistor = "1k", between = ["out", "gnd"] }\n'
-            + OPAMP.format(", A_0 = '1e5'")
+            'R_b = { resistor = "1k", between = ["out", "gnd"] }\n' + OPAMP.format(", A_0 = '1e5'")
         )
     assert told.value.where == "test.toml:8"
     assert told.value.cure

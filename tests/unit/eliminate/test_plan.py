@@ -1,18 +1,20 @@
-"""The order of elimination: what is sought comes last, no pivot vanishes, and a hopeless circuit says why."""
+"""The order of elimination: what is sought comes last, no pivot vanishes, a hopeless circuit says why."""
+
+from dataclasses import replace
+from itertools import pairwise
 
 import pytest
 import sympy
-from road import circuit_of, derivation_of, system_of, topology_of
+from road import circuit_of, derivation_of, system_of
 
-from derive.devices.linearise import linearise
 from derive.eliminate.plan import plan
-from derive.errors import SingularError, TooLargeError
-from derive.nodal.write import write_equations
+from derive.errors import DeriveError, SingularError, TooLargeError
 
+CHAIN = ("in", "n1", "n2", "n3", "n4", "n5", "out")
 LADDER = "\n".join(
-    f'R_{k} = {{ resistor = "1k", between = ["{"in" if k == 1 else f"n{k - 1}"}", "{"out" if k == 6 else f"n{k}"}"] }}\n'
-    f'C_{k} = {{ capacitor = "1n", between = ["{"out" if k == 6 else f"n{k}"}", "gnd"] }}'
-    for k in range(1, 7)
+    f'R_{b} = {{ resistor = "1k", between = ["{a}", "{b}"] }}\n'
+    f'C_{b} = {{ capacitor = "1n", between = ["{b}", "gnd"] }}'
+    for a, b in pairwise(CHAIN)
 )
 
 
@@ -65,15 +67,6 @@ def test_the_plan_is_the_same_every_time():
     assert plan(system_of(LADDER)) == plan(system_of(LADDER))
 
 
-def unchecked(parts):
-    """Give the equations of a circuit that the reader itself would refuse."""
-    good = topology_of('R_1 = { resistor = "1k", between = ["in", "out"] }\nR_2 = { resistor = "1k", between = ["out", "gnd"] }')
-    from dataclasses import replace
-
-    wanted = topology_of(parts, find='voltage = "in"\nper = "V_s"')
-    return write_equations(linearise(replace(wanted, finds=good.finds)), good.finds[0])
-
-
 UNITY_LOOP = """
 R_1 = { resistor = "1k", between = ["in", "a"] }
 A_1 = { voltage_gain = "2", output = ["b", "gnd"], senses = ["a", "gnd"] }
@@ -84,8 +77,6 @@ R_2 = { resistor = "1k", between = ["out", "gnd"] }
 
 def test_a_circuit_without_a_solution_names_what_is_left_open():
     # The op amp wants v_b = v_a, the gain stage v_b = A·v_a; nothing ties the op amp's output.
-    from derive.errors import DeriveError
-
     with pytest.raises(DeriveError) as told:
         plan(system_of(UNITY_LOOP))
     assert "out" in str(told.value)
@@ -94,8 +85,6 @@ def test_a_circuit_without_a_solution_names_what_is_left_open():
 
 def test_an_open_quantity_names_the_find_its_place_and_a_cure():
     system = system_of(LADDER)
-    from dataclasses import replace
-
     # The same law twice: one node is left without an equation of its own.
     twice = replace(system, equations=(*system.equations[:-1], system.equations[0]))
     with pytest.raises(SingularError, match="no unique solution for H: its equations leave open") as told:

@@ -7,8 +7,9 @@ import pytest
 import sympy
 from road import derivation_of, solution_of
 
+from derive.eliminate import rows
 from derive.eliminate.derivation import Certificate
-from derive.expressions.tree import Equation, Name, Number, Sum
+from derive.expressions.tree import ONE, Equation, Name, Number, Sum
 from derive.expressions.walk import evaluate, names_of
 from derive.sheet.wording import SENTENCES
 
@@ -62,20 +63,19 @@ R_4 = { resistor = "1k", between = ["b", "gnd"] }
 R_5 = { resistor = "1k", between = ["a", "b"] }
 """
 PAIR = 'V_s = { voltage = ["in", "gnd"] }\nV_2 = { voltage = ["in2", "gnd"] }'
-SUMMING = 'R_1 = { resistor = "1k", between = ["in", "out"] }\nR_2 = { resistor = "1k", between = ["in2", "out"] }'
-# Two sections whose time constants meet in one node only by way of the op amp: the second half of the
-# circuit stands in the equations, but cancels from the ratio sought.
-BYSTANDER = """
+SUMMING = """
 R_1 = { resistor = "1k", between = ["in", "out"] }
-R_2 = { resistor = "1k", between = ["out", "gnd"] }
-R_3 = { resistor = "1k", between = ["in", "x"] }
-C_3 = { capacitor = "1n", between = ["x", "gnd"] }
-R_4 = { resistor = "1k", between = ["x", "y"] }
-C_4 = { capacitor = "1n", between = ["y", "gnd"] }
-g_m = { transconductance = "1 mS", flows = ["y", "gnd"], senses = ["out", "gnd"] }
+R_2 = { resistor = "1k", between = ["in2", "out"] }
+"""
+# No current flows in the feedback branch, whose admittance so cancels from the ratio.
+BUFFER = """
+R_f = { resistor = "1k", between = ["m", "out"] }
+C_f = { capacitor = "1n", between = ["m", "out"] }
+U = { ideal_opamp = true, output = "out", inputs = ["in", "m"] }
+R_L = { resistor = "1k", between = ["out", "gnd"] }
 """
 WITNESSES = {
-    "bystander": (BYSTANDER, {}),
+    "buffer": (BUFFER, {}),
     "low-pass": (DIVIDER, {}),
     "amplifying stage": (STAGE, {}),
     "ladder": (LADDER, {}),
@@ -174,9 +174,14 @@ def test_numerator_and_denominator_are_the_whole_systems_solution_in_sympy(deriv
     system = derived.system
     names = [sympy.Symbol(unknown.name) for unknown in system.unknowns]
     given = {
-        sympy.Symbol(name): sympy.Rational(weight.numerator, weight.denominator) for name, weight in system.weights
+        sympy.Symbol(name): sympy.Rational(weight.numerator, weight.denominator)
+        for name, weight in system.weights
     }
-    drives = {sympy.Symbol(drive.name): 0 for drive in system.small_signal.drives if sympy.Symbol(drive.name) not in given}
+    drives = {
+        sympy.Symbol(drive.name): 0
+        for drive in system.small_signal.drives
+        if sympy.Symbol(drive.name) not in given
+    }
     laws = [gap(entry.equation).subs({**given, **drives}) for entry in system.equations]
     solved = sympy.solve(laws, names, dict=True)[0][sympy.Symbol(system.wanted)]
     ring = system.ring.plain()
@@ -193,15 +198,31 @@ def test_numerator_and_denominator_are_the_whole_systems_solution_in_sympy(deriv
     assert sympy.gcd(*sympy.fraction(ratio)) == 1
 
 
-def test_every_rule_occurs_in_some_witness():
-    seen = {step.rule for parts, more in WITNESSES.values() for step in solution_of(parts, **more)[1].steps}
+def test_a_factor_not_sought_in_long_rows_is_cancelled_at_the_end(monkeypatch):
+    monkeypatch.setattr(rows, "FACTOR_LIMIT", 0)
+    derivation = derivation_of(BUFFER)
+    last = derivation.steps[-1]
+    assert last.rule == "reduce the ratio"
+    assert follows(last, derivation)
+    assert last.equation.right == ONE
+    assert names_of(derivation.steps[-2].equation.right) == ("s", "R_f", "C_f")
+
+
+def test_every_rule_occurs_in_some_witness(monkeypatch):
+    seen = {
+        step.rule for parts, more in WITNESSES.values() for step in solution_of(parts, **more)[1].steps
+    }
+    monkeypatch.setattr(rows, "FACTOR_LIMIT", 0)
+    seen |= {step.rule for step in derivation_of(BUFFER).steps}
     assert sorted(set(SENTENCES) - seen) == []
 
 
 def test_a_zero_response_still_ends_in_a_ratio():
     derivation = derivation_of(
-        'R_1 = { resistor = "1k", between = ["in", "gnd"] }\nR_2 = { resistor = "1k", between = ["out", "gnd"] }\n'
-        'R_3 = { resistor = "1k", between = ["out", "x"] }\nR_4 = { resistor = "1k", between = ["x", "gnd"] }'
+        'R_1 = { resistor = "1k", between = ["in", "gnd"] }\n'
+        'R_2 = { resistor = "1k", between = ["out", "gnd"] }\n'
+        'R_3 = { resistor = "1k", between = ["out", "x"] }\n'
+        'R_4 = { resistor = "1k", between = ["x", "gnd"] }'
     )
     assert derivation.numerator == 0
     assert derivation.denominator == 1
