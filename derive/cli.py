@@ -7,6 +7,7 @@ not be written. Results go to standard output; progress and messages to standard
 from __future__ import annotations
 
 import argparse
+import contextlib
 import io
 import os
 import sys
@@ -28,23 +29,43 @@ BAND = "full"
 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command and give the exit status."""
+    _open_closed_streams()
     options = _parser().parse_args(arguments)
     _never_stumble_over_letters()
     try:
-        return int(options.run(options))
+        status = int(options.run(options))
+        sys.stdout.flush()
+        return status
     except DeriveError as error:
         print(f"nodeledger: {error}", file=sys.stderr)
     except (RecursionError, MemoryError):
         print("nodeledger: the circuit is too large to be worked on this machine", file=sys.stderr)
     except BrokenPipeError:
-        # The reader of our output is gone; point the stream elsewhere so that closing it is quiet.
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        _turn_output_away()
+    except OSError as error:
+        _turn_output_away()
+        reason = error.strerror or str(error)
+        print(f"nodeledger: the results cannot be printed: {reason}; print elsewhere", file=sys.stderr)
     except KeyboardInterrupt:
         print("nodeledger: stopped", file=sys.stderr)
     except Exception as error:  # noqa: BLE001 - a defect of ours must not show a user a traceback
         print(f"nodeledger: internal error: {type(error).__name__}: {error}", file=sys.stderr)
         print("nodeledger: this is a defect of the program, not of your file", file=sys.stderr)
     return UNUSABLE
+
+
+def _open_closed_streams() -> None:
+    """Give a stream that was closed before we began somewhere to go, so that nothing trips over it."""
+    if sys.stdout is None:
+        sys.stdout = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115 - kept to the end
+    if sys.stderr is None:
+        sys.stderr = Path(os.devnull).open("w", encoding="utf-8")  # noqa: SIM115 - kept to the end
+
+
+def _turn_output_away() -> None:
+    """Point standard output elsewhere when its reader is gone, so that closing it is quiet."""
+    with contextlib.suppress(OSError, ValueError):
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 def _never_stumble_over_letters() -> None:

@@ -57,9 +57,9 @@ class Names:
         alike = [other for other in self.topology.parts if other.kind == part.kind]
         return symbol if len(alike) == 1 else symbol + part.name[1:]
 
-    def inner_node(self, part: Part) -> str:
-        """Give a node inside a part, under a name that no node of the topology bears."""
-        name = f"{part.name}_in"
+    def inner_node(self, part: Part, word: str) -> str:
+        """Give a node inside a part, under a name with this word that no node of the topology bears."""
+        name = f"{part.name}_{word}"
         while name in self.nodes:
             name += "_"
         return name

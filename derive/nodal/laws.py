@@ -85,14 +85,16 @@ def _one_pole(element: OnePoleGain, branches: Branches) -> NodalEquation:
     sensed = branches.voltages.between(*element.inputs)
     if element.dc_gain is None and element.unity is not None:
         left = output.times((divide(Name("s"), Name(element.unity)),), s * ring.generator(element.unity))
-        return _equal(f"output of op amp {element.part}: gain w_u/s", left, sensed)
+        meaning = f"output of op amp {element.part}: an integrator with a gain of one at {element.unity}"
+        return _equal(meaning, left, sensed)
     if element.dc_gain is None:
         raise ValueError(f"op amp {element.part} has no gain")
     gain = ring.generator(element.dc_gain)
     right = sensed.times((Name(element.dc_gain),), gain)
     if element.unity is None:
-        return _equal(f"output of op amp {element.part}: its gain is A_0", output, right)
+        return _equal(f"output of op amp {element.part}: its gain is {element.dc_gain}", output, right)
     lag = divide(multiply([Name("s"), Name(element.dc_gain)]), Name(element.unity))
     entry = ring.one + s * gain * ring.generator(element.unity)
     left = output.times((Sum((ONE, lag)),), entry)
-    return _equal(f"output of op amp {element.part}: one-pole gain", left, right)
+    pole = f"{element.dc_gain} at low frequency, one pole, a gain of one about {element.unity}"
+    return _equal(f"output of op amp {element.part}: {pole}", left, right)

@@ -24,7 +24,8 @@ def decibels(value: Fraction | None) -> str:
         return ""
     # Logarithms of the integers, because a quotient of huge integers need not fit a float.
     size = math.log10(abs(value.numerator)) - math.log10(value.denominator)
-    return f"{20 * size:.2f} dB".replace("-", "−")
+    # Rounded first, so that no level reads −0.00 dB.
+    return f"{round(20 * size, 2) + 0.0:.2f} dB".replace("-", "−")
 
 
 def root_in_hertz(root: CertifiedRoot) -> str:

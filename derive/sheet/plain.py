@@ -73,7 +73,7 @@ def _display(block: Display) -> Iterator[str]:
     if isinstance(content, Matrix):
         return
     text = equation_text(content) if isinstance(content, Equation) else to_unicode(content)
-    yield f"{label:<6}{text}" if label else f"  {text}"
+    yield f"{label:<5} {text}" if label else f"  {text}"
     if block.reason and label:
         yield f"      {line_text(block.reason)}"
 

@@ -139,7 +139,8 @@ def _law(wording: Wording, step: Step) -> Line:
 
 def _multiply_out(wording: Wording, step: Step) -> Line:
     used = _used(wording, step)
-    return (used, *_times(step.factor, "a factor"), Text(" multiplied out and collected."))
+    head = (used, *_times(step.factor, "a factor"), Text(" multiplied out and collected."))
+    return (*head, *_not_zero(step.nonzero))
 
 
 def _times(factor: Expression | None, otherwise: str) -> Line:
@@ -191,6 +192,8 @@ def _cancel(wording: Wording, step: Step) -> Line:
 
 def _form_ratio(wording: Wording, step: Step) -> Line:
     system = wording.derivation.system
+    if step.certificate and step.certificate.divisor == Name(system.input):
+        return _used(wording, step), Text(" divided by "), Maths(Name(system.input)), Text(".")
     divided = Text(" divided by the coefficient of ")
     head: Line = (_used(wording, step), divided, Maths(Name(system.wanted)), Text(" and by "))
     return (*head, Maths(Name(system.input)), Text("."), *_not_zero(step.nonzero))

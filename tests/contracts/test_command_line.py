@@ -10,11 +10,13 @@ import pty
 import re
 import subprocess
 import sys
+from functools import partial
 from pathlib import Path
 
 import malformed_topologies as table
 import pytest
 
+import derive.batch
 import derive.pipeline
 import derive.progress
 from derive.cli import main
@@ -42,6 +44,18 @@ def refused(capsys, *arguments):
     assert "Traceback" not in err
     assert "internal" not in err
     return err.removeprefix("nodeledger: ").rstrip("\n")
+
+
+@pytest.fixture
+def alone(monkeypatch):
+    """Work without the other engine, which takes its time and is not what is looked at."""
+    monkeypatch.setattr(derive.batch, "derive", partial(derive.pipeline.derive, other_engine=False))
+
+
+@pytest.fixture
+def nothing_begins(monkeypatch):
+    """Fail where any topology is worked."""
+    monkeypatch.setattr(derive.batch, "derive", lambda *_, **__: pytest.fail("work was begun"))
 
 
 def in_a_process(*arguments, cwd, **environment):
@@ -108,7 +122,7 @@ def test_code_in_place_of_a_value_is_refused_as_text_and_does_not_run(
     assert os.listdir() == ["bad.toml"]
 
 
-def test_code_in_a_title_is_printed_as_it_stands(tmp_path, monkeypatch, capsys):
+def test_code_in_a_title_is_printed_as_it_stands(alone, tmp_path, monkeypatch, capsys):
     monkeypatch.chdir(tmp_path)
     title = "<script>x</script> {{ 7*7 }} #eval(1) $(mkdir ran)"
     Path("good.toml").write_text(table.GOOD.replace("Stage", title), encoding="utf-8")
@@ -137,22 +151,25 @@ def test_file_name_that_no_system_can_hold_is_refused(capsys):
     refused(capsys, "show", "a\0b")
 
 
-def test_two_inputs_of_one_name_are_refused_before_any_work(good, tmp_path, monkeypatch, capsys):
+def test_two_inputs_of_one_name_are_refused_before_any_work(good, tmp_path, nothing_begins, capsys):
     twin = tmp_path / "good" / "topology.toml"
     twin.parent.mkdir()
     twin.write_text(table.GOOD, encoding="utf-8")
-    monkeypatch.setattr(derive.pipeline, "derive", lambda *_, **__: pytest.fail("work was begun"))
     message = refused(capsys, "sheet", good, twin, "--out", tmp_path / "out")
     assert f"{good} and {twin} would both be written as good" in message
     assert not (tmp_path / "out").exists()
 
 
-def test_one_bad_file_among_good_ones_stops_all_before_any_work(good, tmp_path, monkeypatch, capsys):
+def test_one_bad_file_among_good_ones_stops_all_before_any_work(good, tmp_path, nothing_begins, capsys):
     bad = tmp_path / "bad.toml"
     bad.write_text(table.GOOD.replace("1k", "1q"), encoding="utf-8")
-    monkeypatch.setattr(derive.pipeline, "derive", lambda *_, **__: pytest.fail("work was begun"))
     assert str(bad) in refused(capsys, "sheet", good, bad, "--out", tmp_path / "out")
     assert not (tmp_path / "out").exists()
+
+
+def test_work_that_begins_would_be_seen(good, tmp_path, nothing_begins):
+    with pytest.raises(pytest.fail.Exception, match="work was begun"):
+        main(["sheet", str(good), "--out", str(tmp_path / "out")])
 
 
 @pytest.mark.parametrize("kinds", ["docx", "html,docx", "", ",", "HTML"])
@@ -200,7 +217,7 @@ def test_sheets_go_to_the_folder_sheets_under_stem_or_folder_name(good, tmp_path
     assert "7 of 7 passed" in out
 
 
-def test_topology_in_the_folder_one_is_in_takes_that_folders_name(tmp_path, monkeypatch):
+def test_topology_in_the_folder_one_is_in_takes_that_folders_name(alone, tmp_path, monkeypatch):
     stage = tmp_path / "stage"
     stage.mkdir()
     (stage / "topology.toml").write_text(table.GOOD, encoding="utf-8")
@@ -209,13 +226,15 @@ def test_topology_in_the_folder_one_is_in_takes_that_folders_name(tmp_path, monk
     assert sorted(os.listdir()) == ["stage.json", "topology.toml"]
 
 
-def test_only_writes_what_was_asked_for(good, tmp_path):
+def test_only_writes_what_was_asked_for(alone, good, tmp_path):
     out = tmp_path / "out"
     assert main(["sheet", str(good), "--out", str(out), "--only", "json, html"]) == 0
     assert sorted(os.listdir(out)) == ["good.html", "good.json"]
 
 
-def test_progress_goes_to_standard_error_and_quiet_silences_it(good, tmp_path, monkeypatch, capsys):
+def test_progress_goes_to_standard_error_and_quiet_silences_it(
+    alone, good, tmp_path, monkeypatch, capsys
+):
     monkeypatch.setattr(derive.progress, "PATIENCE_SECONDS", -1.0)
     command = ["sheet", str(good), "--out", str(tmp_path / "out"), "--only", "json"]
     assert main(command) == 0
@@ -261,7 +280,7 @@ def test_two_processes_write_the_same_bytes(tmp_path):
     assert written[0]["echo_preamp.pdf"].startswith(b"%PDF-")
 
 
-def test_file_where_the_folder_should_be_is_refused_and_left_alone(good, tmp_path, capsys):
+def test_file_where_the_folder_should_be_is_refused_and_left_alone(alone, good, tmp_path, capsys):
     out = tmp_path / "out"
     out.write_text("mine", encoding="utf-8")
     message = refused(capsys, "sheet", good, "--out", out, "--only", "json", "--quiet")
@@ -271,7 +290,7 @@ def test_file_where_the_folder_should_be_is_refused_and_left_alone(good, tmp_pat
     refused(capsys, "sheet", good, "--out", out / "deeper", "--only", "json", "--quiet")
 
 
-def test_folder_where_a_file_should_be_is_refused_and_nothing_is_written(good, tmp_path, capsys):
+def test_folder_where_a_file_should_be_is_refused_and_nothing_is_written(alone, good, tmp_path, capsys):
     out = tmp_path / "out"
     (out / "good.json").mkdir(parents=True)
     assert "good.json" in refused(capsys, "sheet", good, "--out", out, "--only", "html,json", "--quiet")
@@ -279,7 +298,9 @@ def test_folder_where_a_file_should_be_is_refused_and_nothing_is_written(good, t
 
 
 @pytest.mark.parametrize("call", ["fsync", "replace"])
-def test_full_disk_leaves_no_file_and_keeps_the_old_ones(call, good, tmp_path, monkeypatch, capsys):
+def test_full_disk_leaves_no_file_and_keeps_the_old_ones(
+    alone, call, good, tmp_path, monkeypatch, capsys
+):
     out = tmp_path / "out"
     out.mkdir()
     (out / "good.json").write_text("old", encoding="utf-8")

@@ -9,6 +9,7 @@ import argparse
 import sys
 import time
 from collections import Counter
+from contextlib import suppress
 from pathlib import Path
 
 HERE = Path(__file__).resolve().parent
@@ -30,21 +31,23 @@ def main() -> int:
     kinds: Counter[str] = Counter()
     opened: Counter[str] = Counter()
     shown = 0
-    for index in range(options.count):
-        seed = options.seed * 10**9 + index
-        outcome = compare(seed)
-        totals["circuits"] += 1
-        totals["results"] += outcome.results
-        totals["without a unique solution"] += outcome.singular
-        totals["too large"] += outcome.too_large
-        totals["drafts refused by the reader"] += outcome.drafts_refused
-        kinds.update(outcome.kinds)
-        opened.update(outcome.left_open)
-        totals["DIFFERENT"] += bool(outcome.differences)
-        totals["CHECKS FAILED"] += bool(outcome.failed)
-        if (outcome.differences or outcome.failed) and shown < SHOWN:
-            shown += 1
-            print(f"seed {seed}: {outcome.differences} {outcome.failed}\n{outcome.text}")  # noqa: T201 - its job
+    # An interrupted campaign still prints what it has.
+    with suppress(KeyboardInterrupt):
+        for index in range(options.count):
+            seed = options.seed * 10**9 + index
+            outcome = compare(seed)
+            totals["circuits"] += 1
+            totals["results"] += outcome.results
+            totals["without a unique solution"] += outcome.singular
+            totals["too large"] += outcome.too_large
+            totals["drafts refused by the reader"] += outcome.drafts_refused
+            kinds.update(outcome.kinds)
+            opened.update(outcome.left_open)
+            totals["DIFFERENT"] += bool(outcome.differences)
+            totals["CHECKS FAILED"] += bool(outcome.failed)
+            if (outcome.differences or outcome.failed) and shown < SHOWN:
+                shown += 1
+                print(f"seed {seed}: {outcome.differences} {outcome.failed}\n{outcome.text}")  # noqa: T201 - its job
     for table in (totals, kinds, opened):
         for name, count in sorted(table.items()):
             print(f"{count:8d}  {name}")  # noqa: T201 - its job

@@ -187,6 +187,21 @@ L_4 = { inductor = "1u", between = ["n2", "n1"] }""",
 }
 
 
+# Windings coupled perfectly, equal and in parallel: (L_1·L_2 - M²)/(L_1 + L_2 - 2·M) is nothing over
+# nothing at these values, and L_1 in the limit.
+def test_result_of_nothing_over_nothing_at_its_values_is_left_open_and_has_not_failed():
+    parts = (
+        'R_2 = { resistor = "100R", between = ["in", "out"] }\n'
+        'L_1 = { inductor = "1u", between = ["out", "gnd"] }\n'
+        'L_2 = { inductor = "1u", between = ["out", "gnd"] }\n'
+        'k_1 = { coupling = "1", coils = ["L_1", "L_2"] }'
+    )
+    results = held(stage(parts, GAIN), undecided=("nominal values",))
+    both = "s*(L_1*L_2 - M**2)/(L_1 + L_2 - 2*M)"
+    same(results, "A_v", f"{both}/(R_2 + {both})")
+    assert results["A_v"]["gain"]["value"] is None
+
+
 @pytest.mark.parametrize("name", LOST_IN_ROUNDING)
 def test_right_result_does_not_fail_for_what_rounding_loses(name):
     held(LOST_IN_ROUNDING[name], undecided=("nominal values",))

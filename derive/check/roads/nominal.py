@@ -9,6 +9,7 @@ import numpy as np
 
 from derive.check.excitation import excite
 from derive.check.points import symbol_names
+from derive.check.printed import wrong_number
 from derive.check.reading import value_exact
 from derive.check.solve import NoSolutionError, Sweep, long_double, solve_exact, solve_frequencies
 from derive.check.stamp import assemble
@@ -19,7 +20,8 @@ from derive.devices.elements import Coupling, Inductor, SmallSignal
 NAME = "nominal values"
 METHOD = (
     "the circuit solved in floating point at 60 frequencies, from two decades below the lowest "
-    "corner to two above the highest, relative to the size of the numerator's terms"
+    "corner to two above the highest, relative to the size of the numerator's terms; the printed "
+    "gain, coefficients, poles and zeros against the expressions"
 )
 ORDER = 30
 POINTS = 60
@@ -43,9 +45,22 @@ def judge(solution: Solution) -> Verdict:
         if not any(printed[0]):
             return _judge_zero(solution, values, omegas)
         sweep = _sweep(solution, values, omegas)
-        return _verdict(*_worst(printed, omegas, sweep))
+        verdict = _verdict(*_worst(printed, omegas, sweep))
+        return _with_numbers(verdict, solution, printed)
     except (NoSolutionError, ZeroDivisionError, OverflowError) as error:
         return Verdict(NAME, METHOD, None, f"not finished: {error}", "")
+
+
+def _with_numbers(verdict: Verdict, solution: Solution, printed: Ratio) -> Verdict:
+    """Fail a verdict where a printed number is not what the printed expressions give."""
+    top, bottom, _ = printed
+    if solution.numbers is None or not top[0] or verdict.passed is False:
+        return verdict
+    normalised = [value / top[0] for value in top]
+    wrong = wrong_number(solution.numbers, top[0], normalised, bottom)
+    if not wrong:
+        return verdict
+    return Verdict(NAME, METHOD, False, f"{wrong}: not what the expressions give", verdict.limit)
 
 
 def _sweep(solution: Solution, values: dict[str, Fraction], omegas: list[float]) -> Sweep:

@@ -43,7 +43,8 @@ def linearise(part: Part, names: Names) -> Model:
     unity = symbol("w_u", _unity(given))
     r_in = symbol("R_in", given.get("R_in"))
     r_out = symbol("R_out", given.get("R_out"))
-    inner = output if r_out is None else names.inner_node(part)
+    # The output as it is without a load: what stands before R_out.
+    inner = output if r_out is None else names.inner_node(part, "open")
     if dc_gain is None and unity is None:
         elements.append(VirtualShort(part.name, part.name, inner, (plus, minus)))
     else:

@@ -5,12 +5,16 @@ from __future__ import annotations
 from derive.eliminate.derivation import Plan
 from derive.expressions.tree import Name
 from derive.normalise import normalise
-from derive.sheet.document import Block, Column, Line, Maths, Paragraph, Section, Table, Text
+from derive.sheet.document import Block, Column, Inline, Line, Maths, Paragraph, Section, Table, Text
 from derive.sheet.sections.equations import INTRODUCTORY, numbered
 from derive.sheet.view import View
 
 ORDER = 50
 SCOPE = "result"
+NOT_ZERO = (
+    "A divisor stated not to be zero is no zero expression. Should it vanish at particular values, the "
+    "steps cannot be followed at these values, but the checks still hold the result against the circuit."
+)
 NORMALISING = frozenset({normalise.GAIN, normalise.COEFFICIENT, normalise.NORMAL})
 
 
@@ -21,7 +25,10 @@ def compose(view: View) -> tuple[Section, ...]:
     blocks: list[Block] = []
     if len(derivation.plan.lines) > 1:
         blocks.append(_plan(view, derivation.plan))
-    blocks += [numbered(view, step) for step in derivation.steps if step.rule not in others]
+    shown = [step for step in derivation.steps if step.rule not in others]
+    blocks += [numbered(view, step) for step in shown]
+    if any(step.nonzero is not None for step in shown):
+        blocks.append(Paragraph((Text(NOT_ZERO),), "note"))
     if view.result.broken_steps:
         broken = "; ".join(f"({view.wording.label(n)}) {why}" for n, why in view.result.broken_steps)
         blocks.insert(0, Paragraph((Text(f"Steps whose proof failed: {broken}."),), "alarm"))
@@ -41,13 +48,15 @@ def _plan(view: View, plan: Plan) -> Table:
     }
     rows: list[tuple[Line, ...]] = []
     for place, line in enumerate(plan.lines, 1):
-        into = ", ".join(f"({view.wording.label(numbers[row])})" for row in line.into)
+        into: list[Inline] = []
+        for row in line.into:
+            into += [*([Text(", ")] if into else []), view.wording.reference(numbers[row])]
         rows.append(
             (
                 (Text(str(place)),),
                 (Maths(Name(line.unknown)),),
                 (view.wording.reference(numbers[line.equation]),),
-                (Text(into or "–"),),
+                tuple(into) or (Text("–"),),
                 (Text(f"{line.terms:,}"),),
             )
         )

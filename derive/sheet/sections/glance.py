@@ -6,7 +6,7 @@ from collections.abc import Iterable
 
 from derive.check.verdict import Outcome, Result
 from derive.expressions.polynomials import add, divide, multiply
-from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Power
+from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Negative, Power, Quotient
 from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.normalise.form import CertifiedRoot, NormalForm
@@ -43,17 +43,25 @@ def compose(outcome: Outcome) -> tuple[Section, ...]:
 def _blocks(view: View) -> list[Block]:
     form = view.result.solution.form
     if form.is_zero:
-        line: Line = (
-            Text("The response "),
-            Maths(Equation(Name(view.name), ZERO)),
-            Text(" is zero for all values: what is driven does not reach what is sought."),
-        )
-        return [Paragraph(line), Paragraph(_checked(view.result))]
+        return [Paragraph(_zero(view)), Paragraph(_checked(view.result))]
     display = Display(_final(view, form), _asked(view), boxed=True)
     blocks: list[Block] = [display, *_names(view, form)]
     blocks.append(Paragraph(_numbers(view, form)))
     blocks.append(Paragraph(_checked(view.result)))
     return blocks
+
+
+def _zero(view: View) -> Line:
+    """Say that the response is zero, and what that means."""
+    impedance = view.result.solution.derivation.system.find.quantity == "impedance"
+    what = "impedance" if impedance else "response"
+    why = (
+        "sources hold this voltage, whatever current is driven into it"
+        if impedance
+        else "what is driven does not reach what is sought"
+    )
+    zero = Maths(Equation(Name(view.name), ZERO))
+    return (Text(f"The {what} is zero for all values, "), zero, Text(f": {why}."))
 
 
 def _explicit(form: NormalForm) -> bool:
@@ -74,9 +82,20 @@ def _final(view: View, form: NormalForm) -> Equation:
     below = multiply([s, below]) if form.power_of_s < 0 else below
     if below == ONE:
         return Equation(Name(view.name), multiply([form.gain, above]))
-    if form.gain == ONE:
+    if form.gain == ONE or (above == ONE and len(form.denominator) == 1):
+        above, below = _merged(form.gain, above, below)
         return Equation(Name(view.name), divide(above, below))
     return Equation(Name(view.name), multiply([form.gain, divide(above, below)]))
+
+
+def _merged(gain: Expression, above: Expression, below: Expression) -> tuple[Expression, Expression]:
+    """Draw the gain and a bare power of s into one fraction: 1/(s·C), not 1/C · 1/s."""
+    if isinstance(gain, Negative):
+        inner, under = _merged(gain.operand, above, below)
+        return Negative(inner), under
+    if isinstance(gain, Quotient):
+        return multiply([gain.numerator, above]), multiply([below, gain.denominator])
+    return multiply([gain, above]), below
 
 
 def _polynomial(found: tuple[Expression, ...]) -> Expression:
