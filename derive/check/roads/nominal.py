@@ -42,6 +42,9 @@ def judge(solution: Solution) -> Verdict:
     omegas = [2 * math.pi * hertz for hertz in frequencies_hz(solution)]
     try:
         printed = _coefficients(solution, values)
+        if not any(printed[1]):
+            words = "not decided: at these values the response is nothing over nothing"
+            return Verdict(NAME, METHOD, None, words, "")
         if not any(printed[0]):
             return _judge_zero(solution, values, omegas)
         sweep = _sweep(solution, values, omegas)
