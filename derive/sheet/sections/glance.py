@@ -3,10 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
+from fractions import Fraction
 
 from derive.check.verdict import Outcome, Result
-from derive.expressions.polynomials import add, divide, multiply
-from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Negative, Power, Quotient
+from derive.expressions.polynomials import add, divide, multiply, negate
+from derive.expressions.tree import (
+    ONE,
+    ZERO,
+    Equation,
+    Expression,
+    Name,
+    Negative,
+    Number,
+    Power,
+    Quotient,
+)
 from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.normalise.form import CertifiedRoot, NormalForm
@@ -130,12 +141,20 @@ def _asked(view: View) -> Line:
     else:
         against = "" if minus == GROUND else f" against {minus}"
         what = (Text(f"Voltage of {plus}{against}"),)
-    line: list[Inline] = [*what, Text(", per ")]
-    for place, (name, weight) in enumerate(find.per):
-        line.append(Text(", " if place else ""))
-        line.append(Maths(Name(name)))
-        line.append(Text(f" × {weight}".replace("-", "−") if weight != 1 else ""))
+    common = view.result.solution.derivation.system.input
+    line: list[Inline] = [*what, Text(", per "), Maths(Name(common))]
+    others = [(name, weight) for name, weight in find.per if name != common]
+    for place, (name, weight) in enumerate(others):
+        line.append(Text(", with " if not place else " and " if place == len(others) - 1 else ", "))
+        line.append(Maths(Equation(Name(name), _share(weight, common))))
     return (*line, Text("."))
+
+
+def _share(weight: Fraction, common: str) -> Expression:
+    """Write a drive as its share of the common input."""
+    above = multiply([Number(Fraction(abs(weight.numerator))), Name(common)])
+    value = divide(above, Number(Fraction(weight.denominator)))
+    return negate(value) if weight < 0 else value
 
 
 def _numbers(view: View, form: NormalForm) -> Line:
@@ -178,5 +197,5 @@ def _checked(result: Result) -> Line:
     if failed:
         words += f", {failed} failed"
     if left:
-        words += f", {left} not finished or not asked for"
+        words += f", {left} left open"
     return (Mark(not failed and not result.broken_steps, words),)

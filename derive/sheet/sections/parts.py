@@ -6,13 +6,16 @@ from fractions import Fraction
 
 from derive.check.verdict import Outcome
 from derive.expressions.tree import Equation, Name, Product, Root
-from derive.quantities.units import unit_of
+from derive.quantities.format import engineering
+from derive.quantities.symbol import Symbol
 from derive.sheet.document import Block, Column, Line, Maths, Paragraph, Section, Table, Text
 from derive.sheet.view import mutual_names
 from derive.topology.topology import Part
 
 ORDER = 20
 SCOPE = "sheet"
+# A value is shown as it was read, not rounded; more figures than this no part has.
+READ_DIGITS = 15
 KIND_WORDS = {
     "transconductance": "transconductance",
     "voltage_gain": "voltage gain",
@@ -63,7 +66,7 @@ def _part_row(part: Part, outcome: Outcome) -> tuple[Line, ...]:
     named = [symbol for symbol in symbols if symbol.name != part.name]
     value: list[Text | Maths] = []
     for symbol in symbols:
-        words = _value(symbol.text, unit_of(symbol.dimension))
+        words = _value(symbol)
         value += [Text(", ")] if value else []
         value += [Maths(Name(symbol.name)), Text(f" = {words}")] if named else [Text(words)]
     if not symbols:
@@ -78,12 +81,14 @@ def _part_row(part: Part, outcome: Outcome) -> tuple[Line, ...]:
     )
 
 
-def _value(text: str, unit: str) -> str:
-    """Word a value as it was written, with its unit where it was written without."""
-    if text == "?":
+def _value(symbol: Symbol) -> str:
+    """Word a value as it was written; a code or bare number as what it was read as, with its unit."""
+    if symbol.value is None:
         return "open (?)"
-    bare = text.rstrip()
-    return bare if bare[-1:].isalpha() and " " in bare else f"{bare} {unit}".rstrip()
+    written = symbol.text.strip()
+    if written[-1:].isalpha() and " " in written:
+        return written.replace("-", "−")
+    return engineering(symbol.value, symbol.dimension, READ_DIGITS)
 
 
 def _percent(tolerance: Fraction) -> str:

@@ -107,16 +107,16 @@ def test_op_amp_resistances_stand_at_its_input_and_behind_an_inner_node():
     given = ", A_0 = '1e5', R_in = '2M', R_out = '75R'"
     circuit = circuit_of(f"{ENDS}\n{OPAMP.format(given)}")
     gain, r_in, r_out = (element for element in circuit.elements if element.part == "U1")
-    assert gain.output == "U1_in"
+    assert gain.output == "U1_open"
     assert r_in == Resistor("U1.R_in", "U1", ("in", "out"), "R_in")
-    assert r_out == Resistor("U1.R_out", "U1", ("U1_in", "x"), "R_out")
+    assert r_out == Resistor("U1.R_out", "U1", ("U1_open", "x"), "R_out")
     assert named(circuit)["A_0"].dimension == RATIO
 
 
 TWO = """
 U1 = { opamp = true, output = "x", inputs = ["in", "x"], A_0 = "1e5", R_out = "75R" }
-U_buf = { opamp = true, output = "U1_in", inputs = ["x", "U1_in"], A_0 = "1e4" }
-R_o = { resistor = "1k", between = ["U1_in", "out"] }
+U_buf = { opamp = true, output = "U1_open", inputs = ["x", "U1_open"], A_0 = "1e4" }
+R_o = { resistor = "1k", between = ["U1_open", "out"] }
 R_b = { resistor = "1k", between = ["out", "gnd"] }
 """
 
@@ -131,7 +131,7 @@ def test_several_op_amps_index_their_symbols_by_their_names():
 
 def test_an_inner_node_never_meets_a_node_of_the_user():
     circuit = circuit_of(TWO)
-    assert circuit.elements[0].output == "U1_in_"
+    assert circuit.elements[0].output == "U1_open_"
 
 
 def test_a_devices_symbol_may_not_be_another_parts_name():

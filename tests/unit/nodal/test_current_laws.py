@@ -72,8 +72,8 @@ CASES = {
         'U = { opamp = true, output = "out", inputs = ["in", "out"], '
         'A_0 = "1e5", R_in = "1M", R_out = "50 Ω" }',
         [
-            "(v_out - V_s)/R_S + v_out/R_L + (v_out - V_s)/R_in + (v_out - v_U_in)/R_out = 0",
-            "v_U_in = A_0*(V_s - v_out)",
+            "(v_out - V_s)/R_S + v_out/R_L + (v_out - V_s)/R_in + (v_out - v_U_open)/R_out = 0",
+            "v_U_open = A_0*(V_s - v_out)",
         ],
     ),
 }
