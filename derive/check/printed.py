@@ -13,7 +13,6 @@ from derive.normalise.form import CertifiedRoot, NominalNumbers
 
 # Roots are printed as floats, so that what they multiply out to is rounded too.
 TOLERANCE = 1e-9
-ROUNDING = 1e-25  # a mutual inductance that is a root is held to 40 digits
 Complex = tuple[Fraction, Fraction]
 
 
@@ -39,26 +38,11 @@ def wrong_number(
         for power in range(max(len(values), len(dense))):
             shown = dense[power] / dense[0] if power < len(dense) else Fraction(0)
             value = values[power] if power < len(values) else Fraction(0)
-            if shown == 0 and _left_over(value, power, (*enumerate(top), *enumerate(bottom))):
-                continue
             if not _close(shown, value, abs(value)):
                 return f"{letter}_{power}"
         if not _multiply_out(roots, [value / dense[0] for value in dense]):
             return word
     return ""
-
-
-def _left_over(value: Fraction, power: int, others: Sequence[tuple[int, Fraction]]) -> bool:
-    """Say whether a coefficient is nothing but rounding beside the others.
-
-    Where a mutual inductance is a root, what cancels exactly leaves its last digit over.
-    """
-    slowest = max((_log(abs(a)) / k for k, a in others if k and a and a != value), default=-math.inf)
-    return value == 0 or _log(abs(value)) < power * slowest + math.log(ROUNDING)
-
-
-def _log(value: Fraction) -> float:
-    return math.log(value.numerator) - math.log(value.denominator)
 
 
 def _multiply_out(roots: Sequence[CertifiedRoot], coefficients: Sequence[Fraction]) -> bool:

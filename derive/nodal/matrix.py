@@ -2,24 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from fractions import Fraction
 
 from derive.algebra.ring import Polynomial, Ring
 from derive.expressions.polynomials import add, divide, multiply
 from derive.expressions.tree import Expression, Name, Negative, Number, Power
-from derive.nodal.system import NodalSystem
+from derive.nodal.system import MatrixForm, NodalSystem
 
 Term = tuple[tuple[int, ...], int]
-
-
-@dataclass(frozen=True, slots=True)
-class MatrixForm:
-    """matrix · unknowns = right side; one row an equation, in the system's order."""
-
-    rows: tuple[tuple[Expression, ...], ...]
-    unknowns: tuple[Expression, ...]
-    right: tuple[Expression, ...]
 
 
 def matrix_form(system: NodalSystem) -> MatrixForm:

@@ -46,13 +46,22 @@ class NodalEquation:
 
 
 @dataclass(frozen=True, slots=True)
+class MatrixForm:
+    """matrix · unknowns = right side; one row an equation, in the system's order."""
+
+    rows: tuple[tuple[Expression, ...], ...]
+    unknowns: tuple[Expression, ...]
+    right: tuple[Expression, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class NodalSystem:
     """All equations of one circuit for one wanted quantity.
 
     `input` is the name of the drive that the result is taken per (a test current for an impedance);
     `weights` gives each real drive in terms of it; drives not named there are at zero. `wanted` is
     the unknown sought: the find's own name stands for wanted/input. `known` gives the voltages of
-    nodes that drives tie, as written in the equations.
+    nodes that drives tie, as written in the equations; `matrix` is the equations once more, as printed.
     """
 
     small_signal: SmallSignal
@@ -64,3 +73,4 @@ class NodalSystem:
     weights: tuple[tuple[str, Fraction], ...]
     wanted: str
     known: tuple[tuple[str, Expression], ...]
+    matrix: MatrixForm | None = None

@@ -7,6 +7,8 @@ amps bring an equation each.
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from derive.algebra.ring import Ring
 from derive.algebra.ring import ring as make_ring
 from derive.devices.elements import (
@@ -26,6 +28,7 @@ from derive.devices.elements import (
 from derive.nodal.branches import Branches
 from derive.nodal.currents import node_equation
 from derive.nodal.laws import law_of
+from derive.nodal.matrix import matrix_form
 from derive.nodal.ports import drive_nodes, port
 from derive.nodal.system import NodalSystem, Unknown
 from derive.nodal.voltages import Voltages, fresh, groups, tie_nodes
@@ -64,7 +67,7 @@ def write_equations(circuit: SmallSignal, find: Find) -> NodalSystem:
         for node, tie in ties.items()
         if tie.base == GROUND and node != GROUND
     )
-    return NodalSystem(
+    system = NodalSystem(
         circuit,
         find,
         ring,
@@ -75,6 +78,7 @@ def write_equations(circuit: SmallSignal, find: Find) -> NodalSystem:
         wanted,
         known,
     )
+    return replace(system, matrix=matrix_form(system))
 
 
 def nodes_of(circuit: SmallSignal) -> tuple[str, ...]:

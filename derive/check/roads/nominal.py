@@ -10,7 +10,7 @@ import numpy as np
 from derive.check.excitation import excite
 from derive.check.points import symbol_names
 from derive.check.printed import wrong_number
-from derive.check.reading import value_exact
+from derive.check.rounding import value_without_rounding
 from derive.check.solve import NoSolutionError, Sweep, long_double, solve_exact, solve_frequencies
 from derive.check.stamp import assemble
 from derive.check.verdict import Solution, Verdict
@@ -144,9 +144,10 @@ def frequencies_hz(solution: Solution) -> list[float]:
 def _coefficients(solution: Solution, values: dict[str, Fraction]) -> Ratio:
     form, numbers = solution.form, solution.numbers
     try:
-        gain = value_exact(form.gain, values)
-        top = [gain * value_exact(a, values) for a in form.numerator]
-        return top, [value_exact(b, values) for b in form.denominator], int(form.power_of_s)
+        gain = value_without_rounding(form.gain, values)
+        top = [gain * value_without_rounding(a, values) for a in form.numerator]
+        bottom = [value_without_rounding(b, values) for b in form.denominator]
+        return top, bottom, int(form.power_of_s)
     except ZeroDivisionError:
         # The lowest coefficient vanishes at these values: only the unnormalised ratio is left.
         if numbers is None:

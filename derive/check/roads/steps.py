@@ -2,37 +2,26 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
-from derive.check.excitation import excite
-from derive.check.points import Stream, stream, symbol_names, values_modulo
-from derive.check.reading import form_modulo, names_of_circuit, value_modulo
-from derive.check.solve import NoSolutionError, solve_modulo
-from derive.check.stamp import assemble
+from derive.check.points import stream
+from derive.check.reading import form_modulo, value_modulo
+from derive.check.settled import Point, draw
+from derive.check.solve import NoSolutionError
 from derive.check.verdict import Solution, Verdict
 from derive.check.words import count
 from derive.eliminate.derivation import Step
 from derive.errors import DeriveError
 from derive.expressions.tree import Equation, Name
+from derive.nodal.system import MatrixForm
 from derive.normalise.form import NormalForm
 
 NAME = "every step"
 METHOD = (
-    "each step from the earlier ones by its own certificate, and at the circuit's true solution, "
-    "at a random point modulo a random 61-bit prime"
+    "each step from the earlier ones by its own certificate; each step and the matrix at the circuit's "
+    "true solution, at a random point modulo a random 61-bit prime"
 )
 ORDER = 60
 LIMIT = "every step holds, and the last gives the result"
 TRIES = 12
-
-
-@dataclass(frozen=True, slots=True)
-class Point:
-    """Values for every name: once with all unknowns free, once as the circuit settles them."""
-
-    free: dict[str, int]
-    settled: dict[str, int]
-    prime: int
 
 
 class StepError(ValueError):
@@ -62,24 +51,25 @@ def broken_steps(solution: Solution) -> tuple[tuple[int, str], ...]:
     why = ""
     for _ in range(TRIES):
         try:
-            return _replay(solution, _draw(solution, numbers, prime))
+            point = draw(solution, numbers, prime)
+            _judge_matrix(solution.derivation.system.matrix, point)
+            return _replay(solution, point)
         except (NoSolutionError, ZeroDivisionError) as error:
             why = str(error)
     raise StepError(f"no point could be worked: {why}")
 
 
-def _draw(solution: Solution, numbers: Stream, prime: int) -> Point:
-    system = solution.derivation.system
-    circuit, excitation = system.small_signal, excite(system)
-    symbols = values_modulo(circuit, numbers, prime)
-    symbols["s"] = numbers.below(prime)
-    state = solve_modulo(assemble(circuit, excitation, symbols.__getitem__), symbols["s"], prime)
-    settled = names_of_circuit(solution, excitation, state, symbols, numbers.below(prime), prime)
-    fixed = {*symbols, *symbol_names(circuit)}
-    free = {name: value if name in fixed else numbers.below(prime) for name, value in settled.items()}
-    for unknown in system.unknowns:
-        free.setdefault(unknown.name, numbers.below(prime))
-    return Point(free, settled, prime)
+def _judge_matrix(matrix: MatrixForm | None, point: Point) -> None:
+    """Hold every row of the printed matrix against the circuit's solution."""
+    if matrix is None:
+        return
+    prime = point.prime
+    unknowns = [value_modulo(unknown, point.settled, prime) for unknown in matrix.unknowns]
+    for number, (row, right) in enumerate(zip(matrix.rows, matrix.right, strict=True), 1):
+        entries = [value_modulo(entry, point.settled, prime) for entry in row]
+        total = sum(a * b for a, b in zip(entries, unknowns, strict=True))
+        if (total - value_modulo(right, point.settled, prime)) % prime:
+            raise StepError(f"row {number} of the matrix is not true of the circuit")
 
 
 def _replay(solution: Solution, point: Point) -> tuple[tuple[int, str], ...]:

@@ -5,7 +5,6 @@ from __future__ import annotations
 from derive.eliminate.derivation import Step
 from derive.eliminate.rules import current_law, wanted, weigh
 from derive.expressions.tree import Expression, Name
-from derive.nodal.matrix import matrix_form
 from derive.sheet.document import Block, Display, Line, Maths, Matrix, Paragraph, Section, Text
 from derive.sheet.view import View
 
@@ -26,8 +25,8 @@ def compose(view: View) -> tuple[Section, ...]:
         blocks.append(Paragraph(_tied(tied)))
     own = [step for step in derivation.steps if step.rule in INTRODUCTORY]
     blocks += [numbered(view, step) for step in own]
-    if 1 < len(system.unknowns) <= MATRIX_LIMIT:
-        form = matrix_form(system)
+    form = system.matrix
+    if form is not None and 1 < len(system.unknowns) <= MATRIX_LIMIT:
         reason = (Text("The same equations as a matrix, in the order in which they stand above."),)
         blocks.append(Display(Matrix(form.rows, form.unknowns, form.right), reason))
     return (view.section("Equations of the circuit", tuple(blocks)),)
