@@ -21,7 +21,7 @@ def __getattr__(name: str) -> Any:
 
         return getattr(pipeline, name)
     if name == "read":
-        from derive.topology.read import read
+        from derive.reading.read import read
 
         return read
     raise AttributeError(f"module 'derive' has no attribute '{name}'")

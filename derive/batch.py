@@ -13,10 +13,10 @@ from pathlib import Path
 from derive.check.verdict import Outcome
 from derive.errors import InputError
 from derive.pipeline import Results, derive
+from derive.reading.read import read
 from derive.render.files import prepare, write_sheet
 from derive.render.maths import SheetMaths
 from derive.sheet.compose import compose
-from derive.topology.read import read
 from derive.topology.topology import Topology
 
 Tell = Callable[[str, str], None]

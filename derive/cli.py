@@ -24,7 +24,6 @@ if TYPE_CHECKING:
 
 WELL, FAILED, UNUSABLE = 0, 1, 2
 KINDS = ("html", "pdf", "json")
-BAND = "full"
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -114,16 +113,10 @@ def _sheet(options: argparse.Namespace) -> int:
 def _show(options: argparse.Namespace) -> int:
     from derive.pipeline import derive
     from derive.progress import Progress
+    from derive.reading.read import read
     from derive.sheet.plain import plain_outcome
-    from derive.topology.read import read
 
     topology = read(options.file)
-    if options.band not in (None, BAND):
-        raise InputError(
-            f'there is no band "{options.band}" in this topology',
-            where=options.file,
-            cure=f"its results are of the band {BAND}",
-        )
     names = [find.name for find in topology.finds]
     if options.find is not None and options.find not in names:
         raise InputError(
@@ -131,11 +124,12 @@ def _show(options: argparse.Namespace) -> int:
             where=options.file,
             cure=f"it has {', '.join(names)}",
         )
-    with Progress(1, 1 + len(names), quiet=options.quiet) as progress:
+    with Progress(1, 1 + 3 * len(names), quiet=options.quiet) as progress:
         results = derive(
             topology,
             other_engine=options.all_checks,
             only=options.find,
+            band=options.band,
             progress=partial(progress.tell, topology.file),
         )
     sys.stdout.write(plain_outcome(results.outcome, steps=options.steps))

@@ -6,6 +6,10 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
+from derive.bands.band_circuit import BandCircuit
+from derive.bands.choose import bands_of
+from derive.bands.restrict import find_in, restrict
+from derive.bias.solve import operating_point
 from derive.check.judge import finish, start
 from derive.check.roads import steps
 from derive.check.verdict import Outcome, Result, Solution, Verdict
@@ -13,12 +17,14 @@ from derive.devices.elements import SmallSignal
 from derive.devices.linearise import linearise
 from derive.eliminate.eliminate import eliminate
 from derive.eliminate.plan import plan
+from derive.errors import InputError
 from derive.nodal.write import write_equations
+from derive.normalise.band_report import report_bands
 from derive.normalise.normalise import normalise
 from derive.normalise.numbers import nominal_numbers
 from derive.sheet.ledger import ledger
 from derive.sheet.plain import plain_outcome
-from derive.topology.topology import Find, Topology
+from derive.topology.topology import BandName, Find, Topology
 
 ENGINE_SECONDS = 10.0
 
@@ -52,29 +58,48 @@ def derive(
     other_engine: bool = True,
     engine_seconds: float = ENGINE_SECONDS,
     only: str | None = None,
+    band: str | None = None,
     progress: Callable[[str], None] = lambda stage: None,
     meanwhile: Callable[[Outcome], None] = lambda outcome: None,
 ) -> Results:
     """Derive and check what a topology asks for.
 
-    Given: whether the other engine is asked as well, and for how long; `only` names one quantity;
-    `progress` is told the stages; `meanwhile` is given the outcome without its verdicts,
-    while the other engine works.
+    Given: whether the other engine is asked as well, and for how long; `only` names one quantity, `band`
+    one band; `progress` is told the stages; `meanwhile` is given the outcome without its verdicts, while
+    the other engine works.
 
     Raises: InputError, TooLargeError or SingularError where the circuit cannot be worked.
     """
-    circuit = linearise(topology)
+    point = operating_point(topology)
+    circuit = linearise(topology, {device.part: device for device in point.devices} if point else {})
+    bands = tuple(restrict(circuit, name) for name in _chosen(circuit, band))
     solutions = []
-    for find in topology.finds:
-        if only in (None, find.name):
-            progress(f"deriving {find.name}")
-            solutions.append(solve(circuit, find))
+    for band_circuit in bands:
+        for find in topology.finds:
+            if only in (None, find.name):
+                progress(f"deriving {find.name}, {band_circuit.band} band")
+                solutions.append(solve(band_circuit, find))
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
-    meanwhile(Outcome(circuit, tuple(Result(solution, ()) for solution in solutions)))
+    report = report_bands(circuit, bands)
+    meanwhile(Outcome(circuit, tuple(Result(solution, ()) for solution in solutions), point, report))
     verdicts = finish(begun)
-    results = map(_result, solutions, verdicts)
-    return Results(Outcome(circuit, tuple(results)))
+    return Results(Outcome(circuit, tuple(map(_result, solutions, verdicts)), point, report))
+
+
+def _chosen(circuit: SmallSignal, band: str | None) -> tuple[BandName, ...]:
+    """Give the bands to work in: all that the circuit has, or the one asked for."""
+    found = bands_of(circuit)
+    if band is None:
+        return found
+    chosen = tuple(name for name in found if name == band)
+    if not chosen:
+        raise InputError(
+            f'there is no band "{band}" in this topology',
+            where=circuit.topology.file,
+            cure=f"its results are of the {'band' if len(found) == 1 else 'bands'} {', '.join(found)}",
+        )
+    return chosen
 
 
 def _result(solution: Solution, verdicts: tuple[Verdict, ...]) -> Result:
@@ -88,9 +113,12 @@ def _result(solution: Solution, verdicts: tuple[Verdict, ...]) -> Result:
         return Result(solution, verdicts)
 
 
-def solve(circuit: SmallSignal, find: Find) -> Solution:
-    """Go from a circuit to one quantity in normal form, with every step."""
-    system = write_equations(circuit, find)
+def solve(band: BandCircuit, find: Find) -> Solution:
+    """Go from the circuit of a band to one quantity in normal form, with every step.
+
+    Given: the find as the user wrote it.
+    """
+    system = write_equations(band.circuit, find_in(band, find))
     derivation = eliminate(system, plan(system))
     form, derivation = normalise(derivation)
-    return Solution(derivation, form, nominal_numbers(derivation))
+    return Solution(derivation, form, nominal_numbers(derivation), band)

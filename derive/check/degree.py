@@ -8,8 +8,9 @@ Journal of the ACM 27 (1980), Lemma 1, and R. Zippel (1979); from memory.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 
+from derive.bands.band_circuit import Merged
 from derive.check.points import PRIME_BITS
 from derive.devices.elements import Capacitor, Coupling, OnePoleGain, SmallSignal
 from derive.errors import DeriveError
@@ -29,16 +30,17 @@ from derive.normalise.form import NormalForm
 Degrees = tuple[int, int]
 
 
-def degrees(expression: Expression, weights: Mapping[str, int]) -> Degrees:
+def degrees(expression: Expression, weights: Mapping[str, int | Degrees]) -> Degrees:
     """Bound the degrees of the numerator and denominator that the tree has as one fraction.
 
-    Given: the degree that each name stands for, 1 where none is given.
+    Given: the degree, or pair of degrees, that each name stands for, 1 where none is given.
     Raises: DeriveError for a root or an elided term, which are no ratio of polynomials.
     """
     if isinstance(expression, Number):
         return 0, 0
     if isinstance(expression, Name):
-        return weights.get(expression.text, 1), 0
+        weight = weights.get(expression.text, 1)
+        return weight if isinstance(weight, tuple) else (weight, 0)
     if isinstance(expression, Negative):
         return degrees(expression.operand, weights)
     if isinstance(expression, Sum):
@@ -65,18 +67,20 @@ def _of_sum(parts: list[Degrees]) -> Degrees:
     return max((top + shared - bottom for top, bottom in parts), default=0), shared
 
 
-def weights_of(circuit: SmallSignal) -> dict[str, int]:
+def weights_of(circuit: SmallSignal, definitions: Sequence[Merged] = ()) -> dict[str, int | Degrees]:
     """Give the degree in the numbers drawn that each symbol of the circuit has, where not 1.
 
-    A coupled coil is drawn as L·t², and M as k·L·t_1·t_2.
+    A coupled coil is drawn as L·t², and M as k·L·t_1·t_2. A merged name has its definition's.
     """
-    weights: dict[str, int] = {}
+    weights: dict[str, int | Degrees] = {}
     inductances = {e.name: getattr(e, "inductance", "") for e in circuit.elements}
     for element in circuit.elements:
         if isinstance(element, Coupling):
             weights[element.mutual] = 4
             for coil in element.coils:
                 weights[inductances[coil]] = 3
+    for merged in definitions:
+        weights[merged.name] = degrees(merged.definition, weights)
     return weights
 
 
@@ -95,7 +99,7 @@ def degree_of_circuit(circuit: SmallSignal) -> int:
     return total
 
 
-def degree_of_form(form: NormalForm, weights: Mapping[str, int]) -> Degrees:
+def degree_of_form(form: NormalForm, weights: Mapping[str, int | Degrees]) -> Degrees:
     """Bound the degrees of the normal form as one fraction, in the symbols and s together."""
     top, under = _of_sum(
         [(degrees(a, weights)[0] + k, degrees(a, weights)[1]) for k, a in enumerate(form.numerator)]
@@ -108,9 +112,9 @@ def degree_of_form(form: NormalForm, weights: Mapping[str, int]) -> Degrees:
     return gain_top + max(shift, 0) + top + over, gain_bottom + max(-shift, 0) + bottom + under
 
 
-def degree_of_claim(form: NormalForm, circuit: SmallSignal) -> int:
+def degree_of_claim(form: NormalForm, circuit: SmallSignal, definitions: Sequence[Merged] = ()) -> int:
     """Bound the degree of the polynomial that is zero where form and circuit agree."""
-    top, bottom = degree_of_form(form, weights_of(circuit))
+    top, bottom = degree_of_form(form, weights_of(circuit, definitions))
     return max(top, bottom) + degree_of_circuit(circuit)
 
 

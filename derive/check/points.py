@@ -51,7 +51,8 @@ def stream(solution: Solution, road: str) -> Stream:
     """Give the stream of numbers of one road for one solution."""
     system = solution.derivation.system
     text = hashlib.sha256(system.small_signal.topology.text.encode()).hexdigest()
-    return Stream(f"{text}/{system.find.name}/{road}")
+    band = f"/{solution.band.band}" if solution.band else ""
+    return Stream(f"{text}/{system.find.name}{band}/{road}")
 
 
 def _coils(circuit: SmallSignal) -> dict[str, str]:

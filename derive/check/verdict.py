@@ -4,18 +4,31 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from derive.bands.band_circuit import BandCircuit
+from derive.bias.operating_point import OperatingPoint
 from derive.devices.elements import SmallSignal
 from derive.eliminate.derivation import Derivation
+from derive.normalise.band_report import BandsReport
 from derive.normalise.form import NominalNumbers, NormalForm
 
 
 @dataclass(frozen=True, slots=True)
 class Solution:
-    """All that was derived for one wanted quantity; `numbers` is None where a value was left open."""
+    """All that was derived for one wanted quantity in one band.
+
+    `numbers` is None where a value was left open; `band` is the band's circuit, None where the derivation
+    is on the circuit as it was written.
+    """
 
     derivation: Derivation
     form: NormalForm
     numbers: NominalNumbers | None
+    band: BandCircuit | None = None
+
+    @property
+    def judged(self) -> SmallSignal:
+        """The circuit that checks solve anew: that of the band, nothing merged."""
+        return self.band.unmerged if self.band else self.derivation.system.small_signal
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,12 +65,14 @@ class Result:
 
 @dataclass(frozen=True, slots=True)
 class Outcome:
-    """All results of one topology."""
+    """All results of one topology: its operating point where it has one, and its bands' circuits."""
 
     circuit: SmallSignal
     results: tuple[Result, ...]
+    point: OperatingPoint | None = None
+    bands: BandsReport | None = None
 
     @property
     def passed(self) -> bool:
-        """Whether no check failed on any result."""
-        return all(result.passed for result in self.results)
+        """Whether no check failed on any result, nor on the operating point."""
+        return all(result.passed for result in self.results) and (self.point is None or self.point.passed)

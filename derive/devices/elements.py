@@ -8,8 +8,9 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from derive.devices.parameters import DeviceParameters
 from derive.quantities.symbol import Symbol
-from derive.topology.topology import Topology
+from derive.topology.topology import Role, Topology
 
 Pair = tuple[str, str]
 
@@ -157,9 +158,15 @@ DriveElement = VoltageDrive | CurrentDrive
 
 @dataclass(frozen=True, slots=True)
 class SmallSignal:
-    """The linear circuit: elements, drives, and the symbols that their values are written with."""
+    """The linear circuit: elements, drives, and the symbols that their values are written with.
+
+    `roles` holds (element, role) of the elements that have one; `devices` the small-signal parameters
+    of every device.
+    """
 
     topology: Topology
     elements: tuple[Element, ...]
     drives: tuple[DriveElement, ...]
     symbols: tuple[Symbol, ...]
+    roles: tuple[tuple[str, Role], ...] = ()
+    devices: tuple[DeviceParameters, ...] = ()

@@ -8,7 +8,8 @@ from functools import cache
 from typing import cast
 
 from derive.devices import models as folder
-from derive.devices.model import DeviceModel
+from derive.devices.model import BiasedDevice, Device, DeviceModel, Names
+from derive.topology.topology import Topology
 
 
 @cache
@@ -24,3 +25,24 @@ def models() -> dict[str, DeviceModel]:
             raise RuntimeError(f"two device models claim the kind {model.KIND}")
         found[model.KIND] = model
     return found
+
+
+def device(kind: str) -> Device | None:
+    """Give the model of a kind whose elements follow from parameters; None for any other kind."""
+    model = models()[kind]
+    return cast(Device, model) if hasattr(model, "parameters") else None
+
+
+def biased_device(kind: str) -> BiasedDevice | None:
+    """Give the model of a kind that has an operating point; None for any other kind."""
+    model = models()[kind]
+    return cast(BiasedDevice, model) if hasattr(model, "dc_elements") else None
+
+
+def names_for(topology: Topology) -> Names:
+    """Give the names of a topology, with the symbols that each kind of device may have."""
+    symbols = {
+        kind: frozenset(parameter.name for parameter in model.SPEC.parameters)
+        for kind, model in models().items()
+    }
+    return Names(topology, symbols)

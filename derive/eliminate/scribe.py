@@ -39,6 +39,8 @@ class Scribe:
     system: NodalSystem
     writer: Writer
     steps: list[Step] = field(default_factory=list)
+    # Long polynomials stand in several equations. Kept by identity, as FLINT's cannot be hashed.
+    written: dict[int, tuple[Polynomial, Expression]] = field(default_factory=dict)
 
     @property
     def next_number(self) -> int:
@@ -64,7 +66,11 @@ class Scribe:
 
     def polynomial(self, polynomial: Polynomial) -> Expression:
         """Write a polynomial collected in powers of s."""
-        return self.writer.collected(polynomial)
+        known = self.written.get(id(polynomial))
+        if known is None:
+            known = polynomial, self.writer.collected(polynomial)
+            self.written[id(polynomial)] = known
+        return known[1]
 
     def times(self, polynomial: Polynomial, name: str) -> Expression:
         """Write a polynomial times a name."""

@@ -24,14 +24,12 @@ def nominal_numbers(derivation: Derivation) -> NominalNumbers | None:
     gain.
     """
     circuit = derivation.system.small_signal
-    values = {symbol.name: symbol.value for symbol in circuit.symbols}
-    known = {name: value for name, value in values.items() if value is not None}
-    if len(known) < len(values):
+    known = values_of(circuit)
+    if known is None:
         return None
     if derivation.numerator == 0:
         return NominalNumbers(Fraction(0), (Fraction(0),), (Fraction(1),), (), (), ())
     squares = _mutual_squares(circuit, known)
-    known |= {name: _square_root(square, known, name, circuit) for name, square in squares.items()}
     top = _values(derivation, derivation.numerator, known, squares)
     bottom = _values(derivation, derivation.denominator, known, squares)
     gain = top[0] / bottom[0] if bottom and bottom[0] else None
@@ -45,6 +43,16 @@ def nominal_numbers(derivation: Derivation) -> NominalNumbers | None:
         _certified(roots(bottom)) if any(bottom) else (),
         _certified(shared_roots(top, bottom)) if any(top) and any(bottom) else (),
     )
+
+
+def values_of(circuit: SmallSignal) -> dict[str, Fraction] | None:
+    """Give the nominal value of every symbol, mutual inductances included; None where one is open."""
+    values = {symbol.name: symbol.value for symbol in circuit.symbols}
+    known = {name: value for name, value in values.items() if value is not None}
+    if len(known) < len(values):
+        return None
+    squares = _mutual_squares(circuit, known)
+    return known | {name: _square_root(square, known, name, circuit) for name, square in squares.items()}
 
 
 def _values(

@@ -35,6 +35,10 @@ PREFIXES: dict[str, Fraction] = {
     "T": Fraction(10**12),
 }
 
+# The factor of a square law, in A/V², and the slope of its saturation, in 1/V.
+TRANSCONDUCTANCE_FACTOR = CURRENT / VOLTAGE**2
+PER_VOLT = RATIO / VOLTAGE
+
 # Typed unit -> what it measures. Ohm has two code points: U+03A9 (omega) and U+2126 (ohm sign).
 # None marks a unit that is known, but measures nothing of a linear circuit.
 UNITS: dict[str, Dimension | None] = {
@@ -57,8 +61,17 @@ UNITS: dict[str, Dimension | None] = {
     "s": TIME,
     "V/V": RATIO,
     "A/A": RATIO,
+    "A/V²": TRANSCONDUCTANCE_FACTOR,
+    "A/V^2": TRANSCONDUCTANCE_FACTOR,
+    "A/V2": TRANSCONDUCTANCE_FACTOR,
+    "1/V": PER_VOLT,
+    "/V": PER_VOLT,
+    "V^-1": PER_VOLT,
     "°C": None,
 }
+
+# Units that take no prefix: ratios, reciprocals, degrees.
+_BARE = ("°C", "V/V", "A/A", "1/V", "/V", "V^-1")
 
 _WORDS: dict[Dimension, tuple[str, str]] = {
     RATIO: ("a pure ratio", '"100" or "1/2"'),
@@ -70,6 +83,8 @@ _WORDS: dict[Dimension, tuple[str, str]] = {
     CURRENT: ("a current", '"1 mA"'),
     FREQUENCY: ("a frequency", '"10 MHz" or "62.8 Mrad/s"'),
     TIME: ("a time", '"1 us"'),
+    TRANSCONDUCTANCE_FACTOR: ("a transconductance factor", '"2 mA/V²"'),
+    PER_VOLT: ("a slope in 1/V", '"0.02 1/V"'),
 }
 
 _PRINTED: dict[Dimension, str] = {
@@ -82,6 +97,8 @@ _PRINTED: dict[Dimension, str] = {
     CURRENT: "A",
     FREQUENCY: "rad/s",
     TIME: "s",
+    TRANSCONDUCTANCE_FACTOR: "A/V²",
+    PER_VOLT: "1/V",
 }
 
 _SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
@@ -109,7 +126,7 @@ def read_unit(text: str, *, prefixed: bool = True) -> TypedUnit | None:
     factor, rest = PREFIXES[text[0]], text[1:]
     if not rest:
         return TypedUnit(factor, "", None)
-    if rest in UNITS and rest not in ("°C", "V/V", "A/A"):
+    if rest in UNITS and rest not in _BARE:
         return TypedUnit(factor, rest, UNITS[rest])
     return None
 

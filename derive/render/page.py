@@ -45,7 +45,7 @@ _KINDS: dict[type, str] = {
     SourceText: "source",
 }
 _LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
-_SHORT_TABLE = 10  # rows
+_SHORT_TABLE = 6  # rows: a longer one may begin at the foot of a page and go on
 _FEW_COLUMNS = 2  # spread over the whole page, the eye would lose the row
 _MANY_COLUMNS = 8
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere

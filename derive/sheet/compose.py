@@ -78,11 +78,29 @@ def _fields(outcome: Outcome) -> tuple[Field, ...]:
 
 
 def _failures(outcome: Outcome) -> tuple[str, ...]:
-    names = []
-    for result in outcome.results:
-        find = result.solution.derivation.system.find.name
+    names = _bias_failures(outcome)
+    for view in views(outcome):
+        result, find = view.result, view.title
         names += [f"{find}: {verdict.name}" for verdict in result.verdicts if verdict.passed is False]
         if result.broken_steps:
             numbers = ", ".join(str(number) for number, _ in result.broken_steps)
             names.append(f"{find}: proof of step {numbers}")
     return tuple(names)
+
+
+def _bias_failures(outcome: Outcome) -> list[str]:
+    point = outcome.point
+    if point is None:
+        return []
+    names = [
+        f"operating point: {region.part} is out of its region ({region.measured})"
+        for region in point.regions
+        if not region.passed
+    ]
+    names += [
+        f"operating point: current of {check.part} by Newton's method"
+        for check in point.newton
+        if not check.passed
+    ]
+    names += [f"operating point: proof of {found.symbol}" for found in point.derivations if found.broken]
+    return names

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from fractions import Fraction
 
+from derive.bias.operating_point import NewtonCheck
 from derive.normalise.form import CertifiedRoot
 from derive.quantities.dimension import RATIO, TIME, Dimension
 from derive.quantities.format import engineering
@@ -48,9 +49,29 @@ def error_bound(root: CertifiedRoot) -> str:
     """Word how far a root can be from the truth, relative to its size."""
     if root.radius == 0 or root.magnitude == 0:
         return "exact" if root.radius == 0 else f"{root.radius:.0e} rad/s"
-    mantissa, _, exponent = f"{root.radius / root.magnitude:.0e}".partition("e")
+    return _power_of_ten(root.radius / root.magnitude, 0)
+
+
+def _power_of_ten(value: float, decimals: int) -> str:
+    mantissa, _, exponent = f"{value:.{decimals}e}".partition("e")
     raised = str(int(exponent)).translate(str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹"))
-    return f"{mantissa} · 10{raised}"
+    return f"{mantissa} × 10{raised}"
+
+
+def newton_difference(check: NewtonCheck) -> str:
+    """Word how far Newton's method is from the current derived by hand."""
+    if not math.isfinite(check.difference):
+        return "not compared: no convergence"
+    # Rounded first, so that no difference reads −0.00 %.
+    return f"{round(100 * check.difference, 2) + 0.0:+.2f} %".replace("-", "−")
+
+
+def times(ratio: float) -> str:
+    """Word a ratio in two figures: "0.18", "24", "4.6 × 10⁵"."""
+    if ratio == 0 or 0.01 <= abs(ratio) < 1000:
+        # From 99.5 on two figures would round to 100, which the format writes as 1e+02.
+        return f"{ratio:.2g}" if abs(ratio) < 99.5 else f"{ratio:.0f}"
+    return _power_of_ten(ratio, 1)
 
 
 def side(root: CertifiedRoot) -> str:

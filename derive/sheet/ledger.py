@@ -8,11 +8,12 @@ from collections.abc import Sequence
 from fractions import Fraction
 from typing import Any
 
-from derive.check.verdict import Outcome, Result, Verdict
+from derive.check.verdict import Outcome, Result, Solution, Verdict
 from derive.devices.elements import Coupling, SmallSignal
 from derive.eliminate.derivation import Step
 from derive.expressions.ledger_text import to_ledger
-from derive.expressions.tree import Equation
+from derive.expressions.tree import Equation, Expression
+from derive.expressions.walk import substitute
 from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.units import ledger_unit
 from derive.sheet.wording import Wording, plain_line
@@ -20,7 +21,6 @@ from derive.topology.topology import Find
 from derive.version import VERSION
 
 FORMAT = 1
-BAND = "full"
 
 
 def ledger(outcome: Outcome) -> dict[str, Any]:
@@ -35,7 +35,7 @@ def ledger(outcome: Outcome) -> dict[str, Any]:
             "text": topology.text,
         },
         "symbols": _symbols(outcome.circuit),
-        "results": [_result(outcome.circuit, result) for result in outcome.results],
+        "results": [_result(result) for result in outcome.results],
     }
 
 
@@ -97,19 +97,19 @@ def _symbols(circuit: SmallSignal) -> dict[str, Any]:
     }
 
 
-def _result(circuit: SmallSignal, result: Result) -> dict[str, Any]:
+def _result(result: Result) -> dict[str, Any]:
     solution = result.solution
     system = solution.derivation.system
     numbers = solution.numbers
     return {
         "find": system.find.name,
-        "band": BAND,
+        "band": solution.band.band if solution.band else "full",
         "per": _per(system.find),
         "gain": {"exact": to_ledger(solution.form.gain), "value": gain_value(numbers)},
         "power_of_s": solution.form.power_of_s,
         "numerator": [to_ledger(entry) for entry in solution.form.numerator],
         "denominator": [to_ledger(entry) for entry in solution.form.denominator],
-        "definitions": _definitions(circuit),
+        "definitions": _definitions(solution),
         "zeros": _roots(numbers.zeros if numbers else ()),
         "poles": _roots(numbers.poles if numbers else ()),
         "steps": _steps(result),
@@ -136,10 +136,11 @@ def _per(find: Find) -> str | dict[str, str] | None:
     return {name: exact_text(weight) for name, weight in find.per}
 
 
-def _definitions(circuit: SmallSignal) -> list[list[str]]:
-    """Define what is not a part's own value: the mutual inductance of coupled coils."""
+def _definitions(solution: Solution) -> list[list[str]]:
+    """Define what is not a part's own value: mutual inductances, and merged parts."""
+    circuit = solution.judged
     inductance = {e.name: getattr(e, "inductance", "") for e in circuit.elements}
-    return [
+    mutual = [
         [
             element.mutual,
             f"{element.coefficient}*({'*'.join(inductance[coil] for coil in element.coils)})**(1/2)",
@@ -147,6 +148,10 @@ def _definitions(circuit: SmallSignal) -> list[list[str]]:
         for element in circuit.elements
         if isinstance(element, Coupling)
     ]
+    known: dict[str, Expression] = {}
+    for merged in solution.band.definitions if solution.band else ():
+        known[merged.name] = substitute(merged.definition, known)
+    return [*mutual, *([name, to_ledger(expanded)] for name, expanded in known.items())]
 
 
 def _roots(roots: Sequence[CertifiedRoot]) -> list[list[float]]:

@@ -20,11 +20,11 @@ from derive.sheet.document import (
     SourceText,
     Table,
 )
-from derive.sheet.figures import figure
+from derive.sheet.figures import figure, newton_difference
 from derive.sheet.view import View, gain_dimension, views
 
 # What a terminal shows of a result, by the files of the sections; the rest with the steps.
-BRIEF = ("glance",)
+BRIEF = ("glance", "operating_point", "parameters", "bands")
 RESULT = ("values", "roots")
 STEPS = ("equations", "elimination", "normal_form", *RESULT)
 MARKS = {True: "✓", False: "✗", None: "–"}
@@ -36,12 +36,15 @@ def plain_outcome(outcome: Outcome, *, steps: bool = False) -> str:
     block = outcome.circuit.topology.title_block
     lines = [block.title + (f"  ({block.number})" if block.number else ""), ""]
     for name in BRIEF:
-        lines += _sections(modules[name].compose(outcome))
+        sections = modules[name].compose(outcome)
+        # Parts of a section are derivations: they are for those who asked for the steps.
+        lines += _sections(sections if steps else tuple(s for s in sections if s.level == 1))
     for view in views(outcome):
         lines += _sections(view.headline)
         for name in STEPS if steps else RESULT:
             lines += _sections(modules[name].compose(view))
         lines += list(_verdicts(view))
+    lines += _sections(modules["separation"].compose(outcome)) + list(_bias_verdicts(outcome))
     return "\n".join(lines).rstrip() + "\n"
 
 
@@ -73,6 +76,8 @@ def _display(block: Display) -> Iterator[str]:
     if isinstance(content, Matrix):
         return
     text = equation_text(content) if isinstance(content, Equation) else to_unicode(content)
+    if block.boxed:
+        yield line_text(block.reason)
     yield f"{label:<5} {text}" if label else f"  {text}"
     if block.reason and label:
         yield f"      {line_text(block.reason)}"
@@ -91,7 +96,7 @@ def _table(table: Table) -> Iterator[str]:
 
 
 def _verdicts(view: View) -> Iterator[str]:
-    yield "Checks" if view.alone else f"Checks on {view.name}"
+    yield "Checks" if view.alone else f"Checks on {view.title}"
     yield from (_verdict(verdict) for verdict in view.result.verdicts)
     yield from (f"  ✗ step {number}: {why}" for number, why in view.result.broken_steps)
     yield ""
@@ -120,6 +125,19 @@ def equation_text(equation: Equation) -> str:
     return f"{to_unicode(equation.left)} = {to_unicode(equation.right)}"
 
 
+def _bias_verdicts(outcome: Outcome) -> Iterator[str]:
+    point = outcome.point
+    if point is None:
+        return
+    yield "Checks on the operating point"
+    for region in point.regions:
+        yield f"  {MARKS[region.passed]} {region.part}: {region.measured}"
+    for check in point.newton:
+        yield f"  {MARKS[check.passed]} {check.part}: by Newton's method {newton_difference(check)}"
+    for found in point.derivations:
+        yield from (f"  ✗ {found.symbol}, step {number}: {why}" for number, why in found.broken)
+
+
 def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
     """Give one row a result: what was sought, its gain, and how its checks went."""
     rows = []
@@ -131,7 +149,10 @@ def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
             gain = "0"
         failed = [verdict.name for verdict in result.verdicts if verdict.passed is False]
         failed += [f"step {number}" for number, _ in result.broken_steps]
-        passed = sum(verdict.passed is True for verdict in result.verdicts)
-        count = f"{passed} of {len(result.verdicts)}"
-        rows.append((view.name, gain, f"FAILED: {', '.join(failed)}" if failed else f"{count} passed"))
+        good = sum(verdict.passed is True for verdict in result.verdicts)
+        count = f"{good} of {len(result.verdicts)}"
+        rows.append((view.title, gain, f"FAILED: {', '.join(failed)}" if failed else f"{count} passed"))
+    if outcome.point is not None:
+        passed = "passed" if outcome.point.passed else "FAILED"
+        rows.append(("operating point", "", passed))
     return rows

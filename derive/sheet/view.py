@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from derive.check.verdict import Outcome, Result
 from derive.devices.elements import Coupling
-from derive.eliminate.derivation import Step
+from derive.eliminate.derivation import Derivation, Step
 from derive.expressions.tree import Elided, Equation, Expression, Name, Negative, Product, Quotient, Sum
 from derive.quantities.dimension import (
     CURRENT,
@@ -18,6 +18,7 @@ from derive.quantities.dimension import (
 )
 from derive.sheet.document import Block, Maths, Section
 from derive.sheet.wording import Wording
+from derive.topology.topology import BandName
 
 # More unknowns than this, and long coefficients are shown by their leading terms.
 FULL_UNKNOWNS = 4
@@ -40,6 +41,23 @@ class View:
         return self.result.solution.derivation.system.find.name
 
     @property
+    def band(self) -> BandName:
+        """The band of the result."""
+        band = self.result.solution.band
+        return band.band if band else "full"
+
+    @property
+    def banded(self) -> bool:
+        """Whether results of the sheet differ by band."""
+        report = self.outcome.bands
+        return report is not None and len(report.bands) > 1
+
+    @property
+    def title(self) -> str:
+        """The quantity's name, and its band where results differ by it."""
+        return f"{self.name}, {self.band} band" if self.banded else self.name
+
+    @property
     def alone(self) -> bool:
         """Whether the sheet has no other result."""
         return len(self.outcome.results) == 1
@@ -51,7 +69,10 @@ class View:
     @property
     def headline(self) -> tuple[Section, ...]:
         """Give the heading over this result's sections, where there are several results."""
-        return () if self.alone else (Section("Derivation of", (), about=Maths(Name(self.name))),)
+        if self.alone:
+            return ()
+        title = f"{self.band.capitalize()} band: derivation of" if self.banded else "Derivation of"
+        return (Section(title, (), about=Maths(Name(self.name))),)
 
     def step(self, rule: str) -> Step | None:
         """Give the last step of a rule, or None."""
@@ -61,7 +82,7 @@ class View:
         """Give an expression as it is shown: whole, or its leading terms and a pointer."""
         if len(self.result.solution.derivation.system.unknowns) <= FULL_UNKNOWNS:
             return content
-        return abridged(content, f"ledger, result {self.name}, step {number}")
+        return abridged(content, f"ledger, result {self.title}, step {number}")
 
     def shown_equation(self, equation: Equation, number: int) -> Equation:
         """Give an equation as it is shown."""
@@ -76,10 +97,20 @@ def views(outcome: Outcome) -> tuple[View, ...]:
             outcome,
             result,
             place,
-            Wording(result.solution.derivation, f"{place + 1}." if several else ""),
+            Wording(result.solution.derivation, f"{place + 1}." if several else "", _band(result)),
         )
         for place, result in enumerate(outcome.results)
     )
+
+
+def _band(result: Result) -> str:
+    band = result.solution.band
+    return "" if band is None or band.band == "full" else band.band
+
+
+def bias_wording(derivation: Derivation, place: int) -> Wording:
+    """Give the wording of a derivation of the bias, its equations numbered apart from the others."""
+    return Wording(derivation, f"B{place}.", f"bias-{place}")
 
 
 def abridged(expression: Expression, pointer: str) -> Expression:

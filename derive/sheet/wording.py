@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Mapping
 
+from derive.bias import steps as bias_steps
 from derive.eliminate.derivation import Derivation, Step
 from derive.eliminate.rules import (
     cancel,
@@ -22,17 +24,22 @@ from derive.expressions.walk import term_count
 from derive.normalise import normalise
 from derive.sheet.document import Inline, Line, Maths, Reference, Text
 
+NAME_LIKE = re.compile(r"([(|]?)([A-Za-z]+[0-9]*_[A-Za-z0-9_]+)([|),.;:]*)")
 # A divisor of more terms than this stands in the equation above anyway; it is not repeated.
 STATED_TERMS = 6
 Sentence = Callable[["Wording", Step], Line]
 
 
 class Wording:
-    """The sentences of one derivation; `label` turns a step's number into what the sheet prints."""
+    """The sentences of one derivation; `label` turns a step's number into what the sheet prints.
 
-    def __init__(self, derivation: Derivation, prefix: str = "") -> None:
+    `place` tells derivations of one quantity apart, such as by the band.
+    """
+
+    def __init__(self, derivation: Derivation, prefix: str = "", place: str = "") -> None:
         self.derivation = derivation
         self.prefix = prefix
+        self.place = place
         system = derivation.system
         names = [symbol.name for symbol in system.small_signal.symbols]
         names += [drive.name for drive in system.small_signal.drives]
@@ -45,7 +52,8 @@ class Wording:
 
     def anchor(self, number: int) -> str:
         """Give the anchor of a step's equation."""
-        return f"{self.derivation.system.find.name}-{number}"
+        name = self.derivation.system.find.name
+        return f"{name}-{self.place}-{number}" if self.place else f"{name}-{number}"
 
     def reference(self, number: int) -> Reference:
         """Refer to a step's equation."""
@@ -53,6 +61,8 @@ class Wording:
 
     def says(self, step: Step) -> Line:
         """Give the sentence of a step."""
+        if step.rule in bias_steps.SENTENCES:
+            return (Text(bias_steps.SENTENCES[step.rule]),)
         return joined(SENTENCES[step.rule](self, step))
 
     def with_names(self, words: str) -> Line:
@@ -66,6 +76,18 @@ class Wording:
                 line.append(Text(word + " "))
         last = line.pop()
         return (*line, Text(last.text.rstrip(" "))) if isinstance(last, Text) else (*line, last)
+
+
+def marked(words: str) -> Line:
+    """Set every word that is written like a name with a subscript, such as V_CC, as maths."""
+    line: list[Inline] = []
+    for word in re.split(r"( )", words):
+        found = NAME_LIKE.fullmatch(word)
+        if found:
+            line += [Text(found[1]), Maths(Name(found[2])), Text(found[3])]
+        else:
+            line.append(Text(word))
+    return joined(tuple(line))
 
 
 def joined(line: Line) -> Line:

@@ -9,6 +9,11 @@ from typing import Literal
 from derive.quantities.symbol import Value
 
 GROUND = "gnd"
+# What a capacitor or inductor is for; it says in which bands it acts. "" is kept in every band.
+Role = Literal["", "coupling", "bypass", "parasitic"]
+BandName = Literal["low", "mid", "high", "full"]
+# 27 °C, common practice for small-signal parameters.
+ROOM_TEMPERATURE = Fraction("300.15")
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,7 +33,8 @@ class Part:
 
     `wires` holds the node lists by the key they were written under: (("flows", ("c", "e")),
     ("senses", ("b", "e"))); a single node is a tuple of one. `senses_part` is the part whose current
-    is sensed; `coils` the two inductors of a coupling; `parameters` further values by key (A_0, ...).
+    is sensed; `coils` the two inductors of a coupling; `parameters` further values by key (A_0, ...),
+    those of the part's own before those of its model; `words` its choices by key (polarity, ...).
     """
 
     name: str
@@ -40,7 +46,9 @@ class Part:
     senses_part: str | None = None
     coils: tuple[str, str] | None = None
     parameters: tuple[tuple[str, Value], ...] = ()
+    words: tuple[tuple[str, str], ...] = ()
     tolerance: Fraction | None = None
+    role: Role = ""
 
     def nodes(self, key: str) -> tuple[str, ...]:
         """Give the nodes written under `key`; a KeyError where the kind has no such key."""
@@ -60,6 +68,25 @@ class Drive:
     place: Place
     quantity: Literal["voltage", "current"]
     nodes: tuple[str, str]
+
+
+@dataclass(frozen=True, slots=True)
+class Supply:
+    """A DC supply from a node to ground: signal ground in every band; `dc` is used for the bias."""
+
+    name: str
+    place: Place
+    node: str
+    dc: Value
+
+
+@dataclass(frozen=True, slots=True)
+class Merge:
+    """A name that the user gives to parts in parallel or in series: one line of [merge]."""
+
+    name: str
+    place: Place
+    parts: tuple[str, ...]
 
 
 @dataclass(frozen=True, slots=True)
@@ -95,7 +122,10 @@ class TitleBlock:
 
 @dataclass(frozen=True, slots=True)
 class Topology:
-    """One stage as its user described it, with the text it was read from."""
+    """One stage as its user described it, with the text it was read from.
+
+    `bands` is empty where the user chose none; `temperature` is that of the junctions, in kelvin.
+    """
 
     file: str
     text: str
@@ -104,3 +134,7 @@ class Topology:
     drives: tuple[Drive, ...]
     parts: tuple[Part, ...]
     finds: tuple[Find, ...]
+    supplies: tuple[Supply, ...] = ()
+    bands: tuple[BandName, ...] = ()
+    temperature: Fraction = ROOM_TEMPERATURE
+    merges: tuple[Merge, ...] = ()

@@ -30,7 +30,7 @@ from derive.algebra.linear_system import LinearSystem, solve  # noqa: E402
 from derive.devices.linearise import linearise  # noqa: E402
 from derive.eliminate.rows import input_row  # noqa: E402
 from derive.nodal.write import write_equations  # noqa: E402
-from derive.topology.read import read  # noqa: E402
+from derive.reading.read import read  # noqa: E402
 
 BERKOWITZ_TARGETS = {
     "ce": 10,
@@ -134,11 +134,10 @@ def netlist(name: str) -> str:
         letter = {"resistor": "R", "capacitor": "C", "transconductance": "G"}[part.kind]
         counts[letter] += 1
         label = f"{letter}{counts[letter]}"
-        if letter == "G":
-            # Its current flows from the second node to the first through the outer circuit.
-            nodes = (*reversed(part.nodes("flows")), *part.nodes("senses"))
-        else:
-            nodes = part.nodes("between")
+        # A source's current flows from the second node to the first through the outer circuit.
+        controlled = letter == "G"
+        flows = (*reversed(part.nodes("flows")), *part.nodes("senses")) if controlled else ()
+        nodes = flows or part.nodes("between")
         words = " ".join("0" if node == "gnd" else node for node in nodes)
         lines.append(f"{label} {words} {label.lower()}")
     return "\n".join(lines)

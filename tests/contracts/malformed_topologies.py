@@ -121,31 +121,11 @@ TABLES = (
 )
 
 LATER = (
-    row("supplies", GOOD + '[supplies] #<\nV_CC = { node = "vcc", dc = "12 V" }\n', "not yet"),
     row("assume", GOOD + '[[assume]] #<\nthat = "R_1 -> 0"\n', "assume", "not yet supported"),
-    row("bands", 'bands = ["low"] #<\n' + GOOD, "bands", "not yet supported"),
-    row("conditions", GOOD + "[conditions] #<\n", "conditions", "not yet supported"),
-    row("merge", GOOD + "[merge] #<\n", "merge", "not yet supported"),
     row("budget", GOOD + "[budget] #<\n", "budget", "not yet supported"),
     row("drawing", GOOD + "[drawing] #<\n", "drawing", "not yet supported"),
     row("hand", SHEET + 'hand = "h.toml" #<\n', "hand", "not yet supported"),
-    row(
-        "role",
-        parts(R_1 + 'C_1 = { capacitor = "1n", between = ["out", "gnd"], role = "bypass" } #<'),
-        "role",
-        "not yet supported",
-    ),
-    row(
-        "bipolar",
-        also('Q1 = { bipolar = "n", base = "in", collector = "out", emitter = "gnd" } #<'),
-        "bipolar",
-        "not yet supported",
-    ),
-    row("mosfet", also('M1 = { mosfet = "n", gate = "in" } #<'), "mosfet", "not yet supported"),
-    row("jfet", also('J1 = { jfet = "n", gate = "in" } #<'), "jfet", "not yet supported"),
-    row("diode", also('D1 = { diode = "n", anode = "in" } #<'), "diode", "not yet supported"),
     row("return ratio", finds('[find.T]\nreturn_ratio = "R_1" #<\n'), "return_ratio", "not yet"),
-    row("device model", GOOD + "[models.npn]\nbeta = 180 #<\n", "beta", "not yet supported"),
 )
 
 NAMES = (
@@ -364,7 +344,6 @@ VALUES = (
 INTEGRATOR = 'U1 = { opamp = %s, output = "o", inputs = ["in", "o"]%s } #<'
 
 OPAMPS = (
-    row("op amp without gain", also(INTEGRATOR % ("true", "")), "U1", "no gain"),
     row(
         "both unity frequencies",
         also(INTEGRATOR % ("true", ', f_unity = "1 MHz", w_unity = "1 Mrad/s"')),

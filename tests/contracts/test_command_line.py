@@ -13,6 +13,8 @@ import sys
 from functools import partial
 from pathlib import Path
 
+import malformed_bias
+import malformed_devices
 import malformed_topologies as table
 import pytest
 
@@ -23,6 +25,13 @@ from derive.cli import main
 
 ROOT = Path(__file__).parents[2]
 CASE = ROOT / "cases" / "echo_preamp" / "topology.toml"
+ALL_ROWS = (
+    *table.ROWS,
+    *malformed_devices.READ,
+    *malformed_devices.WORKED,
+    *malformed_bias.CONTRADICTED,
+    *malformed_bias.BIASED,
+)
 BUFFER = ROOT / "cases" / "line_buffer" / "topology.toml"
 
 
@@ -70,7 +79,7 @@ def in_a_process(*arguments, cwd, **environment):
 
 
 @pytest.mark.parametrize("command", ["sheet", "show"])
-@pytest.mark.parametrize("row", table.ROWS, ids=lambda row: row.name.replace(" ", "-"))
+@pytest.mark.parametrize("row", ALL_ROWS, ids=lambda row: row.name.replace(" ", "-"))
 def test_malformed_topology_gives_one_message_and_no_file(row, command, tmp_path, monkeypatch, capsys):
     monkeypatch.chdir(tmp_path)
     bad = Path("bad.toml")
@@ -182,13 +191,13 @@ def test_unknown_kind_of_output_is_refused(kinds, good, tmp_path, capsys):
 def test_unknown_quantity_is_answered_with_those_there_are(capsys):
     message = refused(capsys, "show", BUFFER, "--find", "A_w")
     assert '"A_w"' in message
-    assert "A_v, Z_out" in message
+    assert "A_v, Z_e" in message
 
 
 def test_unknown_band_is_answered_with_those_there_are(capsys):
-    message = refused(capsys, "show", BUFFER, "--band", "low")
-    assert '"low"' in message
-    assert message.endswith("full")
+    message = refused(capsys, "show", BUFFER, "--band", "full")
+    assert '"full"' in message
+    assert message.endswith("low, mid, high")
 
 
 @pytest.mark.parametrize("arguments", [[], ["sheet"], ["show"], ["frobnicate"], ["show", "a", "b"]])
@@ -254,11 +263,11 @@ def test_short_work_says_nothing_on_standard_error(capsys):
 
 
 def test_find_shows_one_quantity_and_steps_show_the_derivation(capsys):
-    assert main(["show", str(BUFFER), "--find", "Z_out"]) == 0
+    assert main(["show", str(BUFFER), "--find", "Z_e"]) == 0
     brief = capsys.readouterr().out
-    assert "Z_out = " in brief
+    assert "Z_e = " in brief
     assert "A_v = " not in brief
-    assert main(["show", str(BUFFER), "--find", "Z_out", "--steps", "--band", "full"]) == 0
+    assert main(["show", str(BUFFER), "--find", "Z_e", "--steps", "--band", "mid"]) == 0
     long = capsys.readouterr().out
     assert "Solve" in long
     assert "Solve" not in brief

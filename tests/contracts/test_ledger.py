@@ -12,8 +12,8 @@ import pytest
 from ledger_contract import check_ledger
 
 from derive.pipeline import derive
+from derive.reading.read import parse
 from derive.sheet.ledger import ledger_text
-from derive.topology.read import parse
 
 HEAD = '[sheet]\ntitle = "Stage"\n[drives]\nV_s = { voltage = ["in", "gnd"] }\n[parts]\n'
 VOLTAGE = '[find.A_v]\nvoltage = "out"\nper = "V_s"\n'
@@ -112,7 +112,7 @@ def test_impedance_is_per_nothing():
 
 SCRIPT = (
     "import sys; from derive.pipeline import derive; from derive.sheet.ledger import ledger_text; "
-    "from derive.topology.read import parse; "
+    "from derive.reading.read import parse; "
     "topology = parse(sys.stdin.read(), 'stage.toml'); "
     "sys.stdout.write(ledger_text(derive(topology, other_engine=False).outcome))"
 )

@@ -4,13 +4,18 @@ from __future__ import annotations
 
 import re
 import tomllib
+from fractions import Fraction
 from pathlib import Path
 
 import pytest
 
 import derive.cli
+import derive.reading.read as reading
 import derive.render.pdf
-from derive.topology.kinds import KINDS
+from derive.bands.choose import state_in
+from derive.devices.registry import models
+from derive.reading.kinds import KINDS
+from derive.reading.roles import BANDS
 
 ROOT = Path(__file__).parents[2]
 README = (ROOT / "README.md").read_text(encoding="utf-8")
@@ -22,11 +27,12 @@ def test_example_is_the_case_without_its_remarks():
     (shown,) = re.findall(r"^```toml\n(.*?)^```$", README, re.DOTALL | re.MULTILINE)
     case = tomllib.loads((ROOT / "cases/line_buffer/topology.toml").read_text(encoding="utf-8"))
     short = tomllib.loads(shown)
-    assert [short[key] for key in ("drives", "parts", "find")] == [
-        case[key] for key in ("drives", "parts", "find")
-    ]
-    assert short["sheet"].items() <= case["sheet"].items()
-    assert short["nodes"].items() <= case["nodes"].items()
+    shortened = ("sheet", "nodes")
+    assert {key: table for key, table in short.items() if key not in shortened} == {
+        key: table for key, table in case.items() if key not in shortened
+    }
+    for key in shortened:
+        assert short[key].items() <= case[key].items()
 
 
 def test_one_command_sets_up_and_makes_a_sheet_and_one_tests():
@@ -51,6 +57,52 @@ def test_libraries_are_the_same_wherever_they_are_named():
 def test_every_kind_of_part_stands_in_the_table():
     for kind in KINDS:
         assert f"`{kind}`" in README
+
+
+def test_every_parameter_of_every_device_stands_in_its_row():
+    rows = {kind: "" for kind in KINDS}
+    for kind, row in re.findall(r"^\| `(\w+)` \|(.*)$", README, re.MULTILINE):
+        rows[kind] = rows.get(kind, "") + row
+    for kind, spec in KINDS.items():
+        words = [parameter.name for parameter in spec.parameters]
+        words += [word for key, allowed in spec.choices for word in (key, *allowed)]
+        words += [key for key, _ in (*spec.wires, *spec.optional_wires) if spec.parameters]
+        for word in words:
+            if kind == "opamp" and word in ("output", "inputs"):
+                continue  # written as "as above"
+            assert re.search(rf"[` ]{word}[` ]", rows[kind]), (kind, word)
+
+
+def test_defaults_of_the_dc_circuit_are_those_of_the_models():
+    found = {
+        (kind, key): value
+        for kind, model in models().items()
+        for key, value in getattr(model, "DEFAULTS", {}).items()
+    }
+    assert len(found) == 4
+    for (kind, key), value in found.items():
+        (row,) = re.findall(rf"^\| `{kind}` \|(.*\(.*)$", README, re.MULTILINE)
+        shown = re.search(rf"`{key}` \(([\d.]+)", row)
+        assert shown, (kind, key)
+        assert Fraction(shown[1]) == value
+
+
+def test_what_a_role_does_in_each_band_is_what_the_program_does():
+    rows = re.findall(r"^\| (`coupling`, .*|`parasitic`; .*|none .*) \|$", README, re.MULTILINE)
+    assert len(rows) == 3
+    for row in rows:
+        words, *told = (cell.strip() for cell in row.split("|"))
+        for role in re.findall(r"`(\w+)`", words) or [""]:
+            assert told == [state_in(role, band, inductor=False) for band in BANDS]
+
+
+def test_every_table_of_a_topology_stands_in_the_list():
+    tables = [name for name in reading._TABLES if name != "bands"]
+    assert len(tables) == 9
+    for name in tables:
+        shown = f"{name}.NAME" if name in ("models", "find") else name
+        assert f"| `[{shown}]` |" in README
+    assert "`bands = [" in README
 
 
 def test_every_command_and_option_stands_in_the_table(capsys):

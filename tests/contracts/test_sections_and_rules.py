@@ -11,19 +11,21 @@ from derive.expressions.tree import Elided
 from derive.expressions.walk import children_of
 from derive.normalise import normalise
 from derive.pipeline import derive
+from derive.reading.read import read
 from derive.sheet import sections
 from derive.sheet.compose import compose, section_modules
 from derive.sheet.document import Display, Matrix, Paragraph, Section, SourceText, Table
 from derive.sheet.view import views
 from derive.sheet.wording import SENTENCES, Wording, plain_line
-from derive.topology.read import read
 
 CIRCUITS = Path(__file__).parents[1] / "benchmarks" / "circuits"
+CASES = Path(__file__).parents[2] / "cases"
 
 
 @pytest.fixture(scope="module")
 def outcome():
-    return derive(read(CIRCUITS / "follower.toml"), other_engine=False).outcome
+    # A stage with supplies, a device, roles and merged parts has something for every section.
+    return derive(read(CASES / "echo_preamp" / "topology.toml"), other_engine=False).outcome
 
 
 def names_in(package):
@@ -58,7 +60,7 @@ def test_a_section_says_its_place_and_scope_and_composes_blocks(name, outcome):
 
 
 def test_every_section_stands_on_the_sheet(outcome):
-    titles = [section.title for section in compose(outcome, "follower").sections]
+    titles = [section.title for section in compose(outcome, "echo_preamp").sections]
     for module in section_modules():
         given = outcome if module.SCOPE == "sheet" else views(outcome)[0]
         assert {section.title for section in module.compose(given)} <= set(titles)

@@ -28,10 +28,11 @@ def final_results(name):
     topology = derive.read(CASES / name / "topology.toml")
     ledger = derive.derive(topology, other_engine=False).ledger()
     return {
-        result["find"]: {
+        f"{result['find']}, {result['band']} band": {
             "per": result["per"],
             "gain": result["gain"]["exact"],
             "power_of_s": result["power_of_s"],
+            "definitions": result["definitions"],
             "numerator": result["numerator"],
             "denominator": result["denominator"],
             "gain_value": f"{result['gain']['value']:.{DIGITS}g}",

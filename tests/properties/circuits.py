@@ -6,7 +6,7 @@ import random
 from collections.abc import Callable
 
 from derive.errors import InputError
-from derive.topology.read import parse
+from derive.reading.read import parse
 from derive.topology.topology import Topology
 
 RESISTANCES = ("100R", "470R", "1k", "2k2", "4.7 kΩ", "33k", "1M")

@@ -9,8 +9,8 @@ from ledger_arithmetic import PRIME, RESIDUES, LedgerResult, calculate, modular_
 from ledger_contract import check_ledger
 
 from derive.pipeline import derive
+from derive.reading.read import parse
 from derive.sheet.compose import compose
-from derive.topology.read import parse
 
 SHEET = '[sheet]\ntitle = "Stage"\n'
 V_S = 'V_s = { voltage = ["in", "gnd"] }'

@@ -24,6 +24,7 @@ from derive.expressions.tree import (
     Power,
     Product,
     Quotient,
+    Root,
     Sum,
 )
 
@@ -61,6 +62,8 @@ def children(tree: Expression) -> tuple[Expression, ...]:
         return (tree.operand,)
     if isinstance(tree, Parallel):
         return tree.branches
+    if isinstance(tree, Root):
+        return (tree.radicand,)
     return ()
 
 
@@ -74,6 +77,8 @@ def rebuilt(tree: Expression, parts: tuple[Expression, ...]) -> Expression:
         return Power(parts[0], tree.exponent)
     if isinstance(tree, Negative):
         return Negative(parts[0])
+    if isinstance(tree, Root):
+        return Root(parts[0])
     return tree
 
 
@@ -221,16 +226,19 @@ def _mutated(tree: Expression, way: str, chance: random.Random) -> Expression | 
 
 
 def differs(one: Expression, other: Expression, chance: random.Random) -> bool:
-    """Decide at three random points, by this folder's own arithmetic, whether two trees differ."""
+    """Decide at random points, by this folder's own arithmetic, whether two trees differ."""
     texts = to_ledger(one), to_ledger(other)
     names = sorted(
         {node.text for tree in (one, other) for node, _ in nodes(tree) if isinstance(node, Name)}
     )
-    for _ in range(3):
+    for _ in range(12):
         values = {name: chance.randrange(1, PRIME) for name in names}
         try:
             if calculate(texts[0], values, RESIDUES) != calculate(texts[1], values, RESIDUES):
                 return True
         except ZeroDivisionError:
             return True
+        except ArithmeticError:
+            # No square root at this point: another one decides.
+            continue
     return False

@@ -12,7 +12,7 @@ from ledger_arithmetic import names_in, read_expression
 
 from derive.errors import SingularError
 from derive.pipeline import derive
-from derive.topology.read import parse
+from derive.reading.read import parse
 
 FIRST_SEED, COUNT = 3_000_000, 40
 LONGEST = 1500

@@ -12,14 +12,15 @@ import pytest
 from mutate import WAYS, Mutation, mutations
 
 import derive.pipeline
+from derive.bands.restrict import restrict
 from derive.check.judge import finish, start
 from derive.check.verdict import Outcome, Result, Solution
 from derive.cli import main
 from derive.devices.linearise import linearise
 from derive.expressions.parse import parse_expression
 from derive.pipeline import solve
+from derive.reading.read import parse
 from derive.sheet.compose import compose
-from derive.topology.read import parse
 
 TOTAL = 1000
 HEAD = '[sheet]\ntitle = "Stage"\n[drives]\nV_s = { voltage = ["in", "gnd"] }\n[parts]\n'
@@ -93,12 +94,12 @@ CIRCUITS = {
 @cache
 def solved(name: str) -> Solution:
     circuit = linearise(parse(CIRCUITS[name], "stage.toml"))
-    return solve(circuit, circuit.topology.finds[0])
+    return solve(restrict(circuit, "full"), circuit.topology.finds[0])
 
 
 def judged(*solutions: Solution) -> Outcome:
     verdicts = finish(start(solutions, lcapy=False))
-    circuit = solutions[0].derivation.system.small_signal
+    circuit = solutions[0].judged
     return Outcome(circuit, tuple(map(Result, solutions, verdicts)))
 
 

@@ -12,7 +12,7 @@ from ledger_arithmetic import PRIME
 from modular_solver import Circuit
 
 from derive.errors import InputError
-from derive.topology.read import parse
+from derive.reading.read import parse
 
 COUNT, BATCH = 500, 25
 SEED = 2_000_000

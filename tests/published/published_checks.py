@@ -7,6 +7,8 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
+from ledger_arithmetic import Response, calculate
+
 # Ties and values that a source takes for granted, as its title or circuit has them.
 UNSAID_TIES = {
     "mirror_beta": "rpi2=rpi1,gm2=gm1,Rm=1e-6",
@@ -66,3 +68,30 @@ def _published(check: dict[str, Any]) -> Published:
         absolute=check["tolerance"]["abs"],
         topology=check["topology"],
     )
+
+
+def quantity(check: Published, response: Response, s: Any) -> Any:
+    """Give what the source names, from gain, powers of s and coefficients alone."""
+    numerator, denominator = response.numerator, response.denominator
+    zero = response.field.number(0)
+    if check.kind in ("tf", "z"):
+        return response.at(s)
+    if check.kind in ("K", "z0"):
+        assert response.power_of_s >= 0
+        return response.gain if response.power_of_s == 0 else zero
+    if check.kind in ("a", "b"):
+        coefficients = numerator if check.kind == "a" else denominator
+        return coefficients[check.index] if check.index < len(coefficients) else zero
+    if check.kind == "delay":
+        return response.field.subtract(denominator[1], numerator[1] if numerator[1:] else zero)
+    if check.kind == "order":
+        return response.field.number(len(denominator) - 1 + max(0, -response.power_of_s))
+    raise AssertionError(f"no road for {check.kind}")
+
+
+def closed_form(check: Published, values: dict[str, Any], field: Any) -> Any:
+    """Give the value of the published form, its own definitions applied in their order."""
+    known = dict(values)
+    for name, text in check.definitions:
+        known[name] = calculate(text, known, field)
+    return calculate(check.closed_form, known, field)

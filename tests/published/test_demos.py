@@ -21,7 +21,7 @@ import pytest
 from ledger_arithmetic import LedgerResult, complex_field, nominal_values
 
 from derive.pipeline import derive
-from derive.topology.read import parse
+from derive.reading.read import parse
 
 FILES = sorted((Path(__file__).parent / "demos").glob("*.toml"))
 # Roots are printed with six digits; responses with all that a double holds.

@@ -19,10 +19,10 @@ from ledger_arithmetic import (
     names_in,
     nominal_values,
 )
-from published_checks import CENTRES, Published, published
+from published_checks import CENTRES, Published, closed_form, published, quantity
 
 from derive.pipeline import Results, derive
-from derive.topology.read import parse
+from derive.reading.read import parse
 
 CHECKS = {check.id: check for check in published()}
 EXACT = [name for name, check in CHECKS.items() if check.exact]
@@ -44,25 +44,6 @@ def response_at(check: Published, values: dict[str, Any], field: Any) -> Respons
     return LedgerResult(result).at(values, field)
 
 
-def quantity(check: Published, response: Response, s: Any) -> Any:
-    """Give what the source names, from gain, powers of s and coefficients alone."""
-    numerator, denominator = response.numerator, response.denominator
-    zero = response.field.number(0)
-    if check.kind in ("tf", "z"):
-        return response.at(s)
-    if check.kind in ("K", "z0"):
-        assert response.power_of_s >= 0
-        return response.gain if response.power_of_s == 0 else zero
-    if check.kind in ("a", "b"):
-        coefficients = numerator if check.kind == "a" else denominator
-        return coefficients[check.index] if check.index < len(coefficients) else zero
-    if check.kind == "delay":
-        return response.field.subtract(denominator[1], numerator[1] if numerator[1:] else zero)
-    if check.kind == "order":
-        return response.field.number(len(denominator) - 1 + max(0, -response.power_of_s))
-    raise AssertionError(f"no road for {check.kind}")
-
-
 def random_values(check: Published, chance: random.Random) -> dict[str, int]:
     """Give a residue for every symbol and for s, with the ties of the source kept."""
     (result,) = ledger_of(check.topology)["results"]
@@ -72,13 +53,6 @@ def random_values(check: Published, chance: random.Random) -> dict[str, int]:
     for name, tie in check.ties:
         values[name] = calculate(tie, values, RESIDUES)
     return values
-
-
-def closed_form(check: Published, values: dict[str, Any], field: Any) -> Any:
-    known = dict(values)
-    for name, text in check.definitions:
-        known[name] = calculate(text, known, field)
-    return calculate(check.closed_form, known, field)
 
 
 @pytest.mark.parametrize("name", CHECKS)

@@ -30,6 +30,7 @@ RESULT = [
     "approximations",
     "checks",
 ]
+BANDS = ["low", "mid", "high", "full"]
 STEP = ["n", "rule", "says", "before", "after", "proof"]
 CHECK = ["name", "method", "passed", "measured", "limit"]
 NAME = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
@@ -58,12 +59,22 @@ def check_ledger(text: str, *, passed: bool = True) -> dict[str, Any]:
     assert topology["sha256"] == hashlib.sha256(topology["text"].encode()).hexdigest()
     for name, symbol in data["symbols"].items():
         check_symbol(name, symbol)
-    finds = [result["find"] for result in data["results"]]
-    assert finds
-    assert len(set(finds)) == len(finds)
+    check_order(data["results"])
     for result in data["results"]:
         check_result(result, data["symbols"], passed=passed)
     return data
+
+
+def check_order(results: list[dict[str, Any]]) -> None:
+    """Assert that each band has the same quantities in the same order, and that the bands go upwards."""
+    assert results
+    bands = list(dict.fromkeys(result["band"] for result in results))
+    assert bands == [band for band in BANDS if band in bands]
+    finds = [result["find"] for result in results if result["band"] == bands[0]]
+    assert len(set(finds)) == len(finds)
+    assert [(result["band"], result["find"]) for result in results] == [
+        (band, find) for band in bands for find in finds
+    ]
 
 
 def _no_constant(name: str) -> None:
@@ -76,13 +87,13 @@ def check_symbol(name: str, symbol: dict[str, Any]) -> None:
     assert list(symbol) == SYMBOL
     assert symbol["value"] is None or EXACT.fullmatch(symbol["value"])
     assert symbol["unit"] in UNITS
-    assert symbol["origin"]
+    assert re.fullmatch(r"part [A-Za-z][A-Za-z0-9_]*", symbol["origin"])
 
 
 def check_result(result: dict[str, Any], symbols: dict[str, Any], *, passed: bool) -> None:
     """Assert what is promised of a result."""
     assert list(result) == RESULT
-    assert result["band"] == "full"
+    assert result["band"] in BANDS
     assert NAME.fullmatch(result["find"])
     check_per(result["per"])
     check_expressions(result, symbols)

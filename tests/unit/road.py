@@ -12,7 +12,7 @@ from derive.expressions.tree import Equation
 from derive.expressions.walk import evaluate, names_of
 from derive.nodal.write import write_equations
 from derive.normalise.normalise import normalise
-from derive.topology.read import parse
+from derive.reading.read import parse
 
 DRIVE = 'V_s = { voltage = ["in", "gnd"] }'
 FIND = 'voltage = "out"\nper = "V_s"'

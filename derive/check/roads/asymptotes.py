@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from derive.check.excitation import excite
 from derive.check.limits import TOO_LARGE, limit_modulo
+from derive.check.merged import with_merged_modulo
 from derive.check.points import stream, values_modulo
 from derive.check.reading import value_modulo
 from derive.check.solve import NoSolutionError
@@ -24,7 +25,7 @@ ENDS = ("s → 0", "s → ∞")
 def judge(solution: Solution) -> Verdict:
     """Judge whether the result has the limits that the reduced circuits have."""
     system = solution.derivation.system
-    circuit, excitation = system.small_signal, excite(system)
+    circuit, excitation = solution.judged, excite(system)
     numbers = stream(solution, "asymptotes")
     prime = numbers.prime()
     why = ""
@@ -33,9 +34,10 @@ def judge(solution: Solution) -> Verdict:
         tableau = assemble(circuit, excitation, values.__getitem__)
         words, fine = [], True
         try:
+            known = with_merged_modulo(solution, values, prime)
             for end, infinite in zip(ENDS, (False, True), strict=True):
                 true = limit_modulo(tableau, prime, at_infinity=infinite)
-                printed = _printed(solution, values, prime, at_infinity=infinite)
+                printed = _printed(solution, known, prime, at_infinity=infinite)
                 words.append(f"{end}: {_compare(true, printed)}")
                 fine = fine and true == printed
         except (NoSolutionError, ZeroDivisionError) as error:

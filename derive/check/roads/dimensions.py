@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 
 from derive.check.excitation import response_dimension
+from derive.check.merged import definitions_of
 from derive.check.verdict import Solution, Verdict
 from derive.check.words import count
 from derive.devices.elements import Coupling
@@ -35,10 +36,10 @@ class DimensionError(ValueError):
 def judge(solution: Solution) -> Verdict:
     """Judge whether every sum adds like to like, and gain and coefficients are what they must be."""
     system, form = solution.derivation.system, solution.form
-    names = {symbol.name: symbol.dimension for symbol in system.small_signal.symbols}
-    for element in system.small_signal.elements:
-        if isinstance(element, Coupling):
-            names[element.mutual] = INDUCTANCE
+    try:
+        names = _names(solution)
+    except DimensionError as error:
+        return Verdict(NAME, METHOD, False, str(error), LIMIT)
     expected = response_dimension(system)
     if expected is None and not form.is_zero:
         return Verdict(NAME, METHOD, None, "not tried: the drives are of two kinds", LIMIT)
@@ -57,6 +58,25 @@ def judge(solution: Solution) -> Verdict:
             measured = f"{name} is in {in_words(found)}, not in {in_words(wanted)}"
             return Verdict(NAME, METHOD, False, measured, LIMIT)
     return Verdict(NAME, METHOD, True, f"{count(terms, 'term')} agree", LIMIT)
+
+
+def _names(solution: Solution) -> dict[str, Dimension]:
+    """Give the dimension of every name; that of a merged one must be its definition's."""
+    names = {symbol.name: symbol.dimension for symbol in solution.judged.symbols}
+    for element in solution.judged.elements:
+        if isinstance(element, Coupling):
+            names[element.mutual] = INDUCTANCE
+    merged_symbols = {s.name: s.dimension for s in solution.derivation.system.small_signal.symbols}
+    for merged in definitions_of(solution):
+        try:
+            found = dimension_of(merged.definition, names)
+        except DimensionError as error:
+            raise DimensionError(f"{merged.name}: {error}") from None
+        wanted = merged_symbols.get(merged.name, found)
+        if found is None or found != wanted:
+            raise DimensionError(f"{merged.name} is not of the kind of its parts")
+        names[merged.name] = found
+    return names
 
 
 def dimension_of(expression: Expression, names: Mapping[str, Dimension]) -> Dimension | None:

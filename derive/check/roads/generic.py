@@ -5,6 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 
 from derive.check.excitation import excite
+from derive.check.merged import with_merged_exact
 from derive.check.points import stream, values_exact
 from derive.check.reading import form_exact
 from derive.check.solve import NoSolutionError, solve_exact
@@ -23,7 +24,7 @@ LIMIT = "difference exactly 0"
 def judge(solution: Solution) -> Verdict:
     """Judge whether the result is exactly right where no two values are alike."""
     system, form = solution.derivation.system, solution.form
-    circuit, excitation = system.small_signal, excite(system)
+    circuit, excitation = solution.judged, excite(system)
     numbers = stream(solution, "generic")
     agreed, why = 0, ""
     for _ in range(TRIES):
@@ -31,7 +32,7 @@ def judge(solution: Solution) -> Verdict:
         values["s"] = Fraction(numbers.below(997), 1009)
         try:
             state = solve_exact(assemble(circuit, excitation, values.__getitem__), values["s"])
-            printed = form_exact(form, values)
+            printed = form_exact(form, with_merged_exact(solution, values))
         except (NoSolutionError, ZeroDivisionError) as error:
             why = str(error)
             continue

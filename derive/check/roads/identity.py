@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from derive.check.degree import chance, degree_of_claim
 from derive.check.excitation import excite
+from derive.check.merged import definitions_of, with_merged_modulo
 from derive.check.points import stream, values_modulo
 from derive.check.reading import form_modulo
 from derive.check.solve import NoSolutionError, solve_modulo
@@ -24,7 +25,7 @@ TRIES = 12
 def judge(solution: Solution) -> Verdict:
     """Judge whether the result is true of the circuit for all values of its parts."""
     system, form = solution.derivation.system, solution.form
-    circuit, excitation = system.small_signal, excite(system)
+    circuit, excitation = solution.judged, excite(system)
     numbers = stream(solution, "identity")
     prime = numbers.prime()
     agreed, why = 0, ""
@@ -33,7 +34,7 @@ def judge(solution: Solution) -> Verdict:
         values["s"] = numbers.below(prime)
         try:
             state = solve_modulo(assemble(circuit, excitation, values.__getitem__), values["s"], prime)
-            printed = form_modulo(form, values, prime)
+            printed = form_modulo(form, with_merged_modulo(solution, values, prime), prime)
         except (NoSolutionError, ZeroDivisionError) as error:
             why = str(error)
             continue
@@ -45,7 +46,7 @@ def judge(solution: Solution) -> Verdict:
             break
     if agreed < POINTS:
         return Verdict(NAME, METHOD, False, f"no point could be worked: {why}", "equal at every point")
-    degree = degree_of_claim(form, circuit)
+    degree = degree_of_claim(form, circuit, definitions_of(solution))
     measured = f"equal at {count(POINTS, 'point')}"
     limit = (
         f"a wrong result passes a point with a chance of {at_most(chance(degree))} at most "

@@ -8,6 +8,7 @@ from fractions import Fraction
 import numpy as np
 
 from derive.check.excitation import excite
+from derive.check.merged import definitions_of, with_merged_exact
 from derive.check.points import symbol_names
 from derive.check.printed import wrong_number
 from derive.check.rounding import value_without_rounding
@@ -35,13 +36,15 @@ Ratio = tuple[list[Fraction], list[Fraction], int]  # top, bottom, power of s
 
 def judge(solution: Solution) -> Verdict:
     """Judge whether the result gives the circuit's response at its nominal values."""
-    system = solution.derivation.system
-    values = nominal_values(system.small_signal)
+    values = nominal_values(solution.judged)
     if values is None:
         return Verdict(NAME, METHOD, None, "not tried: a value is left open", "")
     omegas = [2 * math.pi * hertz for hertz in frequencies_hz(solution)]
     try:
-        printed = _coefficients(solution, values)
+        known = with_merged_exact(solution, values)
+        if wrong := _wrong_value(solution, known):
+            return Verdict(NAME, METHOD, False, wrong, "each merged part has its definition's value")
+        printed = _coefficients(solution, known)
         if not any(printed[1]):
             words = "not decided: at these values the response is nothing over nothing"
             return Verdict(NAME, METHOD, None, words, "")
@@ -52,6 +55,15 @@ def judge(solution: Solution) -> Verdict:
         return _with_numbers(verdict, solution, printed)
     except (NoSolutionError, ZeroDivisionError, OverflowError) as error:
         return Verdict(NAME, METHOD, None, f"not finished: {error}", "")
+
+
+def _wrong_value(solution: Solution, known: dict[str, Fraction]) -> str:
+    """Say which merged part is given another value than its definition has; "" where none is."""
+    given = {symbol.name: symbol.value for symbol in solution.derivation.system.small_signal.symbols}
+    for merged in definitions_of(solution):
+        if given.get(merged.name, known[merged.name]) != known[merged.name]:
+            return f"{merged.name} has another value than its definition"
+    return ""
 
 
 def _with_numbers(verdict: Verdict, solution: Solution, printed: Ratio) -> Verdict:
@@ -69,7 +81,7 @@ def _with_numbers(verdict: Verdict, solution: Solution, printed: Ratio) -> Verdi
 def _sweep(solution: Solution, values: dict[str, Fraction], omegas: list[float]) -> Sweep:
     system = solution.derivation.system
     numbers = {name: long_double(value) for name, value in values.items()}
-    tableau = assemble(system.small_signal, excite(system), numbers.__getitem__)
+    tableau = assemble(solution.judged, excite(system), numbers.__getitem__)
     return solve_frequencies(tableau, omegas)
 
 
@@ -91,7 +103,7 @@ def _judge_zero(solution: Solution, values: dict[str, Fraction], omegas: list[fl
     A ratio of polynomials that is zero for all s is zero for real s too, where the solver is exact.
     """
     system = solution.derivation.system
-    tableau = assemble(system.small_signal, excite(system), values.__getitem__)
+    tableau = assemble(solution.judged, excite(system), values.__getitem__)
     points = [Fraction(round(omega) or 1) for omega in omegas[:: POINTS // EXACT_POINTS]]
     worst = max(abs(solve_exact(tableau, s).response) for s in points)
     limit = f"below {at_most(float(ROOT_ERROR))}"

@@ -9,6 +9,7 @@ from typing import Any
 
 from derive.check.child import Child, answers_of, ask
 from derive.check.excitation import excite
+from derive.check.merged import with_merged_exact
 from derive.check.netlist import write_netlist
 from derive.check.points import stream, values_exact
 from derive.check.reading import value_exact
@@ -47,8 +48,8 @@ def start(solutions: Sequence[Solution], seconds: float = SECONDS) -> Begun:
     for solution in solutions:
         system = solution.derivation.system
         try:
-            values = values_exact(system.small_signal, stream(solution, "other engine"))
-            netlist = write_netlist(system.small_signal, excite(system), values)
+            values = values_exact(solution.judged, stream(solution, "other engine"))
+            netlist = write_netlist(solution.judged, excite(system), values)
         except KeyError as error:
             asked.append(Asked(solution, {}, str(error.args[0])))
             continue
@@ -88,6 +89,7 @@ def _undecided(measured: str) -> Verdict:
 def compare(solution: Solution, values: dict[str, Fraction], answer: dict[str, Any]) -> Verdict:
     """Compare the engine's ratio of polynomials with the printed one at the same values."""
     form = solution.form
+    values = with_merged_exact(solution, values)
     top = [Fraction(text) for text in answer["top"]]
     bottom = [Fraction(text) for text in answer["bottom"]]
     gain = value_exact(form.gain, values)

@@ -9,9 +9,18 @@ from __future__ import annotations
 from derive.devices.elements import Coupling
 from derive.devices.model import Model, Names, value_symbol
 from derive.quantities.dimension import RATIO
+from derive.topology.kind import Kind
 from derive.topology.topology import Part
 
 KIND = "coupling"
+SPEC = Kind(
+    KIND,
+    (),
+    '{ coupling = "0.98", coils = ["L_1", "L_2"] }',
+    dimension=RATIO,
+    sign="coupling",
+    has_coils=True,
+)
 
 
 def linearise(part: Part, names: Names) -> Model:

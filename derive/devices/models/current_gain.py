@@ -5,9 +5,19 @@ from __future__ import annotations
 from derive.devices.elements import CurrentGain
 from derive.devices.model import Model, Names, value_symbol
 from derive.quantities.dimension import RATIO
+from derive.topology.kind import Kind
 from derive.topology.topology import Part
 
 KIND = "current_gain"
+SPEC = Kind(
+    KIND,
+    (("flows", 2),),
+    '{ current_gain = "100", flows = ["c", "e"], senses = "R_1" }',
+    dimension=RATIO,
+    sign="not zero",
+    senses_part=True,
+    two_node_key="flows",
+)
 
 
 def linearise(part: Part, names: Names) -> Model:

@@ -4,9 +4,16 @@ from __future__ import annotations
 
 from derive.devices.elements import VirtualShort
 from derive.devices.model import Model, Names
+from derive.topology.kind import Kind
 from derive.topology.topology import Part
 
 KIND = "ideal_opamp"
+SPEC = Kind(
+    KIND,
+    (("output", 1), ("inputs", 2)),
+    '{ ideal_opamp = true, output = "out", inputs = ["plus", "minus"] }',
+    written="true",
+)
 
 
 def linearise(part: Part, names: Names) -> Model:

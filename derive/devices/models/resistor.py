@@ -5,9 +5,18 @@ from __future__ import annotations
 from derive.devices.elements import Resistor
 from derive.devices.model import Model, Names, value_symbol
 from derive.quantities.dimension import RESISTANCE
+from derive.topology.kind import Kind
 from derive.topology.topology import Part
 
 KIND = "resistor"
+SPEC = Kind(
+    KIND,
+    (("between", 2),),
+    '{ resistor = "4k7", between = ["a", "b"] }',
+    dimension=RESISTANCE,
+    two_node_key="between",
+    joins=(("between", "between"),),
+)
 
 
 def linearise(part: Part, names: Names) -> Model:

@@ -35,5 +35,5 @@ def _table(view: View) -> Table:
         )
         for verdict in view.result.verdicts
     ]
-    caption = "Checks" if view.alone else f"Checks on {view.name}"
+    caption = "Checks" if view.alone else f"Checks on {view.title}"
     return Table(caption, columns, tuple(rows))

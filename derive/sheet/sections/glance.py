@@ -39,6 +39,7 @@ from derive.topology.topology import GROUND
 
 ORDER = 10
 SCOPE = "sheet"
+BAND_ORDER = ("mid", "full", "low", "high")
 # A final equation of up to this many terms is shown with its coefficients written out.
 EXPLICIT_TERMS = 16
 
@@ -46,7 +47,8 @@ EXPLICIT_TERMS = 16
 def compose(outcome: Outcome) -> tuple[Section, ...]:
     """Give the section."""
     blocks: list[Block] = []
-    for view in views(outcome):
+    # The mid-band gain first: it is what is asked first.
+    for view in sorted(views(outcome), key=lambda view: BAND_ORDER.index(view.band)):
         blocks += _blocks(view)
     return (Section("Result at a glance", tuple(blocks)),)
 
@@ -132,10 +134,13 @@ def _names(view: View, form: NormalForm) -> list[Block]:
 
 
 def _asked(view: View) -> Line:
-    find = view.result.solution.derivation.system.find
+    # As the user asked for it: a band may know the nodes by other names.
+    asked = view.outcome.circuit.topology.finds
+    find = next(find for find in asked if find.name == view.name)
     plus, minus = find.nodes or ("", "")
     if find.quantity == "impedance":
-        return (Text(f"Impedance seen between {plus} and {minus}, all drives at zero."),)
+        tail = f"; {view.band} band." if view.banded else "."
+        return (Text(f"Impedance seen between {plus} and {minus}, all drives at zero{tail}"),)
     if find.quantity == "current":
         what: Line = Text("Current through "), Maths(Name(find.part or ""))
     else:
@@ -147,7 +152,7 @@ def _asked(view: View) -> Line:
     for place, (name, weight) in enumerate(others):
         line.append(Text(", with " if not place else " and " if place == len(others) - 1 else ", "))
         line.append(Maths(Equation(Name(name), _share(weight, common))))
-    return (*line, Text("."))
+    return (*line, Text(f"; {view.band} band." if view.banded else "."))
 
 
 def _share(weight: Fraction, common: str) -> Expression:
@@ -167,6 +172,9 @@ def _numbers(view: View, form: NormalForm) -> Line:
     words = f" = {gain}" + (f" ({level})" if level else "")
     name = view.step(normalise.GAIN)
     label = Name(name.subject or "K") if name else Name("K")
+    if _explicit(form) and form.numerator == form.denominator == (ONE,) and not form.power_of_s:
+        # The box shows the quantity itself; there is no K in it.
+        label = Name(view.name)
     lead: Line = (Text("At the nominal values "), Maths(label), Text(words))
     return (*lead, Text(f"; {_roots('pole', numbers.poles)}; {_roots('zero', numbers.zeros)}."))
 

@@ -5,17 +5,20 @@ from __future__ import annotations
 from fractions import Fraction
 
 from derive.check.verdict import Outcome
+from derive.devices.registry import biased_device, models
 from derive.expressions.tree import Equation, Name, Product, Root
 from derive.quantities.format import engineering
 from derive.quantities.symbol import Symbol
 from derive.sheet.document import Block, Column, Line, Maths, Paragraph, Section, Table, Text
 from derive.sheet.view import mutual_names
-from derive.topology.topology import Part
+from derive.topology.topology import Part, Supply
 
 ORDER = 20
 SCOPE = "sheet"
 # A value is shown as it was read, not rounded; more figures than this no part has.
 READ_DIGITS = 15
+# Their parameters stand in a section of their own.
+BIASED = frozenset(kind for kind in models() if biased_device(kind) is not None)
 KIND_WORDS = {
     "transconductance": "transconductance",
     "voltage_gain": "voltage gain",
@@ -29,6 +32,9 @@ def compose(outcome: Outcome) -> tuple[Section, ...]:
     """Give the section."""
     topology = outcome.circuit.topology
     blocks: list[Block] = []
+    if topology.supplies:
+        heads = _columns("Supply", "Connected", "DC value", numeric=("DC value",))
+        blocks.append(Table("Supplies", heads, tuple(map(_supply_row, topology.supplies))))
     if topology.drives:
         rows = [_drive_row(drive.name, drive.quantity, drive.nodes) for drive in topology.drives]
         blocks.append(Table("Drives", _columns("Drive", "Kind", "Connected"), tuple(rows)))
@@ -54,6 +60,11 @@ def _columns(*headings: str, numeric: tuple[str, ...] = ()) -> tuple[Column, ...
     return tuple(Column((Text(heading),), heading in numeric) for heading in headings)
 
 
+def _supply_row(supply: Supply) -> tuple[Line, ...]:
+    where = (Text(f"{supply.node} against ground"),)
+    return (Maths(Name(supply.name)),), where, (Text(supply.dc.text.replace("-", "−")),)
+
+
 def _drive_row(name: str, quantity: str, nodes: tuple[str, str]) -> tuple[Line, ...]:
     if quantity == "voltage":
         return (Maths(Name(name)),), (Text("voltage source"),), (Text(f"{nodes[0]} +, {nodes[1]} −"),)
@@ -61,7 +72,7 @@ def _drive_row(name: str, quantity: str, nodes: tuple[str, str]) -> tuple[Line, 
 
 
 def _part_row(part: Part, outcome: Outcome) -> tuple[Line, ...]:
-    kind = KIND_WORDS.get(part.kind, part.kind)
+    kind = KIND_WORDS.get(part.kind, part.kind) + (f", {part.role}" if part.role else "")
     symbols = [s for s in outcome.circuit.symbols if s.origin == f"part {part.name}"]
     named = [symbol for symbol in symbols if symbol.name != part.name]
     value: list[Text | Maths] = []
@@ -69,7 +80,9 @@ def _part_row(part: Part, outcome: Outcome) -> tuple[Line, ...]:
         words = _value(symbol)
         value += [Text(", ")] if value else []
         value += [Maths(Name(symbol.name)), Text(f" = {words}")] if named else [Text(words)]
-    if not symbols:
+    if part.kind in BIASED:
+        value = [Text(f"model {part.model}" if part.model else "given on the part")]
+    elif not symbols:
         value = [Text("ideal")]
     tolerance = f"±{_percent(part.tolerance)} %" if part.tolerance is not None else ""
     return (

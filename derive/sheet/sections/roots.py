@@ -9,6 +9,7 @@ from derive.sheet.view import View
 
 ORDER = 65
 SCOPE = "result"
+FOLD = {1: "", 2: "double ", 3: "triple "}
 
 
 def compose(view: View) -> tuple[Section, ...]:
@@ -20,7 +21,7 @@ def compose(view: View) -> tuple[Section, ...]:
     blocks: list[Block] = []
     if power:
         kind = "zero" if power > 0 else "pole"
-        count = f"a {kind}" if abs(power) == 1 else f"a {abs(power)}-fold {kind}"
+        count = f"a {FOLD.get(abs(power), f'{abs(power)}-fold ')}{kind}"
         words = f"The factor s to the power {power} is {count} at the origin, besides those below."
         blocks.append(Paragraph((Text(words.replace("-1 is", "−1 is").replace("-2 is", "−2 is")),)))
     rows = [_row("pole", root) for root in numbers.poles if root.imaginary >= 0]

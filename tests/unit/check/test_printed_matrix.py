@@ -4,11 +4,12 @@ from dataclasses import replace
 
 import pytest
 
+from derive.bands.restrict import restrict
 from derive.check.roads import steps
 from derive.devices.linearise import linearise
 from derive.expressions.tree import ZERO, Negative
 from derive.pipeline import solve
-from derive.topology.read import parse
+from derive.reading.read import parse
 
 STAGE = """
 [sheet]
@@ -31,7 +32,7 @@ per = "V_s"
 @pytest.fixture(scope="module")
 def solution():
     circuit = linearise(parse(STAGE, "stage.toml"))
-    return solve(circuit, circuit.topology.finds[0])
+    return solve(restrict(circuit, "full"), circuit.topology.finds[0])
 
 
 def with_matrix(solution, matrix):

@@ -8,11 +8,11 @@ import pytest
 from derive.expressions.tree import Elided, Name, Negative, Product, Quotient, Sum
 from derive.expressions.walk import children_of
 from derive.pipeline import derive
+from derive.reading.read import parse, read
 from derive.sheet.compose import compose
 from derive.sheet.document import Display, Matrix
 from derive.sheet.plain import plain_outcome, summary_rows
 from derive.sheet.view import LEADING_TERMS, TERM_LIMIT, abridged
-from derive.topology.read import parse, read
 
 CIRCUITS = Path(__file__).parents[2] / "benchmarks" / "circuits"
 

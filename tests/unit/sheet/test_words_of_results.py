@@ -5,9 +5,9 @@ from fractions import Fraction
 import pytest
 
 from derive.pipeline import derive
+from derive.reading.read import parse
 from derive.sheet.figures import decibels
 from derive.sheet.plain import plain_outcome
-from derive.topology.read import parse
 
 TOPOLOGY = """
 [sheet]

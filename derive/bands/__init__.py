@@ -1,0 +1,1 @@
+"""The circuit of one band: what was shorted, opened and merged, and why."""

@@ -1,0 +1,1 @@
+"""The DC operating point, and the small-signal parameters that follow from it."""

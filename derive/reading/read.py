@@ -1,0 +1,75 @@
+"""From the text of a topology file to a Topology."""
+
+from __future__ import annotations
+
+import os
+from pathlib import PurePath
+
+from derive.reading.circuit import check_circuit
+from derive.reading.document import Document, load
+from derive.reading.drives import read_drives, read_node_words
+from derive.reading.fields import known_keys, not_yet
+from derive.reading.files import check_text, read_text
+from derive.reading.finds import read_finds
+from derive.reading.merges import read_merges
+from derive.reading.models import check_models_used, read_models
+from derive.reading.parts import read_parts
+from derive.reading.roles import read_bands
+from derive.reading.supplies import read_supplies, read_temperature
+from derive.reading.title_block import read_title_block
+from derive.topology.topology import Topology
+
+_TABLES = (
+    *("bands", "sheet", "nodes", "supplies", "drives", "parts", "models", "conditions", "merge"),
+    "find",
+)
+_LATER = {
+    "assume": "take the assumptions out; the exact result is derived",
+    "budget": "take the table out",
+    "drawing": "take the table out",
+}
+
+
+def read(path: str | os.PathLike[str]) -> Topology:
+    """Give the topology that the file describes, checked and with the line of every item.
+
+    Raises: InputError, with file, line and cure, for anything that cannot be used.
+    """
+    return parse(read_text(path), os.fspath(path))
+
+
+def parse(text: str, file: str) -> Topology:
+    """Give the topology that the text describes; `file` is the name that messages point to.
+
+    Raises: InputError, with file, line and cure, for anything that cannot be used.
+    """
+    check_text(text, file)
+    document = load(text, file)
+    _check_tables(document)
+    title_block = read_title_block(document)
+    models = read_models(document)
+    drives = read_drives(document)
+    parts = read_parts(document, models)
+    check_models_used(document, models, parts)
+    topology = Topology(
+        file=PurePath(file).name,
+        text=text,
+        title_block=title_block,
+        node_words=read_node_words(document),
+        drives=drives,
+        parts=parts,
+        finds=read_finds(document, drives),
+        supplies=read_supplies(document),
+        bands=read_bands(document),
+        temperature=read_temperature(document),
+        merges=read_merges(document),
+    )
+    check_circuit(topology, document)
+    return topology
+
+
+def _check_tables(document: Document) -> None:
+    for name, cure in _LATER.items():
+        if name in document.data:
+            raise not_yet(document, f"{name} is", name, cure=cure)
+    known_keys(document, document.data, _TABLES, "the file")

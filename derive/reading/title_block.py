@@ -1,0 +1,51 @@
+"""The [sheet] table: what goes into the title block."""
+
+from __future__ import annotations
+
+import datetime
+from typing import Any
+
+from derive.reading.document import Document
+from derive.reading.fields import known_keys, not_yet, table, text
+from derive.topology.topology import TitleBlock
+
+_KEYS = (
+    "title",
+    "number",
+    "revision",
+    "prepared",
+    "checked",
+    "approved",
+    "date",
+    "project",
+    "notes",
+)
+_LONGEST_NOTES = 4000
+_TITLE_CURE = 'write [sheet] with title = "..." at the top'
+
+
+def read_title_block(document: Document) -> TitleBlock:
+    """Give the title block as the user wrote it.
+
+    Raises: InputError where the title is missing or an entry is no text.
+    """
+    if "sheet" not in document.data:
+        raise document.error("the file has no [sheet] table with a title", cure=_TITLE_CURE)
+    sheet = table(document, document.data["sheet"], "sheet", "sheet", cure=_TITLE_CURE)
+    if "hand" in sheet:
+        raise not_yet(document, "sheet: the key hand is", "sheet", "hand", cure="take the line out")
+    known_keys(document, sheet, _KEYS, "sheet", "sheet")
+    if "title" not in sheet:
+        raise document.error("sheet: the title is missing", "sheet", cure='write title = "..."')
+    entries = {key: _entry(document, raw, key) for key, raw in sheet.items()}
+    if not entries["title"].strip():
+        raise document.error("sheet: the title is empty", "sheet", "title", cure="say what the stage is")
+    return TitleBlock(**entries)
+
+
+def _entry(document: Document, raw: Any, key: str) -> str:
+    if key == "date" and type(raw) is datetime.date:
+        return raw.isoformat()
+    if key == "notes":
+        return text(document, raw, "sheet: notes", "sheet", key, longest=_LONGEST_NOTES, lines=True)
+    return text(document, raw, f"sheet: {key}", "sheet", key)
