@@ -9,11 +9,14 @@ Solid-State Circuits 3 (1968), from memory.
 
 from __future__ import annotations
 
+from collections.abc import Callable, Mapping, Sequence
 from fractions import Fraction
 
-from derive.devices.model import Region
-from derive.quantities.dimension import VOLTAGE
+from derive.devices.elements import CurrentDrive
+from derive.devices.model import DcModel, Region
+from derive.quantities.dimension import CURRENT, VOLTAGE
 from derive.quantities.format import engineering
+from derive.quantities.symbol import Symbol
 
 
 def drain_current(v_gs: float, v_ds: float, factor: float, threshold: float, slope: float) -> float:
@@ -39,3 +42,30 @@ def saturation(v_gs: Fraction, v_ds: Fraction, threshold: Fraction, sign: Fracti
         f"{gs} = {volts[0]}, {ds} = {volts[1]}",
         f"saturation: {gs} − {name} = {volts[2]} above 0 and {ds} not below it",
     )
+
+
+def own_voltages(
+    voltages: Mapping[str, Fraction], values: Mapping[str, Fraction]
+) -> tuple[Fraction, Fraction]:
+    """Give V_GS and V_DS as an n-channel device's."""
+    sign = values["polarity"]
+    source = voltages["source"]
+    return sign * (voltages["gate"] - source), sign * (voltages["drain"] - source)
+
+
+def terminal_currents(
+    voltages: Mapping[str, float],
+    values: Mapping[str, float],
+    law: Callable[[float, float, Mapping[str, float]], float],
+) -> dict[str, float]:
+    """Give the current into gate, drain and source; `law` is I_D of V_GS and V_DS in own polarity."""
+    sign = float(values["polarity"])
+    gate, drain, source = (voltages[key] for key in ("gate", "drain", "source"))
+    into = sign * law(sign * (gate - source), sign * (drain - source), values)
+    return {"gate": 0.0, "drain": into, "source": -into}
+
+
+def unknown_current(name: str, path: tuple[str, str], symbols: Sequence[Symbol]) -> DcModel:
+    """Give the DC model of a device whose current, along the path, is for the square law to settle."""
+    unknown = Symbol(name, CURRENT, None, "the square law", "?")
+    return DcModel((), (CurrentDrive(name, path),), (unknown, *symbols))

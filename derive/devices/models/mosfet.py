@@ -20,12 +20,17 @@ from fractions import Fraction
 
 from derive.devices.build import Builder
 from derive.devices.dc import dc_symbol, mirrored, own_values
-from derive.devices.elements import CurrentDrive
 from derive.devices.model import DcModel, Model, Names, Region, Witness
 from derive.devices.parameters import DeviceParameters, DevicePoint
 from derive.devices.point import FROM_POINT, NOT_KNOWN, needs, point_quantities
 from derive.devices.routes import Known, Route, Routes, Wanted, work_out
-from derive.devices.square_law import drain_current, saturation
+from derive.devices.square_law import (
+    drain_current,
+    own_voltages,
+    saturation,
+    terminal_currents,
+    unknown_current,
+)
 from derive.quantities.dimension import (
     CAPACITANCE,
     CONDUCTANCE,
@@ -34,7 +39,6 @@ from derive.quantities.dimension import (
     VOLTAGE,
 )
 from derive.quantities.dimension import CURRENT as AMPERES
-from derive.quantities.symbol import Symbol
 from derive.quantities.units import PER_VOLT, TRANSCONDUCTANCE_FACTOR
 from derive.topology.kind import Kind, Parameter
 from derive.topology.topology import Part
@@ -177,19 +181,8 @@ def dc_elements(part: Part, names: Names) -> DcModel:
     ]
     if values["lambda"]:
         symbols.append(dc_symbol(part, "lambda", PER_VOLT, values, names))
-    current = names.indexed(part, CURRENT)
-    flows = mirrored((build.node("drain"), build.node("source")), values)
-    unknown = Symbol(current, AMPERES, None, "the square law", "?")
-    return DcModel((), (CurrentDrive(current, flows),), (unknown, *symbols))
-
-
-def own_voltages(
-    voltages: Mapping[str, Fraction], values: Mapping[str, Fraction]
-) -> tuple[Fraction, Fraction]:
-    """Give V_GS and V_DS as an n-channel device's."""
-    sign = values["polarity"]
-    source = voltages["source"]
-    return sign * (voltages["gate"] - source), sign * (voltages["drain"] - source)
+    path = mirrored((build.node("drain"), build.node("source")), values)
+    return unknown_current(names.indexed(part, CURRENT), path, symbols)
 
 
 def current(v_gs: float, v_ds: float, values: Mapping[str, float]) -> float:
@@ -202,10 +195,7 @@ def currents(
     voltages: Mapping[str, float], values: Mapping[str, float], thermal_voltage: float
 ) -> dict[str, float]:
     """Give the current into gate, drain and source."""
-    sign = float(values["polarity"])
-    gate, drain, source = (voltages[key] for key in ("gate", "drain", "source"))
-    into = sign * current(sign * (gate - source), sign * (drain - source), values)
-    return {"gate": 0.0, "drain": into, "source": -into}
+    return terminal_currents(voltages, values, current)
 
 
 def region(voltages: Mapping[str, Fraction], values: Mapping[str, Fraction]) -> Region:
