@@ -8,6 +8,7 @@ from typing import Any
 
 from derive.bands.band_circuit import BandCircuit
 from derive.bands.choose import bands_of
+from derive.bands.merge import refuse_unused_merges
 from derive.bands.restrict import find_in, restrict
 from derive.bias.solve import operating_point
 from derive.check.judge import finish, start
@@ -73,6 +74,8 @@ def derive(
     point = operating_point(topology)
     circuit = linearise(topology, {device.part: device for device in point.devices} if point else {})
     bands = tuple(restrict(circuit, name) for name in _chosen(circuit, band))
+    if band is None:
+        refuse_unused_merges(topology.merges, bands)
     solutions = []
     for band_circuit in bands:
         for find in topology.finds:

@@ -17,7 +17,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from fractions import Fraction
 
-from derive.bands.band_circuit import Change, Merged
+from derive.bands.band_circuit import BandCircuit, Change, Merged
 from derive.bands.combine import Group, Workshop
 from derive.bands.rewire import on_node
 from derive.bands.wiring import sensed_currents, wanted_currents
@@ -32,6 +32,7 @@ from derive.quantities.words import listed
 from derive.topology.topology import GROUND, Find, Merge
 
 MOST_SUBSCRIPTS = 4
+NOT_USED = "not used in this band: "
 
 
 @dataclass(frozen=True, slots=True)
@@ -135,7 +136,7 @@ def _one_by_user(shop: Workshop, merge: Merge) -> tuple[Change, bool]:
         if len(combined) == 1 and len(groups) > 1:
             return _said(shop.rename(combined[0], merge.name)), True
         why = f"{listed(merge.parts)} are neither in parallel nor in series"
-    return Change("merge", merge.name, f"not used in this band: {why}"), False
+    return Change("merge", merge.name, f"{NOT_USED}{why}"), False
 
 
 def _said(group: Group) -> Change:
@@ -144,6 +145,26 @@ def _said(group: Group) -> Change:
     how = "in series" if group.in_series else "in parallel" if group.in_parallel else "combined"
     where = f"between {first} and {second}"
     return Change("merge", group.name, f"merged: {listed(group.parts)} {how}, {where}")
+
+
+def refuse_unused_merges(merges: Sequence[Merge], bands: Sequence[BandCircuit]) -> None:
+    """Refuse a name of [merge] that no band can use; what one band cannot use is said there.
+
+    Raises: InputError at the line of the merge, with the reason that the last band gives.
+    """
+    for merge in merges:
+        unused = [
+            change.says.removeprefix(NOT_USED)
+            for band in bands
+            for change in band.changes
+            if change.subject == merge.name and change.says.startswith(NOT_USED)
+        ]
+        if bands and len(unused) == len(bands):
+            raise InputError(
+                f"merge {merge.name}: it is used in no band: {unused[-1]}",
+                where=str(merge.place),
+                cure="list parts that lie in parallel or in series, or take the line out",
+            )
 
 
 def _merged(group: Group) -> Merged:

@@ -180,7 +180,7 @@ def _line(
         stated.dimension(wanted.key),
         found.value,
         origin,
-        found.words,
+        "left open" if found.value is None and equation is None else found.words,
         equation,
         "parasitic" if wanted.parasitic else "",
         found.text,

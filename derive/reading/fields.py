@@ -150,7 +150,9 @@ def known_keys(
                 f"{item}: the key {quoted(key)} is not known here",
                 *path,
                 key,
-                cure=did_you_mean(key, known, f"the keys are {listed(known)}"),
+                cure=did_you_mean(
+                    key, known, f"the key{' is' if len(known) == 1 else 's are'} {listed(known)}"
+                ),
             )
 
 

@@ -131,7 +131,8 @@ def _bias_verdicts(outcome: Outcome) -> Iterator[str]:
         return
     yield "Checks on the operating point"
     for region in point.regions:
-        yield f"  {MARKS[region.passed]} {region.part}: {region.measured}"
+        wanted = "" if region.passed else f"; limit: {region.limit}"
+        yield f"  {MARKS[region.passed]} {region.part}: {region.measured}{wanted}"
     for check in point.newton:
         yield f"  {MARKS[check.passed]} {check.part}: by Newton's method {newton_difference(check)}"
     for found in point.derivations:

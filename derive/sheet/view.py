@@ -48,9 +48,9 @@ class View:
 
     @property
     def banded(self) -> bool:
-        """Whether results of the sheet differ by band."""
+        """Whether the band is to be named: there are several, or the one leaves parts out."""
         report = self.outcome.bands
-        return report is not None and len(report.bands) > 1
+        return report is not None and (len(report.bands) > 1 or self.band != "full")
 
     @property
     def title(self) -> str:

@@ -75,7 +75,15 @@ def parameters(
             left_out.append(LeftOut(symbol, why))
             continue
         dimension = {"A_0": RATIO, "w_u": FREQUENCY}.get(key, RESISTANCE)
-        line = ParameterLine(key, symbol, dimension, value.exact, "given", "given", text=value.text)
+        line = ParameterLine(
+            key,
+            symbol,
+            dimension,
+            value.exact,
+            "given",
+            "left open" if value.exact is None else "given",
+            text=value.text,
+        )
         lines.append(line)
     return DeviceParameters(part.name, tuple(lines), tuple(left_out))
 

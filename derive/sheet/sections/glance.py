@@ -66,13 +66,13 @@ def _blocks(view: View) -> list[Block]:
 
 def _zero(view: View) -> Line:
     """Say that the response is zero, and what that means."""
-    impedance = view.result.solution.derivation.system.find.quantity == "impedance"
-    what = "impedance" if impedance else "response"
-    why = (
-        "sources hold this voltage, whatever current is driven into it"
-        if impedance
-        else "what is driven does not reach what is sought"
-    )
+    find = view.result.solution.derivation.system.find
+    what = "impedance" if find.quantity == "impedance" else "response"
+    why = "what is driven does not reach what is sought"
+    if len(set(find.nodes or ())) == 1:
+        why = "its two nodes are one in this circuit"
+    elif find.quantity == "impedance":
+        why = "sources hold this voltage, whatever current is driven into it"
     zero = Maths(Equation(Name(view.name), ZERO))
     return (Text(f"The {what} is zero for all values, "), zero, Text(f": {why}."))
 

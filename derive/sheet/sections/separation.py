@@ -68,11 +68,11 @@ def _hertz(value: float) -> str:
 
 
 def _decibels(at: SeparationAt) -> str:
-    return _signed(f"{at.decibels:+.3f} dB")
+    return _signed(f"{round(at.decibels, 3) + 0.0:+.3f} dB")
 
 
 def _degrees(at: SeparationAt) -> str:
-    return _signed(f"{at.degrees:+.2f}°")
+    return _signed(f"{round(at.degrees, 2) + 0.0:+.2f}°")
 
 
 def _signed(text: str) -> str:

@@ -120,6 +120,11 @@ def test_a_value_left_open_leaves_open_what_follows_from_it():
     assert [symbol.text for symbol in symbols if symbol.name == "g_m"] == ["?"]
 
 
+def test_a_parameter_left_open_is_not_said_to_be_given():
+    found = parameters_of("bipolar", 'g_m = "?", r_pi = "1k"')
+    assert [(line.key, line.says) for line in found.lines] == [("g_m", "left open"), ("r_pi", "given")]
+
+
 def test_the_elements_are_those_of_the_hybrid_pi():
     more = f'{DATA}, r_b = "50R", C_cs = "1 pF"'
     assert elements_of("bipolar", more) == (

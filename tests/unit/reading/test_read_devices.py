@@ -163,3 +163,9 @@ def test_a_merge_follows_the_index_that_a_symbol_takes():
 def test_kinds_are_those_of_the_device_models():
     assert {"bipolar", "mosfet", "jfet", "diode", "opamp", "resistor"} <= set(KINDS)
     assert next(iter(KINDS)) == "resistor"
+
+
+def test_the_one_key_that_a_table_knows_is_named_in_the_singular():
+    with pytest.raises(InputError) as raised:
+        parse(STAGE.replace('temperature = "40 °C"', 'colour = "red"'), "stage.toml")
+    assert raised.value.cure == "the key is temperature"

@@ -57,3 +57,38 @@ def test_a_divisor_used_in_multiplying_out_is_stated_not_to_be_zero():
 @pytest.mark.parametrize("ratio", [0.99998, 1.00002, 1])
 def test_a_level_of_about_nothing_has_no_sign(ratio):
     assert decibels(Fraction(ratio)) == "0.00 dB"
+
+
+BYPASSED = """
+[sheet]
+title = "Bypassed"
+[drives]
+V_s = { voltage = ["a", "gnd"] }
+[parts]
+R_1 = { resistor = "1k", between = ["a", "x"] }
+R_2 = { resistor = "3k", between = ["x", "gnd"] }
+C_1 = { capacitor = "1u", between = ["x", "gnd"], role = "bypass" }
+R_3 = { resistor = "1k", between = ["x", "y"] }
+R_4 = { resistor = "1k", between = ["y", "gnd"] }
+[find.Z]
+impedance = "x"
+[find.Z_y]
+impedance = "y"
+"""
+
+
+def in_band(name):
+    topology = parse(f'bands = ["{name}"]\n{BYPASSED}', "words.toml")
+    return plain_outcome(derive(topology, other_engine=False).outcome)
+
+
+def test_an_impedance_across_a_shorted_capacitor_is_not_put_down_to_a_source():
+    text = in_band("mid")
+    assert "Z = 0: its two nodes are one in this circuit." in text
+    assert "sources hold" not in text
+
+
+def test_a_band_that_stands_alone_is_named_unless_it_keeps_every_part():
+    asked = "Impedance seen between y and gnd, all drives at zero"
+    assert f"{asked}; mid band.\n" in in_band("mid")
+    assert f"{asked}.\n" in in_band("full")
