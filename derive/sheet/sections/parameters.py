@@ -6,6 +6,7 @@ from derive.check.verdict import Outcome
 from derive.devices.parameters import DeviceParameters, ParameterLine
 from derive.devices.thermal import thermal_voltage
 from derive.expressions.tree import Name
+from derive.expressions.walk import names_of
 from derive.quantities.dimension import VOLTAGE
 from derive.quantities.format import engineering
 from derive.sheet.document import Block, Column, Line, Maths, Paragraph, Section, Table, Text
@@ -34,9 +35,9 @@ def compose(outcome: Outcome) -> tuple[Section, ...]:
 
 
 def _uses_temperature(devices: list[DeviceParameters]) -> bool:
-    return any("V_T" in line.says for device in devices for line in device.lines) or any(
-        line.origin == "operating point" for device in devices for line in device.lines
-    )
+    """Whether a parameter follows from the thermal voltage; those of field-effect devices do not."""
+    equations = (line.equation for device in devices for line in device.lines)
+    return any(equation is not None and "V_T" in names_of(equation) for equation in equations)
 
 
 def _table(lines: list[ParameterLine]) -> Table:
