@@ -10,6 +10,7 @@ import argparse
 import contextlib
 import io
 import os
+import shutil
 import sys
 from collections.abc import Sequence
 from functools import partial
@@ -95,7 +96,20 @@ def _parser() -> argparse.ArgumentParser:
     show.add_argument("--all-checks", action="store_true", help="ask the other engine as well")
     show.add_argument("--quiet", action="store_true", help="no progress on standard error")
     show.set_defaults(run=_show)
+    _add_compare(commands)
     return parser
+
+
+def _add_compare(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    compare = commands.add_parser("compare", help="set several stages side by side")
+    compare.add_argument("files", nargs="+", metavar="FILE", help="topology file")
+    compare.add_argument(
+        "--find", metavar="NAME", help="the quantity to compare (default: the first gain)"
+    )
+    compare.add_argument("--out", metavar="DIR", help="folder to write a comparison sheet to")
+    compare.add_argument("--only", metavar="KINDS", help="of html,pdf,json")
+    compare.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    compare.set_defaults(run=_compare)
 
 
 def _sheet(options: argparse.Namespace) -> int:
@@ -134,6 +148,27 @@ def _show(options: argparse.Namespace) -> int:
         )
     sys.stdout.write(plain_outcome(results.outcome, steps=options.steps))
     return WELL if results.passed else FAILED
+
+
+def _compare(options: argparse.Namespace) -> int:
+    from derive.compare.make import make_comparison
+    from derive.compare.plain import plain_comparison
+    from derive.progress import Progress
+
+    if options.only is not None and options.out is None:
+        raise InputError(
+            "--only says which files to write, and none are written", cure="name a folder with --out"
+        )
+    only = ",".join(KINDS) if options.only is None else options.only
+    kinds = () if options.out is None else _kinds(only)
+    folder = None if options.out is None else Path(options.out)
+    with Progress(len(options.files), 4, quiet=options.quiet) as progress:
+        comparison, written = make_comparison(options.files, options.find, folder, kinds, progress.tell)
+    width = shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
+    sys.stdout.write(plain_comparison(comparison, width))
+    if written:
+        sys.stdout.write(f"\n{', '.join(str(path) for path in written)}\n")
+    return WELL if comparison.passed else FAILED
 
 
 def _kinds(text: str) -> tuple[str, ...]:

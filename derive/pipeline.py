@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 from derive.bands.band_circuit import BandCircuit
@@ -16,13 +16,20 @@ from derive.check.roads import steps
 from derive.check.verdict import Outcome, Result, Solution, Verdict
 from derive.devices.elements import SmallSignal
 from derive.devices.linearise import linearise
+from derive.eliminate.derivation import Derivation
 from derive.eliminate.eliminate import eliminate
 from derive.eliminate.plan import plan
 from derive.errors import InputError
+from derive.estimates.estimate import estimate
 from derive.nodal.write import write_equations
 from derive.normalise.band_report import report_bands
 from derive.normalise.normalise import normalise
 from derive.normalise.numbers import nominal_numbers
+from derive.reactances.find_miller import find_miller
+from derive.reactances.find_time_constants import find_time_constants
+from derive.readable.far_gain import far_gain
+from derive.readable.readable import read_form
+from derive.readable.vocabulary import vocabulary_of
 from derive.sheet.ledger import ledger
 from derive.sheet.plain import plain_outcome
 from derive.topology.topology import BandName, Find, Topology
@@ -117,11 +124,35 @@ def _result(solution: Solution, verdicts: tuple[Verdict, ...]) -> Result:
 
 
 def solve(band: BandCircuit, find: Find) -> Solution:
-    """Go from the circuit of a band to one quantity in normal form, with every step.
+    """Go from the circuit of a band to one quantity in normal form, with every step and in every form.
 
     Given: the find as the user wrote it.
     """
     system = write_equations(band.circuit, find_in(band, find))
     derivation = eliminate(system, plan(system))
     form, derivation = normalise(derivation)
-    return Solution(derivation, form, nominal_numbers(derivation), band)
+    numbers = nominal_numbers(derivation)
+    vocabulary = vocabulary_of(band.circuit, _names_taken(derivation))
+    readable = read_form(form, derivation.system.ring.plain(), vocabulary)
+    readable = replace(readable, far_gain=far_gain(derivation, vocabulary))
+    constants = find_time_constants(derivation, form, vocabulary)
+    return Solution(
+        derivation,
+        form,
+        numbers,
+        band,
+        readable,
+        constants,
+        find_miller(derivation, form, numbers, vocabulary),
+        estimate(derivation, form, numbers, constants, vocabulary, band.band),
+    )
+
+
+def _names_taken(derivation: Derivation) -> set[str]:
+    """Give the names that mean something else in a derivation, so that no word such as β takes one."""
+    system = derivation.system
+    topology = system.small_signal.topology
+    taken = {*system.ring.names, system.input, *(name for name, _ in system.weights)}
+    taken |= {unknown.name for unknown in system.unknowns}
+    taken |= {find.name for find in topology.finds} | {drive.name for drive in topology.drives}
+    return taken | {step.defines for step in derivation.steps if step.defines}

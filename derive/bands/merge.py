@@ -4,7 +4,8 @@ The user's names come first: the parts that a line of [merge] lists are combined
 or in series, or in parallel and series combinations of each other. Then, by rule, resistors between the
 same two nodes, and resistors in series through a node that nothing else touches, senses or asks for, are
 combined as far as that goes; what the user named is left as he named it. A part whose current is sensed
-or wanted stays by itself, and capacitors are combined only where the user asks for it.
+or wanted stays by itself, as r_π does, so that β can be read; capacitors are combined only where the user
+asks for it.
 
 A name by rule is R with the subscripts of its parts in their order: R_1 ∥ R_2 is R_1_2 (printed with the
 subscript 1,2), R_C ∥ R_L ∥ r_o is R_C_L_o. A combination in series ends in s, a mixed one in m: R_1_2_s.
@@ -21,7 +22,7 @@ from derive.bands.band_circuit import BandCircuit, Change, Merged
 from derive.bands.combine import Group, Workshop
 from derive.bands.rewire import on_node
 from derive.bands.wiring import sensed_currents, wanted_currents
-from derive.devices.elements import Capacitor, Element, Resistor, SmallSignal
+from derive.devices.elements import Capacitor, Element, Resistor, SmallSignal, Transconductance
 from derive.errors import InputError
 from derive.expressions.names import shape_of
 from derive.expressions.text import to_text
@@ -70,7 +71,12 @@ def merge_parts(circuit: SmallSignal, finds: Sequence[Find]) -> MergedCircuit:
     taken |= {drive.name for drive in circuit.topology.drives}
     taken |= {find.name for find in circuit.topology.finds}
     taken |= {merge.name for merge in circuit.topology.merges}
-    chosen = [group for group in shop.free() if isinstance(group.element, Resistor) and not group.name]
+    controls = _control_resistances(circuit)
+    chosen = [
+        group
+        for group in shop.free()
+        if isinstance(group.element, Resistor) and not group.name and group.element.name not in controls
+    ]
     # A device's own resistances come last: R_C ∥ R_L ∥ r_o.
     chosen.sort(key=lambda group: group.element.name != group.element.part)
     for group in shop.combine(chosen):
@@ -84,6 +90,23 @@ def merge_parts(circuit: SmallSignal, finds: Sequence[Find]) -> MergedCircuit:
         circuit, elements=tuple(group.element for group in shop.groups), symbols=tuple(symbols)
     )
     return MergedCircuit(_with_roles_left(merged), tuple(changes), tuple(map(_merged, shop.named)))
+
+
+def _control_resistances(circuit: SmallSignal) -> set[str]:
+    """Give the resistors of devices across which their own controlling voltage stands: r_π of g_m·r_π.
+
+    These stay by themselves, as β and r_e = r_π/(β + 1) are what engineers read.
+    """
+    controls = {
+        (element.part, frozenset(element.senses))
+        for element in circuit.elements
+        if isinstance(element, Transconductance) and element.part != element.name
+    }
+    return {
+        element.name
+        for element in circuit.elements
+        if isinstance(element, Resistor) and (element.part, frozenset(element.between)) in controls
+    }
 
 
 def name_of(group: Group, taken: set[str]) -> str:

@@ -8,8 +8,12 @@ from derive.bands.band_circuit import BandCircuit
 from derive.bias.operating_point import OperatingPoint
 from derive.devices.elements import SmallSignal
 from derive.eliminate.derivation import Derivation
+from derive.estimates.estimates import Estimates
 from derive.normalise.band_report import BandsReport
 from derive.normalise.form import NominalNumbers, NormalForm
+from derive.reactances.miller import MillerView
+from derive.reactances.time_constants import TimeConstants
+from derive.readable.form import ReadableForm
 
 
 @dataclass(frozen=True, slots=True)
@@ -17,13 +21,18 @@ class Solution:
     """All that was derived for one wanted quantity in one band.
 
     `numbers` is None where a value was left open; `band` is the band's circuit, None where the derivation
-    is on the circuit as it was written.
+    is on the circuit as it was written. `readable`, `time_constants`, `miller` and `estimates` say the same
+    result in the words of the trade; None or () where they were not asked for or the circuit is too large.
     """
 
     derivation: Derivation
     form: NormalForm
     numbers: NominalNumbers | None
     band: BandCircuit | None = None
+    readable: ReadableForm | None = None
+    time_constants: TimeConstants | None = None
+    miller: tuple[MillerView, ...] = ()
+    estimates: Estimates | None = None
 
     @property
     def judged(self) -> SmallSignal:

@@ -118,12 +118,12 @@ def _product(node: Product) -> _Set:
 
 
 def _needs_dot(left: Expression, right: Expression) -> bool:
-    """Say whether two factors side by side would read as one number."""
-    if _starts_with_digit(right):
+    """Say whether two factors side by side would read as one number, or two fraction bars as one."""
+    if _starts_with_digit(right) or (isinstance(left, Quotient) and isinstance(right, Quotient)):
         return True
     # 2 frac(1, 3) would read as two and a third.
     return (
-        isinstance(left, Number | Quotient)
+        isinstance(left, Number)
         and isinstance(right, Quotient)
         and _starts_with_digit(left)
         and _starts_with_digit(right.numerator)

@@ -71,10 +71,11 @@ def substitute(expression: Expression, replacements: Mapping[str, Expression]) -
         after.append(substitute(child, replacements))
     if all(new is old for new, old in zip(after, before, strict=True)):
         return expression
-    return _with_children(expression, tuple(after))
+    return with_children(expression, tuple(after))
 
 
-def _with_children(expression: Expression, children: tuple[Expression, ...]) -> Expression:
+def with_children(expression: Expression, children: tuple[Expression, ...]) -> Expression:
+    """Give an expression of the same kind with other operands, in the order of `children_of`."""
     if isinstance(expression, Sum | Product | Parallel):
         return type(expression)(children)
     if isinstance(expression, Quotient):

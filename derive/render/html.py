@@ -11,7 +11,7 @@ from markupsafe import Markup
 
 from derive.render import templates
 from derive.render.maths import Piece, SheetMaths
-from derive.render.page import compose, digest
+from derive.render.page import compose, digest, digest_of
 from derive.render.typesetter import Formula
 from derive.sheet.document import Sheet
 
@@ -81,7 +81,13 @@ def _marked_up(piece: Piece, elements: dict[Formula, str]) -> Markup:
     return Markup(elements[piece.formula])
 
 
-def _topology(sheet: Sheet) -> dict[str, str]:
+def _topology(sheet: Sheet) -> dict[str, str] | list[dict[str, str]]:
+    """Return the topology that the page carries, or all of them where it has several."""
+    if sheet.sources:
+        return [
+            {"stage": s.stage, "file": s.file, "sha256": digest_of(s.text), "text": s.text}
+            for s in sheet.sources
+        ]
     return {"file": sheet.topology_name, "sha256": digest(sheet), "text": sheet.topology_text}
 
 

@@ -7,13 +7,24 @@ from dataclasses import dataclass
 from functools import cached_property
 
 from derive.expressions.speech import to_speech
-from derive.expressions.tree import ZERO, Equation, Expression, Negative, Product, Sum
+from derive.expressions.tree import ZERO, Equation, Expression, Name, Negative, Product, Sum
 from derive.expressions.typst_maths import to_typst
 from derive.expressions.unicode_text import to_unicode
 from derive.render.breaking import Breaker, displayed
 from derive.render.typesetter import Formula, Measurer, Size, draw, mathml
 from derive.render.within_words import run_on, slashed
-from derive.sheet.document import Display, Line, Maths, Matrix, Paragraph, Sheet, Table, Text
+from derive.sheet.document import (
+    Display,
+    Folded,
+    Line,
+    Maths,
+    Matrix,
+    Paragraph,
+    Sheet,
+    Table,
+    Text,
+    unfolded,
+)
 
 # The columns of the A4 page in em of the text that stands in them; print.css holds the same in mm.
 COLUMN_EM = 32.0
@@ -25,6 +36,7 @@ TABLE_EM = 52.0
 NARROW_TABLE_EM = 25.0  # of one or two columns
 PADDING_EM = 1.2  # of a cell, left and right
 LETTER_EM = 0.52  # of words, on average, with room to spare
+NAME_EM = 3.0  # of a name by itself, on average, with room to spare
 WORDS_EM = 9.0  # the most that a column of words takes from those of formulas
 
 RUN_ON_EM = 11.0  # a longer formula within words is set in parts, so that the line can break
@@ -191,8 +203,12 @@ def cell_em(table: Table) -> float:
     for place, column in enumerate(table.columns):
         cells = [column.heading, *(row[place] for row in table.rows)]
         longest = max(sum(len(i.text) for i in cell if isinstance(i, Text)) for cell in cells)
-        if any(isinstance(item, Maths) for cell in cells for item in cell):
+        formulas = [item.content for cell in cells for item in cell if isinstance(item, Maths)]
+        if any(not isinstance(content, Name) for content in formulas):
             sharing += 1
+        elif formulas:
+            # Names alone, such as those of parts, leave the room to the columns of formulas.
+            taken += min(longest * LETTER_EM, WORDS_EM) + NAME_EM + PADDING_EM
         else:
             taken += min(longest * LETTER_EM, WORDS_EM) + PADDING_EM
     # Rounded, so that tables of one shape share their formulas.
@@ -208,7 +224,7 @@ def _gather(
     for section in sheet.sections:
         if section.about is not None:
             inlines[section.about.content, PARAGRAPH_EM] = None
-        for block in section.blocks:
+        for block in unfolded(section.blocks):
             if isinstance(block, Display):
                 displays[block] = None
             for line, limit in _lines(block):
@@ -221,7 +237,7 @@ def _gather(
 def _lines(block: object) -> Iterator[tuple[Line, float]]:
     """Give each line of words of a block with the width that a formula may take in it."""
     match block:
-        case Paragraph(line):
+        case Paragraph(line) | Folded(line):
             yield line, PARAGRAPH_EM
         case Display():
             yield block.reason, REASON_EM

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import base64
 import hashlib
 import re
 from collections.abc import Callable
@@ -18,14 +19,17 @@ from derive.render.maths import (
     SheetMaths,
     cell_em,
 )
+from derive.render.plot import plot_svg
 from derive.sheet.document import (
     Block,
     Display,
     Field,
+    Folded,
     Line,
     Mark,
     Maths,
     Paragraph,
+    Plot,
     Reference,
     Section,
     Sheet,
@@ -43,6 +47,8 @@ _KINDS: dict[type, str] = {
     Display: "display",
     Table: "table",
     SourceText: "source",
+    Plot: "plot",
+    Folded: "folded",
 }
 _LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
 _SHORT_TABLE = 6  # rows: a longer one may begin at the foot of a page and go on
@@ -55,12 +61,16 @@ Setter = Callable[[Piece], Markup]
 
 @dataclass(frozen=True, slots=True)
 class Cell:
-    """A cell of the title block; `span` counts twelfths of its width."""
+    """A cell of the title block; `span` counts twelfths of its width.
+
+    `digest` is that of the topology which the cell names, where the sheet has several.
+    """
 
     label: str
     text: str
     span: int
     kind: str = ""
+    digest: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -90,6 +100,7 @@ class Page:
         self._maths = maths
         self._set = set_piece
         self._tables = 0
+        self._figures = 0
 
     def words(self, line: Line, limit: float) -> Markup:
         """Return a line of words, maths, links and marks as markup."""
@@ -132,6 +143,22 @@ class Page:
         """Return the number of the next table."""
         self._tables += 1
         return self._tables
+
+    def figure_number(self) -> int:
+        """Return the number of the next figure that is not a table."""
+        self._figures += 1
+        return self._figures
+
+    def plot(self, block: Plot, number: int, paper: bool) -> Markup:
+        """Return a plot: on the page itself for a screen, as an image for paper."""
+        svg = plot_svg(block, number)
+        if not paper:
+            return svg
+        # Inline drawings flood the writer's log; an image is tagged with its words.
+        data = base64.b64encode(printable(svg).encode("utf-8")).decode("ascii")
+        return Markup('<img class="plot" src="data:image/svg+xml;base64,{}" alt="{}">').format(
+            data, f"{block.caption}. {block.words}"
+        )
 
     def anchor(self, anchor: str) -> str:
         """Return the identifier in the page for an anchor of the sheet."""
@@ -186,12 +213,22 @@ def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) 
         groups=groups(sheet.sections),
         **more,
     )
-    return _UNPRINTABLE.sub("\N{REPLACEMENT CHARACTER}", page)
+    return printable(page)
+
+
+def printable(text: str) -> str:
+    """Return the text with a sign in place of what no page may hold."""
+    return _UNPRINTABLE.sub("\N{REPLACEMENT CHARACTER}", text)
 
 
 def digest(sheet: Sheet) -> str:
     """Return the SHA-256 of the topology that the sheet carries, as 64 hexadecimal digits."""
-    return hashlib.sha256(sheet.topology_text.encode("utf-8", errors="replace")).hexdigest()
+    return digest_of(sheet.topology_text)
+
+
+def digest_of(text: str) -> str:
+    """Return the SHA-256 of a text as 64 hexadecimal digits."""
+    return hashlib.sha256(text.encode("utf-8", errors="replace")).hexdigest()
 
 
 def title_rows(sheet: Sheet) -> list[list[Cell]]:
@@ -208,9 +245,14 @@ def title_rows(sheet: Sheet) -> list[list[Cell]]:
         entries.append((Field("Status", "✓ all checks passed"), "status pass"))
     else:
         entries.append((Field("Status", f"✗ {_failed(sheet)}"), "status fail"))
-    last = [Cell("Source", sheet.topology_name, 12, "digest")]
+    last = [[Cell("Source", sheet.topology_name, 12, "digest")]]
+    if sheet.sources:
+        last = [
+            [Cell(f"Source of {source.stage}", source.file, 12, "digest", digest_of(source.text))]
+            for source in sheet.sources
+        ]
     long = [[Cell(f.label, f.text, 12, "long")] for f in fields if f not in short]
-    return [first, *_spread(entries), *long, last]
+    return [first, *_spread(entries), *long, *last]
 
 
 def _failed(sheet: Sheet) -> str:
@@ -263,6 +305,8 @@ def _kept(blocks: tuple[Block, ...]) -> int:
         case (Table(_, _, rows), *_) if len(rows) > _SHORT_TABLE:
             return 0
         case (SourceText(text), *_) if text.count("\n") > _SHORT_TABLE:
+            return 0
+        case (Folded(), *_):
             return 0
         case _:
             return 1

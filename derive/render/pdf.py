@@ -39,7 +39,7 @@ def to_pdf(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
     maths = maths or SheetMaths(sheet)
     pictures = Pictures(maths)
     page = compose(sheet, maths, pictures.markup, paper=True, digest=digest(sheet), style=None)
-    fetcher = weasyprint.urls.URLFetcher(allowed_protocols=("file",), fail_on_errors=False)
+    fetcher = weasyprint.urls.URLFetcher(allowed_protocols=("file", "data"), fail_on_errors=False)
     base = templates.folder().as_uri() + "/"
     fonts = FontConfiguration()
     style = weasyprint.CSS(
@@ -102,8 +102,12 @@ class Pictures:
 def _attachments(weasyprint: Any, sheet: Sheet) -> list[Any]:
     # Not every system knows the type, and the type is written into the file.
     mimetypes.add_type("application/toml", ".toml")
+    own = ((sheet.topology_name, sheet.topology_text, "topology of this sheet", "Source"),)
+    several = tuple(
+        (f"{s.stage}.toml", s.text, f"topology of {s.stage}", "Source") for s in sheet.sources
+    )
     files = (
-        (sheet.topology_name, sheet.topology_text, "topology of this sheet", "Source"),
+        *(several or own),
         (sheet.ledger_name, sheet.ledger_text, "results of this sheet, for programs", "Data"),
     )
     return [

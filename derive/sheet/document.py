@@ -75,10 +75,14 @@ class Display:
 
 @dataclass(frozen=True, slots=True)
 class Column:
-    """A table's column: its heading, and whether its cells are numbers (set to the right)."""
+    """A table's column: its heading, and whether its cells are numbers (set to the right).
+
+    Where `leads` is set its cells are the headings of their rows.
+    """
 
     heading: Line
     numeric: bool = False
+    leads: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -97,7 +101,70 @@ class SourceText:
     text: str
 
 
-Block = Paragraph | Display | Table | SourceText
+@dataclass(frozen=True, slots=True)
+class Axis:
+    """What an axis counts, in which unit, and how it is divided.
+
+    A "decades" axis is logarithmic and takes positive values only; one in "degrees" is divided as a circle
+    is. `ends` are its least and greatest value; None where the points decide.
+    """
+
+    title: str
+    unit: str = ""
+    scale: Literal["linear", "degrees", "decades"] = "linear"
+    ends: tuple[float, float] | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Curve:
+    """A line through points (across, up), by rising `across`; curves of one name look alike in all panels."""
+
+    name: str
+    points: tuple[tuple[float, float], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Spot:
+    """A point that is marked on the curve of that name: a ring, a cross (a pole) or a dot."""
+
+    curve: str
+    across: float
+    up: float
+    shape: Literal["ring", "cross", "dot"] = "ring"
+
+
+@dataclass(frozen=True, slots=True)
+class Panel:
+    """One field of a plot; `guides` are values at which a line goes across, such as 0 dB."""
+
+    up: Axis
+    curves: tuple[Curve, ...]
+    spots: tuple[Spot, ...] = ()
+    guides: tuple[float, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Plot:
+    """A figure of one panel or several, one below the other, that share the axis across.
+
+    `words` say what the picture shows to those who do not see it.
+    """
+
+    caption: str
+    across: Axis
+    panels: tuple[Panel, ...]
+    words: str
+
+
+@dataclass(frozen=True, slots=True)
+class Folded:
+    """Blocks that a screen shows when asked to and paper in smaller type, under a line of words."""
+
+    title: Line
+    blocks: tuple[Paragraph | Display | Table, ...]
+
+
+Block = Paragraph | Display | Table | SourceText | Plot | Folded
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,6 +180,16 @@ class Section:
     about: Maths | None = None
 
 
+def unfolded(blocks: tuple[Block, ...]) -> tuple[Block, ...]:
+    """Give blocks in their order, each folded one followed by those within it."""
+    found: list[Block] = []
+    for block in blocks:
+        found.append(block)
+        if isinstance(block, Folded):
+            found += block.blocks
+    return tuple(found)
+
+
 @dataclass(frozen=True, slots=True)
 class Field:
     """A labelled entry of the title block."""
@@ -122,10 +199,20 @@ class Field:
 
 
 @dataclass(frozen=True, slots=True)
-class Sheet:
-    """The whole document, with the two files that it carries.
+class Source:
+    """A topology that a sheet carries: the stage that it describes, the file it was read from, and its text."""
 
-    `passed` says whether no check failed; `failures` names those that did, for the first page.
+    stage: str
+    file: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True)
+class Sheet:
+    """The whole document, with the files that it carries.
+
+    `passed` says whether no check failed; `failures` names those that did, for the first page. A sheet on
+    several topologies has them in `sources`, and no topology of its own.
     """
 
     title: str
@@ -138,3 +225,4 @@ class Sheet:
     ledger_name: str
     ledger_text: str
     language: str = "en"
+    sources: tuple[Source, ...] = ()

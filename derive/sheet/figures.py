@@ -7,7 +7,7 @@ from fractions import Fraction
 
 from derive.bias.operating_point import NewtonCheck
 from derive.normalise.form import CertifiedRoot
-from derive.quantities.dimension import RATIO, TIME, Dimension
+from derive.quantities.dimension import FREQUENCY, RATIO, TIME, Dimension
 from derive.quantities.format import engineering
 from derive.quantities.units import unit_of
 
@@ -64,6 +64,42 @@ def newton_difference(check: NewtonCheck) -> str:
         return "not compared: no convergence"
     # Rounded first, so that no difference reads −0.00 %.
     return f"{round(100 * check.difference, 2) + 0.0:+.2f} %".replace("-", "−")
+
+
+def percent(share: float | None) -> str:
+    """Word a share in two figures: 0.7531 is "75 %"; a dash where there is none."""
+    if share is None or not math.isfinite(share):
+        return "–"
+    if share and abs(share) < 1e-4:
+        return "< 0.01 %"
+    # From 99.5 % on two figures would round to 100, which stands for the whole.
+    digits = 2 if abs(share) < 0.995 else 3
+    return f"{engineering(100 * share, RATIO, digits)} %"
+
+
+def signed_percent(error: float) -> str:
+    """Word a relative error with its sign, in three figures: −0.15013 is "−15 %"."""
+    if not math.isfinite(error):
+        return "not finite"
+    if abs(error) < 1e-9:
+        return "0 %"
+    return f"{'+' if error > 0 else ''}{engineering(100 * error, RATIO, 3)} %"
+
+
+def hertz(value: float, digits: int = 4) -> str:
+    """Word a frequency: "790.5 kHz"."""
+    return engineering(value, FREQUENCY, digits, unit="Hz")
+
+
+def complex_figure(value: complex, dimension: Dimension, digits: int = 4) -> str:
+    """Word a complex number with its unit: "−4.97 Mrad/s", "−3 rad/s + j 4 rad/s"."""
+    if not value.imag:
+        return engineering(value.real, dimension, digits)
+    turned = f"j {engineering(abs(value.imag), dimension, digits)}"
+    if not value.real:
+        return f"−{turned}" if value.imag < 0 else turned
+    sign = "−" if value.imag < 0 else "+"
+    return f"{engineering(value.real, dimension, digits)} {sign} {turned}"
 
 
 def times(ratio: float) -> str:

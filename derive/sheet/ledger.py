@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import hashlib
 import json
+import math
 from collections.abc import Sequence
 from fractions import Fraction
 from typing import Any
@@ -12,10 +13,12 @@ from derive.check.verdict import Outcome, Result, Solution, Verdict
 from derive.devices.elements import Coupling, SmallSignal
 from derive.eliminate.derivation import Step
 from derive.expressions.ledger_text import to_ledger
+from derive.expressions.text import to_text
 from derive.expressions.tree import Equation, Expression
 from derive.expressions.walk import substitute
 from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.units import ledger_unit
+from derive.sheet.definitions import definitions_of, used_in
 from derive.sheet.wording import Wording, plain_line
 from derive.topology.topology import Find
 from derive.version import VERSION
@@ -113,6 +116,10 @@ def _result(result: Result) -> dict[str, Any]:
         "zeros": _roots(numbers.zeros if numbers else ()),
         "poles": _roots(numbers.poles if numbers else ()),
         "steps": _steps(result),
+        "readable": _readable(solution),
+        "time_constants": _time_constants(solution),
+        "bandwidth": _bandwidth(solution),
+        "estimates": _estimates(solution),
         "approximations": [],
         "checks": [_check(verdict) for verdict in result.verdicts],
     }
@@ -120,12 +127,7 @@ def _result(result: Result) -> dict[str, Any]:
 
 def gain_value(numbers: NominalNumbers | None) -> float | None:
     """Give the gain at the nominal values; None where it is not known or not finite."""
-    if numbers is None or numbers.gain is None:
-        return None
-    try:
-        return float(numbers.gain)
-    except OverflowError:
-        return None
+    return _float(numbers.gain) if numbers else None
 
 
 def _per(find: Find) -> str | dict[str, str] | None:
@@ -137,7 +139,7 @@ def _per(find: Find) -> str | dict[str, str] | None:
 
 
 def _definitions(solution: Solution) -> list[list[str]]:
-    """Define what is not a part's own value: mutual inductances, and merged parts."""
+    """Define what is not a part's own value: mutual inductances, merged parts, and words such as β."""
     circuit = solution.judged
     inductance = {e.name: getattr(e, "inductance", "") for e in circuit.elements}
     mutual = [
@@ -151,7 +153,67 @@ def _definitions(solution: Solution) -> list[list[str]]:
     known: dict[str, Expression] = {}
     for merged in solution.band.definitions if solution.band else ():
         known[merged.name] = substitute(merged.definition, known)
-    return [*mutual, *([name, to_ledger(expanded)] for name, expanded in known.items())]
+    words = used_in(_readables(solution), definitions_of(solution))
+    defined = [[name, to_ledger(value)] for name, value in words]
+    return [*mutual, *([name, to_ledger(expanded)] for name, expanded in known.items()), *defined]
+
+
+def _readables(solution: Solution) -> list[Expression]:
+    """Give every expression that stands in the ledger for reading."""
+    read, constants = solution.readable, solution.time_constants
+    found = [read.gain, *read.numerator, *read.denominator] if read else []
+    rows = (*constants.open_circuit, *constants.short_circuit) if constants else ()
+    return found + [row.readable for row in rows if row.readable is not None]
+
+
+def _readable(solution: Solution) -> dict[str, Any]:
+    """Give the normal form for reading; as it was derived where there is no shorter one."""
+    form = solution.readable or solution.form
+    return {
+        "gain": to_text(form.gain),
+        "numerator": [to_text(entry) for entry in form.numerator],
+        "denominator": [to_text(entry) for entry in form.denominator],
+    }
+
+
+def _time_constants(solution: Solution) -> list[dict[str, Any]]:
+    found = solution.time_constants
+    return [
+        {
+            "part": row.symbol,
+            "kind": row.kind,
+            "resistance": None if row.resistance is None else to_ledger(row.resistance),
+            "readable": None if row.readable is None else to_text(row.readable),
+            "seconds": _float(row.seconds),
+            "share": _float(row.share),
+        }
+        for row in ((*found.open_circuit, *found.short_circuit) if found else ())
+    ]
+
+
+def _bandwidth(solution: Solution) -> dict[str, float | None]:
+    found = solution.estimates.bandwidth if solution.estimates else None
+    return {
+        "low_hz": _float(found.low_hz) if found else None,
+        "high_hz": _float(found.high_hz) if found else None,
+    }
+
+
+def _estimates(solution: Solution) -> list[dict[str, Any]]:
+    found = solution.estimates.estimates if solution.estimates else ()
+    return [
+        {"name": rule.name, "value": rule.value, "exact": rule.exact, "error": rule.error}
+        for rule in found
+    ]
+
+
+def _float(value: Fraction | float | None) -> float | None:
+    """Give a number as JSON can hold it; None for one that is too large or none."""
+    try:
+        found = None if value is None else float(value)
+    except OverflowError:
+        return None
+    return found if found is None or math.isfinite(found) else None
 
 
 def _roots(roots: Sequence[CertifiedRoot]) -> list[list[float]]:

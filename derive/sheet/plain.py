@@ -3,13 +3,17 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 from derive.check.verdict import Outcome, Verdict
 from derive.expressions.tree import Equation
 from derive.expressions.unicode_text import to_unicode
+from derive.normalise.form import NominalNumbers
 from derive.sheet.compose import section_modules
 from derive.sheet.document import (
+    Block,
     Display,
+    Folded,
     Inline,
     Line,
     Maths,
@@ -19,44 +23,74 @@ from derive.sheet.document import (
     Section,
     SourceText,
     Table,
+    Text,
 )
 from derive.sheet.figures import figure, newton_difference
-from derive.sheet.view import View, gain_dimension, views
+from derive.sheet.view import View, far_value, gain_dimension, views
 
 # What a terminal shows of a result, by the files of the sections; the rest with the steps.
-BRIEF = ("glance", "operating_point", "parameters", "bands")
-RESULT = ("values", "roots")
-STEPS = ("equations", "elimination", "normal_form", *RESULT)
+FIRST = ("glance",)
+CIRCUIT = ("operating_point", "parameters", "bands")
+RESULT = ("time_constants", "poles_and_zeros", "miller", "limits")
+STEPS = ("equations", "elimination", "normal_form", "values", *RESULT)
 MARKS = {True: "✓", False: "✗", None: "–"}
 
 
 def plain_outcome(outcome: Outcome, *, steps: bool = False) -> str:
     """Give title, result and checks; with `steps` the whole derivation as well."""
-    modules = {module.__name__.rpartition(".")[2]: module for module in section_modules()}
     block = outcome.circuit.topology.title_block
     lines = [block.title + (f"  ({block.number})" if block.number else ""), ""]
-    for name in BRIEF:
-        sections = modules[name].compose(outcome)
-        # Parts of a section are derivations: they are for those who asked for the steps.
-        lines += _sections(sections if steps else tuple(s for s in sections if s.level == 1))
+    lines += _whole(FIRST, outcome, steps)
+    # Who asks for the steps reads from the circuit to the result; others want the result.
+    lines += _whole(CIRCUIT, outcome, steps) if steps else []
     for view in views(outcome):
-        lines += _sections(view.headline)
-        for name in STEPS if steps else RESULT:
-            lines += _sections(modules[name].compose(view))
+        lines += _sections(view.headline, steps)
+        lines += _whole(STEPS if steps else RESULT, view, steps)
         lines += list(_verdicts(view))
-    lines += _sections(modules["separation"].compose(outcome)) + list(_bias_verdicts(outcome))
+    lines += _whole(("separation",), outcome, steps)
+    lines += [] if steps else _whole(CIRCUIT, outcome, steps)
+    lines += list(_bias_verdicts(outcome))
     return "\n".join(lines).rstrip() + "\n"
 
 
-def _sections(sections: tuple[Section, ...]) -> list[str]:
+def _whole(names: tuple[str, ...], of: Outcome | View, steps: bool) -> list[str]:
+    modules = {module.__name__.rpartition(".")[2]: module for module in section_modules()}
+    lines: list[str] = []
+    for name in names:
+        sections = modules[name].compose(of)
+        # Parts of a section on the circuit are derivations: they are for those who asked for the steps.
+        wanted = steps or isinstance(of, View)
+        lines += _sections(sections if wanted else tuple(s for s in sections if s.level == 1), steps)
+    return lines
+
+
+def _sections(sections: tuple[Section, ...], steps: bool) -> list[str]:
     lines = []
     for section in sections:
         title = section.title + (f" {_inline(section.about)}" if section.about else "")
         lines += [title, "-" * len(title)]
-        for block in section.blocks:
+        for block in section.blocks if steps else _brief(section.blocks):
             lines += list(_block(block))
         lines.append("")
     return lines
+
+
+def _brief(blocks: tuple[Block, ...]) -> Iterator[Block]:
+    """Leave out what is for those who asked for the steps: folded blocks, and the numbers of equations."""
+    for block in blocks:
+        if isinstance(block, Display) and block.number is None:
+            yield replace(block, reason=_without_source(block.reason))
+        elif not isinstance(block, Folded):
+            yield block
+
+
+def _without_source(line: Line) -> Line:
+    """Take the equation that a reason refers to off its end: "; from (3.20)"."""
+    match line:
+        case (*before, Text(words), Reference()) if words.endswith("from "):
+            kept = words.removesuffix("from ").rstrip("; ")
+            return (*before, Text(kept)) if kept else tuple(before)
+    return line
 
 
 def _block(block: object) -> Iterator[str]:
@@ -68,6 +102,10 @@ def _block(block: object) -> Iterator[str]:
         yield from _table(block)
     elif isinstance(block, SourceText):
         yield block.text
+    elif isinstance(block, Folded):
+        yield line_text(block.title)
+        for inner in block.blocks:
+            yield from _block(inner)
 
 
 def _display(block: Display) -> Iterator[str]:
@@ -76,11 +114,12 @@ def _display(block: Display) -> Iterator[str]:
     if isinstance(content, Matrix):
         return
     text = equation_text(content) if isinstance(content, Equation) else to_unicode(content)
+    reason = line_text(block.reason)
     if block.boxed:
-        yield line_text(block.reason)
+        yield reason
     yield f"{label:<5} {text}" if label else f"  {text}"
-    if block.reason and label:
-        yield f"      {line_text(block.reason)}"
+    if reason and not block.boxed:
+        yield f"      {reason}"
 
 
 def _table(table: Table) -> Iterator[str]:
@@ -139,13 +178,21 @@ def _bias_verdicts(outcome: Outcome) -> Iterator[str]:
         yield from (f"  ✗ {found.symbol}, step {number}: {why}" for number, why in found.broken)
 
 
+def _gain(view: View, numbers: NominalNumbers) -> str:
+    """Word the gain; far above all corners where it is zero at zero frequency and finite there."""
+    far = far_value(view, numbers)
+    if far is not None:
+        return figure(far, gain_dimension(view, -view.result.solution.form.power_of_s))
+    return figure(numbers.gain, gain_dimension(view))
+
+
 def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
     """Give one row a result: what was sought, its gain, and how its checks went."""
     rows = []
     for view in views(outcome):
         result = view.result
         numbers = result.solution.numbers
-        gain = "symbolic" if numbers is None else figure(numbers.gain, gain_dimension(view))
+        gain = "symbolic" if numbers is None else _gain(view, numbers)
         if result.solution.form.is_zero:
             gain = "0"
         failed = [verdict.name for verdict in result.verdicts if verdict.passed is False]

@@ -4,11 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from fractions import Fraction
 
 from derive.check.verdict import Outcome, Result
 from derive.devices.elements import Coupling
 from derive.eliminate.derivation import Derivation, Step
 from derive.expressions.tree import Elided, Equation, Expression, Name, Negative, Product, Quotient, Sum
+from derive.normalise.form import NominalNumbers
 from derive.quantities.dimension import (
     CURRENT,
     RESISTANCE,
@@ -16,7 +18,8 @@ from derive.quantities.dimension import (
     VOLTAGE,
     Dimension,
 )
-from derive.sheet.document import Block, Maths, Section
+from derive.readable.measure import leaves
+from derive.sheet.document import Block, Line, Maths, Section, Text
 from derive.sheet.wording import Wording
 from derive.topology.topology import BandName
 
@@ -24,6 +27,8 @@ from derive.topology.topology import BandName
 FULL_UNKNOWNS = 4
 TERM_LIMIT = 60
 LEADING_TERMS = 12
+# Among words, and in the cells of tables, longer expressions are not printed.
+MOST_LEAVES = 90
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,6 +89,13 @@ class View:
             return content
         return abridged(content, f"ledger, result {self.title}, step {number}")
 
+    def printed(self, content: Expression) -> Line:
+        """Give an expression among words, or words in its place where it is too long for that."""
+        count = leaves(content)
+        if count <= MOST_LEAVES:
+            return (Maths(content),)
+        return (Text(f"too long to print: {count:,} names and numbers"),)
+
     def shown_equation(self, equation: Equation, number: int) -> Equation:
         """Give an equation as it is shown."""
         return Equation(self.shown(equation.left, number), self.shown(equation.right, number))
@@ -101,6 +113,15 @@ def views(outcome: Outcome) -> tuple[View, ...]:
         )
         for place, result in enumerate(outcome.results)
     )
+
+
+def same_poles(view: View) -> View | None:
+    """Give the earlier result of the band that has the same denominator; None where this one is new."""
+    own = view.result.solution.form.denominator
+    for earlier in views(view.outcome)[: view.place]:
+        if earlier.band == view.band and earlier.result.solution.form.denominator == own:
+            return earlier
+    return None
 
 
 def _band(result: Result) -> str:
@@ -131,15 +152,36 @@ def abridged(expression: Expression, pointer: str) -> Expression:
     return expression
 
 
-def gain_dimension(view: View) -> Dimension:
-    """Give the dimension of the wanted quantity per input, a power of s not counted."""
+def gain_dimension(view: View, extra: int = 0) -> Dimension:
+    """Give the dimension of the wanted quantity per input, a power of s not counted.
+
+    Given: `extra` powers of time, such as those of a ratio of coefficients.
+    """
     system = view.result.solution.derivation.system
     if system.find.quantity == "impedance":
         wanted = RESISTANCE
     else:
         above = CURRENT if system.find.quantity == "current" else VOLTAGE
         wanted = above / _input_dimension(view)
-    return wanted * TIME**view.result.solution.form.power_of_s
+    return wanted * TIME ** (view.result.solution.form.power_of_s + extra)
+
+
+def far_value(view: View, numbers: NominalNumbers) -> Fraction | None:
+    """Give the response far above all corners at the nominal values; None unless it begins with zero."""
+    readable, bottom = view.result.solution.readable, numbers.bottom
+    if readable is None or readable.far_gain is None or not numbers.top or not bottom or not bottom[-1]:
+        return None
+    return numbers.top[-1] / bottom[-1]
+
+
+def coefficient_value(
+    numbers: NominalNumbers, letter: str, power: int
+) -> tuple[Fraction | None, Dimension]:
+    """Give a coefficient of the normal form, a_k or b_k, at the nominal values, and its dimension."""
+    values = numbers.top if letter == "a" else numbers.bottom
+    if not values or not values[0]:
+        return None, TIME**power
+    return (values[power] / values[0] if power < len(values) else Fraction(0)), TIME**power
 
 
 def _input_dimension(view: View) -> Dimension:

@@ -26,13 +26,17 @@ STATIONS = (
     "nodal",
     "eliminate",
     "normalise",
+    "readable",
     "bias",
+    "reactances",
+    "estimates",
     "check",
     "sheet",
     "render",
     "pipeline",
     "progress",
     "batch",
+    "compare",
     "cli",
 )
 # These two stand in front of the journey and look at all of it.

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import copy
 import json
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -23,6 +24,13 @@ LOW_PASS = (
 )
 CIRCUITS = {
     "low-pass": HEAD + LOW_PASS + VOLTAGE + '[find.Z_out]\nimpedance = "out"\n',
+    "divider": HEAD + LOW_PASS + 'R_2 = { resistor = "2k", between = ["out", "gnd"] }\n' + VOLTAGE,
+    "common collector": HEAD
+    + 'R_S = { resistor = "600R", between = ["in", "b"] }\n'
+    + 'Q1 = { bipolar = true, base = "b", collector = "gnd", emitter = "out", '
+    + 'g_m = "40 mS", r_pi = "4.5k", C_pi = "20 pF" }\n'
+    + 'R_E = { resistor = "1k", between = ["out", "gnd"] }\n'
+    + VOLTAGE,
     "open value": HEAD + LOW_PASS.replace("1k", "?") + VOLTAGE,
     "series resonance": HEAD
     + 'R_1 = { resistor = "10R", between = ["in", "a"] }\n'
@@ -99,10 +107,51 @@ def test_weights_stand_as_exact_text():
     assert result["per"] == {"V_s": "0.5", "V_t": "-1/3"}
 
 
+def test_a_resistance_that_a_capacitor_sees_its_time_constant_and_the_bandwidth_stand_in_the_ledger():
+    gain, impedance = check_ledger(ledger_of("low-pass"))["results"]
+    # R = 1 kΩ, C = 1 µF: τ = 1 ms, 1/(2π·τ) = 159.155 Hz.
+    (row,) = gain["time_constants"]
+    assert row == {
+        "part": "C_1",
+        "kind": "open-circuit",
+        "resistance": "R_1",
+        "readable": "R_1",
+        "seconds": pytest.approx(1e-3),
+        "share": pytest.approx(1.0),
+    }
+    assert impedance["time_constants"] == [row]
+    assert gain["bandwidth"] == {"low_hz": None, "high_hz": pytest.approx(159.15494309)}
+    assert gain["readable"] == {"gain": "1", "numerator": ["1"], "denominator": ["1", "R_1*C_1"]}
+
+
+def test_what_is_read_uses_parallel_parts():
+    # With the drive at zero R_1 and R_2 of this divider are in parallel for the capacitor.
+    (result,) = check_ledger(ledger_of("divider"))["results"]
+    (row,) = result["time_constants"]
+    assert row["readable"] == "R_1 || R_2"
+    assert row["resistance"] == "R_1*R_2/(R_1 + R_2)"
+
+
+def test_words_of_a_transistor_are_defined_before_they_are_used():
+    data = check_ledger(ledger_of("common collector"))
+    result = next(result for result in data["results"] if result["band"] == "high")
+    assert ["beta", "g_m*r_pi"] in result["definitions"]
+    used = " ".join([result["readable"]["gain"], *result["readable"]["denominator"]])
+    assert re.search(r"\bbeta\b", used)
+
+
 def test_open_value_is_null_and_so_is_the_gain_where_it_counts():
     data = check_ledger(ledger_of("open value"))
     assert data["symbols"]["R_1"]["value"] is None
     assert data["results"][0]["poles"] == []
+
+
+def test_numbers_of_a_result_with_an_open_value_are_null_and_its_forms_are_there():
+    (result,) = check_ledger(ledger_of("open value"))["results"]
+    assert result["bandwidth"] == {"low_hz": None, "high_hz": None}
+    assert result["estimates"] == []
+    assert [(row["readable"], row["seconds"]) for row in result["time_constants"]] == [("R_1", None)]
+    assert result["readable"]["denominator"] == ["1", "R_1*C_1"]
 
 
 def test_impedance_is_per_nothing():
@@ -137,6 +186,10 @@ def first(data):
     return data["results"][0]
 
 
+def row(data):
+    return first(data)["time_constants"][0]
+
+
 BREAKS = {
     "a decimal in an expression": lambda data: first(data)["gain"].update(exact="0.5"),
     "a name that nothing defines": lambda data: first(data)["gain"].update(exact="R_9"),
@@ -150,6 +203,18 @@ BREAKS = {
     "a value that is a float": lambda data: data["symbols"]["R_1"].update(value="1e+3x"),
     "a unit of nothing": lambda data: data["symbols"]["R_1"].update(unit="kohm"),
     "another text than the digest's": lambda data: data["topology"].update(text="[sheet]"),
+    "a readable gain that is another": lambda data: first(data)["readable"].update(gain="R_1/R_1*2"),
+    "a readable name that nothing defines": lambda data: first(data)["readable"].update(gain="beta/beta"),
+    "a readable coefficient too few": lambda data: first(data)["readable"]["denominator"].pop(),
+    "a resistance read as another": lambda data: row(data).update(readable="R_1 || R_1"),
+    "a resistance that is read and not given": lambda data: row(data).update(resistance=None),
+    "a time constant of another part": lambda data: row(data).update(seconds=1.001e-3),
+    "a kind of time constant that there is not": lambda data: row(data).update(kind="open"),
+    "a bandwidth that is not 3 dB down": lambda data: first(data)["bandwidth"].update(high_hz=159.2),
+    "a bandwidth on the wrong side": lambda data: first(data)["bandwidth"].update(
+        low_hz=first(data)["bandwidth"]["high_hz"], high_hz=None
+    ),
+    "an error that is not the estimate's": lambda data: first(data)["estimates"][0].update(error=0.5),
     "a step without its number": lambda data: first(data)["steps"][1].update(n=7),
     "a step that is not proved": lambda data: first(data)["steps"][1]["proof"].update(passed=False),
     "a check that failed": lambda data: first(data)["checks"][0].update(passed=False),

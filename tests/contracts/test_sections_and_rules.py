@@ -14,7 +14,17 @@ from derive.pipeline import derive
 from derive.reading.read import read
 from derive.sheet import sections
 from derive.sheet.compose import compose, section_modules
-from derive.sheet.document import Display, Matrix, Paragraph, Section, SourceText, Table
+from derive.sheet.document import (
+    Display,
+    Folded,
+    Matrix,
+    Paragraph,
+    Plot,
+    Section,
+    SourceText,
+    Table,
+    unfolded,
+)
 from derive.sheet.view import views
 from derive.sheet.wording import SENTENCES, Wording, plain_line
 
@@ -32,6 +42,13 @@ def names_in(package):
     return sorted(module.name for module in pkgutil.iter_modules(package.__path__))
 
 
+def told_of(module, outcome):
+    """Give what a section is about: the outcome, or the first result that it has something to say of."""
+    if module.SCOPE == "sheet":
+        return outcome
+    return next(view for view in views(outcome) if module.compose(view))
+
+
 def test_sections_are_found_by_folder_in_an_order_of_their_own():
     modules = section_modules()
     assert sorted(module.__name__.rpartition(".")[2] for module in modules) == names_in(sections)
@@ -44,7 +61,7 @@ def test_a_section_says_its_place_and_scope_and_composes_blocks(name, outcome):
     module = importlib.import_module(f"{sections.__name__}.{name}")
     assert module.__doc__
     assert module.SCOPE in ("sheet", "result")
-    given = outcome if module.SCOPE == "sheet" else views(outcome)[0]
+    given = told_of(module, outcome)
     made = module.compose(given)
     assert made
     assert made == module.compose(given)
@@ -52,8 +69,8 @@ def test_a_section_says_its_place_and_scope_and_composes_blocks(name, outcome):
         assert isinstance(section, Section)
         assert section.title
         assert section.blocks
-        for block in section.blocks:
-            assert isinstance(block, Paragraph | Display | Table | SourceText)
+        for block in unfolded(section.blocks):
+            assert isinstance(block, Paragraph | Display | Table | SourceText | Plot | Folded)
             if isinstance(block, Table):
                 assert block.caption
                 assert all(len(row) == len(block.columns) for row in block.rows)
@@ -62,7 +79,7 @@ def test_a_section_says_its_place_and_scope_and_composes_blocks(name, outcome):
 def test_every_section_stands_on_the_sheet(outcome):
     titles = [section.title for section in compose(outcome, "echo_preamp").sections]
     for module in section_modules():
-        given = outcome if module.SCOPE == "sheet" else views(outcome)[0]
+        given = told_of(module, outcome)
         assert {section.title for section in module.compose(given)} <= set(titles)
 
 
@@ -99,7 +116,7 @@ def elided(expression):
 
 def test_a_short_derivation_is_shown_whole(outcome):
     for section in compose(outcome, "follower").sections:
-        for block in section.blocks:
+        for block in unfolded(section.blocks):
             if isinstance(block, Display) and not isinstance(block.content, Matrix):
                 content = block.content
                 sides = (content.left, content.right) if hasattr(content, "left") else (content,)

@@ -124,6 +124,14 @@ def read_expression(text: str) -> Program:
     return tuple(program)
 
 
+def read_user_text(text: str) -> Program:
+    """Give text in the user's language, whose `||` and powers Python's parser reads by other signs.
+
+    Every parallel combination must stand in parentheses or alone, as `||` binds tighter than that sign.
+    """
+    return read_expression(text.replace("||", "@").replace("^", "**"))
+
+
 def _opened(node: ast.AST) -> Sequence[Any]:
     """Give the instruction of a node and its children, the first to be worked last."""
     if isinstance(node, ast.Constant) and type(node.value) in (int, float):
@@ -134,6 +142,8 @@ def _opened(node: ast.AST) -> Sequence[Any]:
         return (("negate", None), node.operand)
     if isinstance(node, ast.BinOp) and type(node.op) in _BINARY:
         return ((_BINARY[type(node.op)], None), node.right, node.left)
+    if isinstance(node, ast.BinOp) and isinstance(node.op, ast.MatMult):
+        return (("parallel", 2), node.right, node.left)
     if isinstance(node, ast.BinOp) and isinstance(node.op, ast.Pow):
         exponent = _exponent(node.right)
         if exponent == Fraction(1, 2):
@@ -236,11 +246,16 @@ class LedgerResult:
         self.numerator = [read_expression(text) for text in result["numerator"]]
         self.denominator = [read_expression(text) for text in result["denominator"]]
 
-    def at(self, values: Mapping[str, Any], field: Field) -> Response:
-        """Give the response for values of the symbols; definitions apply in their order."""
+    def known(self, values: Mapping[str, Any], field: Field) -> dict[str, Any]:
+        """Give the values of the symbols and of what is defined with them, in its order."""
         known = dict(values)
         for name, text in self.definitions:
             known[name] = calculate(text, known, field)
+        return known
+
+    def at(self, values: Mapping[str, Any], field: Field) -> Response:
+        """Give the response for values of the symbols; definitions apply in their order."""
+        known = self.known(values, field)
         return Response(
             calculate(self.gain, known, field),
             self.power_of_s,

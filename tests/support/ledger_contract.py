@@ -11,7 +11,16 @@ from itertools import pairwise
 from typing import Any
 
 import mpmath
-from ledger_arithmetic import PRIME, RESIDUES, LedgerResult, complex_field, names_in
+from ledger_arithmetic import (
+    PRIME,
+    RATIONALS,
+    RESIDUES,
+    LedgerResult,
+    calculate,
+    complex_field,
+    names_in,
+    read_user_text,
+)
 
 TOP = ["ledger", "made_by", "topology", "symbols", "results"]
 SYMBOL = ["value", "unit", "origin"]
@@ -27,11 +36,18 @@ RESULT = [
     "zeros",
     "poles",
     "steps",
+    "readable",
+    "time_constants",
+    "bandwidth",
+    "estimates",
     "approximations",
     "checks",
 ]
 BANDS = ["low", "mid", "high", "full"]
 STEP = ["n", "rule", "says", "before", "after", "proof"]
+READABLE = ["gain", "numerator", "denominator"]
+TIME_CONSTANT = ["part", "kind", "resistance", "readable", "seconds", "share"]
+ESTIMATE = ["name", "value", "exact", "error"]
 CHECK = ["name", "method", "passed", "measured", "limit"]
 NAME = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
 # Names, integers, + - * / ** and parentheses: no point, no comma, no other sign.
@@ -40,6 +56,8 @@ EXACT = re.compile(r"-?\d+(?:\.\d+)?(?:e-?\d+)?|-?\d+/\d+")
 # What a part or a parameter of one can be measured in.
 UNITS = {"ohm", "F", "H", "S", "1", "rad/s"}
 ROOT_TOLERANCE = 1e-9
+# Numbers for people, such as edges and errors, are held to this.
+NUMBER_TOLERANCE = 1e-6
 
 
 def check_ledger(text: str, *, passed: bool = True) -> dict[str, Any]:
@@ -98,6 +116,12 @@ def check_result(result: dict[str, Any], symbols: dict[str, Any], *, passed: boo
     check_per(result["per"])
     check_expressions(result, symbols)
     check_roots(result, symbols)
+    check_readable(result, symbols)
+    for row in result["time_constants"]:
+        check_time_constant(row, result, symbols)
+    check_bandwidth(result, symbols)
+    for estimate in result["estimates"]:
+        check_estimate(estimate)
     assert result["approximations"] == []
     for number, step in enumerate(result["steps"], start=1):
         check_step(step, number, passed=passed)
@@ -148,6 +172,86 @@ def check_expression(text: str, known: set[str]) -> None:
     assert EXPR.fullmatch(text), text
     assert names_in(text) <= known, text
     assert "s" not in names_in(text), text
+
+
+def check_readable(result: dict[str, Any], symbols: dict[str, Any]) -> None:
+    """Assert that what is for reading is equal to what is exact, at residues modulo a prime."""
+    readable = result["readable"]
+    assert list(readable) == READABLE
+    pairs = [(readable["gain"], result["gain"]["exact"])]
+    for key in ("numerator", "denominator"):
+        assert len(readable[key]) == len(result[key])
+        assert readable[key][0] == "1"
+        pairs += zip(readable[key], result[key], strict=True)
+    for text, exact_text in pairs:
+        check_same(text, exact_text, result, symbols)
+
+
+def check_same(text: str, exact_text: str, result: dict[str, Any], symbols: dict[str, Any]) -> None:
+    """Assert that text in the user's language uses known names only and equals an expression."""
+    program = read_user_text(text)
+    names = {detail for what, detail in program if what == "name"}
+    assert names <= {*symbols, *(name for name, _ in result["definitions"])}, text
+    # Squares, so that a mutual inductance exists.
+    values = {name: (3 + index) ** 2 for index, name in enumerate(symbols)}
+    known = LedgerResult(result).known(values, RESIDUES)
+    assert calculate(program, known, RESIDUES) == calculate(exact_text, known, RESIDUES) % PRIME
+
+
+def check_time_constant(row: dict[str, Any], result: dict[str, Any], symbols: dict[str, Any]) -> None:
+    """Assert what is promised of a time constant: its forms are equal, and its seconds are R·C or L/R."""
+    assert list(row) == TIME_CONSTANT
+    assert row["kind"] in ("open-circuit", "short-circuit")
+    assert row["part"] in {*symbols, *(name for name, _ in result["definitions"])}
+    assert (row["resistance"] is None) == (row["readable"] is None)
+    assert all(row[key] is None or type(row[key]) is float for key in ("seconds", "share"))
+    if row["resistance"] is None:
+        return
+    check_expression(row["resistance"], {*symbols, *(name for name, _ in result["definitions"])})
+    check_same(row["readable"], row["resistance"], result, symbols)
+    if row["seconds"] is not None:
+        values = {name: exact(symbol["value"]) for name, symbol in symbols.items()}
+        known = LedgerResult(result).known(values, RATIONALS)
+        ohms, value = calculate(row["resistance"], known, RATIONALS), known[row["part"]]
+        inductor = symbols.get(row["part"], {}).get("unit") == "H"
+        seconds = value / ohms if inductor else value * ohms
+        assert math.isclose(row["seconds"], seconds, rel_tol=ROOT_TOLERANCE)
+
+
+def check_bandwidth(result: dict[str, Any], symbols: dict[str, Any]) -> None:
+    """Assert that the response is 3 dB off at the edges of the pass band."""
+    edges = result["bandwidth"]
+    assert list(edges) == ["low_hz", "high_hz"]
+    assert all(edge is None or (type(edge) is float and edge > 0) for edge in edges.values())
+    low, high = edges["low_hz"], edges["high_hz"]
+    if low is None and high is None:
+        return
+    mp = mpmath.MPContext()
+    mp.dps = 40
+    field = complex_field(mp)
+    values = {name: field.number(exact(symbol["value"])) for name, symbol in symbols.items()}
+    response = LedgerResult(result).at(values, field)
+
+    def level(hertz: float) -> float:
+        return float(abs(response.at(mp.mpc(0, 2 * mp.pi * hertz))))
+
+    if low is not None and high is not None:
+        assert low < high
+        assert math.isclose(level(low), level(high), rel_tol=NUMBER_TOLERANCE)
+        return
+    # An edge by itself counts from the far end on its other side.
+    edge, far = (low, low * 1e18) if high is None else (high, high * 1e-18)
+    off = level(edge) / level(far)
+    ratios = (2**-0.5, 2**0.5) if result["per"] is None else (2**-0.5,)
+    assert any(math.isclose(off, ratio, rel_tol=NUMBER_TOLERANCE) for ratio in ratios)
+
+
+def check_estimate(estimate: dict[str, Any]) -> None:
+    """Assert that an estimate's error is the one of its numbers."""
+    assert list(estimate) == ESTIMATE
+    assert all(math.isfinite(estimate[key]) for key in ESTIMATE[1:])
+    error = (estimate["value"] - estimate["exact"]) / estimate["exact"]
+    assert math.isclose(estimate["error"], error, rel_tol=NUMBER_TOLERANCE, abs_tol=1e-9)
 
 
 def check_roots(result: dict[str, Any], symbols: dict[str, Any]) -> None:

@@ -1,27 +1,21 @@
-"""Result at a glance: the final equation in a box, gain, poles, zeros, and how the checks went."""
+"""Result at a glance: the final equation in a box, what its names are, numbers, and how the checks went."""
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from dataclasses import dataclass, field
 from fractions import Fraction
 
 from derive.check.verdict import Outcome, Result
-from derive.expressions.polynomials import add, divide, multiply, negate
-from derive.expressions.tree import (
-    ONE,
-    ZERO,
-    Equation,
-    Expression,
-    Name,
-    Negative,
-    Number,
-    Power,
-    Quotient,
-)
-from derive.expressions.walk import term_count
+from derive.estimates.estimates import Estimate
+from derive.expressions.polynomials import divide, multiply, negate
+from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Number
 from derive.normalise import normalise
-from derive.normalise.form import CertifiedRoot, NormalForm
+from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.dimension import RATIO
+from derive.readable.form import Definition, ReadableForm
+from derive.readable.measure import leaves
+from derive.sheet.bandwidth import pass_band
+from derive.sheet.definitions import known_definitions, used_in, with_words
 from derive.sheet.document import (
     Block,
     Display,
@@ -33,35 +27,129 @@ from derive.sheet.document import (
     Section,
     Text,
 )
-from derive.sheet.figures import decibels, figure, root_in_hertz
-from derive.sheet.view import View, gain_dimension, views
+from derive.sheet.figures import decibels, figure, root_in_hertz, signed_percent
+from derive.sheet.final import CORNER, PASS_BAND, ZERO_CORNER, Final, Named, final, reading
+from derive.sheet.resistances import shares_of
+from derive.sheet.view import View, coefficient_value, far_value, gain_dimension, same_poles, views
+from derive.sheet.wording import joined
 from derive.topology.topology import GROUND
 
 ORDER = 10
 SCOPE = "sheet"
 BAND_ORDER = ("mid", "full", "low", "high")
-# A final equation of up to this many terms is shown with its coefficients written out.
-EXPLICIT_TERMS = 16
+# What is shorter than this is sooner read than looked for elsewhere.
+WORTH_REFERRING = 6
+# An estimate whose error is below this is the exact value but for rounding.
+EXACT = 1e-9
+FOLD = {1: "", 2: "double ", 3: "triple "}
+
+
+@dataclass(slots=True)
+class Told:
+    """What the reader has been shown so far, so that nothing is printed in full twice.
+
+    `whole` holds the results by name and form, `values` the name and the result of each long expression,
+    `words` the definitions that were given.
+    """
+
+    whole: dict[tuple[str, int, ReadableForm], View] = field(default_factory=dict)
+    values: dict[Expression, tuple[str, View]] = field(default_factory=dict)
+    words: set[Definition] = field(default_factory=set)
 
 
 def compose(outcome: Outcome) -> tuple[Section, ...]:
     """Give the section."""
     blocks: list[Block] = []
+    told = Told()
     # The mid-band gain first: it is what is asked first.
     for view in sorted(views(outcome), key=lambda view: BAND_ORDER.index(view.band)):
-        blocks += _blocks(view)
+        blocks += _blocks(view, told)
     return (Section("Result at a glance", tuple(blocks)),)
 
 
-def _blocks(view: View) -> list[Block]:
+def _blocks(view: View, told: Told) -> list[Block]:
     form = view.result.solution.form
     if form.is_zero:
         return [Paragraph(_zero(view)), Paragraph(_checked(view.result))]
-    display = Display(_final(view, form), _asked(view), boxed=True)
-    blocks: list[Block] = [display, *_names(view, form)]
-    blocks.append(Paragraph(_numbers(view, form)))
-    blocks.append(Paragraph(_checked(view.result)))
+    before = told.whole.setdefault((view.name, form.power_of_s, reading(view)), view)
+    if before is not view:
+        as_before = (Maths(Name(view.name)), Text(f" is the same as in the {before.band} band."))
+        return [Paragraph((*_asked(view), Text(" "), *as_before)), Paragraph(_checked(view.result))]
+    found = final(view)
+    blocks: list[Block] = [Display(found.equation, _asked(view), boxed=True)]
+    blocks += _named(view, found, told)
+    lines = [_words(view, found, told), _numbers(view, found), pass_band(view), _rules(view)]
+    blocks += [Paragraph(joined(line)) for line in (*lines, _checked(view.result)) if line]
+    if not found.named:
+        told.values.setdefault(found.equation.right, (view.name, view))
     return blocks
+
+
+def _named(view: View, found: Final, told: Told) -> list[Block]:
+    """Define the names in the box; those that were defined before are referred to."""
+    blocks: list[Block] = []
+    again: dict[tuple[int, str], list[str]] = {}
+    for entry in found.named:
+        known = told.values.get(entry.value)
+        if known is not None and leaves(entry.value) >= WORTH_REFERRING:
+            name, where = known
+            again.setdefault((where.place, "" if name == entry.name else name), []).append(entry.name)
+            continue
+        told.values.setdefault(entry.value, (entry.name, view))
+        value = view.shown(entry.value, entry.step or 0)
+        blocks.append(Display(Equation(Name(entry.name), value), _says(view, entry)))
+    every = views(view.outcome)
+    blocks += [
+        Paragraph(_as_before(view, names, name, every[place])) for (place, name), names in again.items()
+    ]
+    return blocks
+
+
+def _as_before(view: View, names: list[str], name: str, where: View) -> Line:
+    """Say where names were defined: "b_1 and b_2 as for A_v in the high band", "K is the A_v of ..."."""
+    line: list[Inline] = []
+    for place, own in enumerate(names):
+        line += [
+            Text("" if not place else " and " if place == len(names) - 1 else ", "),
+            Maths(Name(own)),
+        ]
+    if where.place == view.place:
+        return (*line, Text(" is equal to "), Maths(Name(name)), Text("."))
+    band = f" in the {where.band} band" if where.band != view.band else ""
+    if name == where.name:
+        line += [Text(" is "), Maths(Name(name)), Text(f"{band}." if band else ", above.")]
+        return tuple(line)
+    if name:
+        line += [Text(" is "), Maths(Name(name)), Text(" there")]
+    return (*line, Text(", as for " if name else " as for "), Maths(Name(where.name)), Text(f"{band}."))
+
+
+def _says(view: View, entry: Named) -> Line:
+    """Say of a name what it is, its value, who has which share in it, and the step that it stands in."""
+    numbers = view.result.solution.numbers
+    pieces: list[Line] = [entry.says] if entry.says else []
+    letter, _, power = entry.name.partition("_")
+    if entry.name in (CORNER, ZERO_CORNER):
+        roots = () if numbers is None else numbers.poles if entry.name == CORNER else numbers.zeros
+        pieces += [(Text(root_in_hertz(root)),) for root in roots[:1]]
+    elif letter in ("a", "b") and power.isdigit() and numbers is not None:
+        value: Line = (Text(figure(*coefficient_value(numbers, letter, int(power)))),)
+        shares = shares_of(view, f"{letter}_{power}")
+        pieces.append((*value, Text(": "), *shares) if shares else value)
+    if entry.step is not None:
+        pieces.append((Text("from "), view.wording.reference(entry.step)))
+    line: list[Inline] = []
+    for piece in pieces:
+        line += [Text("; "), *piece] if line else piece
+    return joined(tuple(line))
+
+
+def _words(view: View, found: Final, told: Told) -> Line:
+    """Define β, r_e and the like where they are first used."""
+    shown = [found.equation.right, *(entry.value for entry in found.named)]
+    new = [entry for entry in used_in(shown, known_definitions(view)) if entry not in told.words]
+    told.words.update(new)
+    return with_words(new)
 
 
 def _zero(view: View) -> Line:
@@ -75,62 +163,6 @@ def _zero(view: View) -> Line:
         why = "sources hold this voltage, whatever current is driven into it"
     zero = Maths(Equation(Name(view.name), ZERO))
     return (Text(f"The {what} is zero for all values, "), zero, Text(f": {why}."))
-
-
-def _explicit(form: NormalForm) -> bool:
-    parts: Iterable[Expression] = (form.gain, *form.numerator[1:], *form.denominator[1:])
-    return sum(map(term_count, parts)) <= EXPLICIT_TERMS
-
-
-def _final(view: View, form: NormalForm) -> Equation:
-    """Write the response with its coefficients where they are short, else with their names."""
-    if not _explicit(form):
-        named = view.step(normalise.NORMAL)
-        if named is not None:
-            return named.equation
-    power = abs(form.power_of_s)
-    s: Expression = Name("s") if power == 1 else Power(Name("s"), power)
-    above, below = _polynomial(form.numerator), _polynomial(form.denominator)
-    above = multiply([s, above]) if form.power_of_s > 0 else above
-    below = multiply([s, below]) if form.power_of_s < 0 else below
-    if below == ONE:
-        return Equation(Name(view.name), multiply([form.gain, above]))
-    if form.gain == ONE or (above == ONE and len(form.denominator) == 1):
-        above, below = _merged(form.gain, above, below)
-        return Equation(Name(view.name), divide(above, below))
-    return Equation(Name(view.name), multiply([form.gain, divide(above, below)]))
-
-
-def _merged(gain: Expression, above: Expression, below: Expression) -> tuple[Expression, Expression]:
-    """Draw the gain and a bare power of s into one fraction: 1/(s·C), not 1/C · 1/s."""
-    if isinstance(gain, Negative):
-        inner, under = _merged(gain.operand, above, below)
-        return Negative(inner), under
-    if isinstance(gain, Quotient):
-        return multiply([gain.numerator, above]), multiply([below, gain.denominator])
-    return multiply([gain, above]), below
-
-
-def _polynomial(found: tuple[Expression, ...]) -> Expression:
-    terms: list[Expression] = []
-    for power, value in enumerate(found):
-        s: Expression = Name("s") if power == 1 else Power(Name("s"), power)
-        if value != ZERO:
-            terms.append(value if power == 0 else multiply([s, value]))
-    return add(terms)
-
-
-def _names(view: View, form: NormalForm) -> list[Block]:
-    """Give the equations that define the names in the box."""
-    if _explicit(form):
-        return []
-    blocks: list[Block] = []
-    for step in view.result.solution.derivation.steps:
-        if step.rule in (normalise.GAIN, normalise.COEFFICIENT):
-            reference = view.wording.reference(step.number)
-            shown = view.shown_equation(step.equation, step.number)
-            blocks.append(Display(shown, (Text("from "), reference)))
-    return blocks
 
 
 def _asked(view: View) -> Line:
@@ -162,21 +194,52 @@ def _share(weight: Fraction, common: str) -> Expression:
     return negate(value) if weight < 0 else value
 
 
-def _numbers(view: View, form: NormalForm) -> Line:
+def _numbers(view: View, found: Final) -> Line:
     numbers = view.result.solution.numbers
     if numbers is None:
         return (Text("A value was left open, so this sheet is symbolic only."),)
-    dimension = gain_dimension(view)
-    gain = figure(numbers.gain, dimension)
-    level = decibels(numbers.gain) if dimension == RATIO else ""
-    words = f" = {gain}" + (f" ({level})" if level else "")
-    name = view.step(normalise.GAIN)
-    label = Name(name.subject or "K") if name else Name("K")
-    if _explicit(form) and form.numerator == form.denominator == (ONE,) and not form.power_of_s:
+    read = reading(view)
+    names = {entry.name for entry in found.named}
+    far = _far(view, numbers)
+    poles, zeros = _roots("pole", numbers.poles), _zeros(view, numbers)
+    if CORNER in names and far:
+        label = Name(PASS_BAND if PASS_BAND in names else view.name)
+        where = "" if PASS_BAND in names else " far above the corner"
+        return Text("At the nominal values "), Maths(label), Text(f" = {far}{where}; {poles}; {zeros}.")
+    step = view.step(normalise.GAIN)
+    label = Name((step.subject if step else None) or "K")
+    only = read.numerator == read.denominator == (ONE,) and not view.result.solution.form.power_of_s
+    if only and not found.named:
         # The box shows the quantity itself; there is no K in it.
         label = Name(view.name)
-    lead: Line = (Text("At the nominal values "), Maths(label), Text(words))
-    return (*lead, Text(f"; {_roots('pole', numbers.poles)}; {_roots('zero', numbers.zeros)}."))
+    if not only and label.text not in names:
+        # Nor is there one where the coefficients are written out; it is the value at zero frequency.
+        label = Name(view.name)
+    words = f" = {_level(view, numbers.gain)}"
+    if not only and label.text == view.name and not view.result.solution.form.power_of_s:
+        words += " at zero frequency"
+    words += f", far above all corners {far}" if far else ""
+    return Text("At the nominal values "), Maths(label), Text(f"{words}; {poles}; {zeros}.")
+
+
+def _level(view: View, value: Fraction | None, extra: int = 0) -> str:
+    dimension = gain_dimension(view, extra)
+    level = decibels(value) if dimension == RATIO else ""
+    return figure(value, dimension) + (f" ({level})" if level else "")
+
+
+def _far(view: View, numbers: NominalNumbers) -> str:
+    value = far_value(view, numbers)
+    return "" if value is None else _level(view, value, -view.result.solution.form.power_of_s)
+
+
+def _zeros(view: View, numbers: NominalNumbers) -> str:
+    power = view.result.solution.form.power_of_s
+    others = _roots("zero", numbers.zeros)
+    if power <= 0:
+        return others
+    origin = f"{FOLD.get(power, f'{power}-fold ')}zero at the origin"
+    return f"{origin}, {others}" if numbers.zeros else origin
 
 
 def _roots(word: str, roots: tuple[CertifiedRoot, ...]) -> str:
@@ -185,6 +248,28 @@ def _roots(word: str, roots: tuple[CertifiedRoot, ...]) -> str:
         return f"no {word}s"
     single = len(shown) == 1 and roots[0].multiplicity == 1 and roots[0].imaginary == 0
     return f"{word if single else word + 's'} at {', '.join(shown)}"
+
+
+def _told_rules(view: View) -> tuple[Estimate, ...]:
+    """Give the rules on the poles that an earlier result of the same poles has stated."""
+    earlier = same_poles(view)
+    estimates = earlier.result.solution.estimates if earlier else None
+    return tuple(rule for rule in (estimates.estimates if estimates else ()) if rule.unit == "rad/s")
+
+
+def _rules(view: View) -> Line:
+    """Say how far rules of thumb are off here; () where there is none."""
+    estimates = view.result.solution.estimates
+    told = {rule.name for rule in _told_rules(view)}
+    found = [rule for rule in (estimates.estimates if estimates else ()) if rule.name not in told]
+    if not found:
+        return ()
+    words = ", ".join(
+        f"{rule.name} {signed_percent(rule.error) if abs(rule.error) > EXACT else 'exact'}"
+        + ("" if rule.usable else " (not to be used)")
+        for rule in found
+    )
+    return (Text(f"Rules of thumb, error here: {words}."),)
 
 
 def _root(root: CertifiedRoot) -> str:

@@ -6,10 +6,12 @@ from fractions import Fraction
 
 from derive.expressions.tree import ONE, ZERO, Expression, Name
 from derive.normalise.form import NominalNumbers
-from derive.quantities.dimension import TIME, Dimension
+from derive.quantities.dimension import Dimension
 from derive.sheet.document import Block, Column, Line, Maths, Paragraph, Section, Table, Text
 from derive.sheet.figures import figure
-from derive.sheet.view import View, gain_dimension
+from derive.sheet.final import coefficient_name
+from derive.sheet.resistances import shares_of
+from derive.sheet.view import View, coefficient_value, gain_dimension
 
 ORDER = 62
 SCOPE = "result"
@@ -27,28 +29,27 @@ def compose(view: View) -> tuple[Section, ...]:
 
 def _values(view: View, numbers: NominalNumbers) -> Table:
     form = view.result.solution.form
-    dimension = gain_dimension(view)
-    rows = [_row(Name("K"), numbers.gain, dimension)]
-    for letter, exact, values in (
-        ("a", form.numerator, numbers.top),
-        ("b", form.denominator, numbers.bottom),
-    ):
+    rows = [_row(Name("K"), numbers.gain, gain_dimension(view), ())]
+    for letter, exact in (("a", form.numerator), ("b", form.denominator)):
         for power, entry in enumerate(exact):
             if entry not in (ONE, ZERO):
-                value = _coefficient(values, power)
-                rows.append(_row(Name(f"{letter}_{power}"), value, TIME**power))
-    columns = (Column((Text("Quantity"),)), Column((Text("Value"),), True))
-    return Table("Gain and coefficients at the nominal values", columns, tuple(rows))
+                value, dimension = coefficient_value(numbers, letter, power)
+                name = Name(coefficient_name(view, letter, power))
+                rows.append(_row(name, value, dimension, shares_of(view, f"{letter}_{power}")))
+    columns = [
+        Column((Text("Quantity"),)),
+        Column((Text("Value"),), True),
+        Column((Text("Shares in it"),)),
+    ]
+    if not any(shares for _, _, shares in rows):
+        columns, rows = columns[:2], [row[:2] for row in rows]
+    return Table("Gain and coefficients at the nominal values", tuple(columns), tuple(rows))
 
 
-def _coefficient(values: tuple[Fraction, ...], power: int) -> Fraction | None:
-    if not values or not values[0]:
-        return None
-    return values[power] / values[0] if power < len(values) else Fraction(0)
-
-
-def _row(name: Expression, value: Fraction | None, dimension: Dimension) -> tuple[Line, ...]:
-    return (Maths(name),), (Text(figure(value, dimension)),)
+def _row(
+    name: Expression, value: Fraction | None, dimension: Dimension, shares: Line
+) -> tuple[Line, ...]:
+    return (Maths(name),), (Text(figure(value, dimension)),), shares
 
 
 def _notes(numbers: NominalNumbers) -> list[str]:

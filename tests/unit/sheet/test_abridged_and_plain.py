@@ -10,7 +10,7 @@ from derive.expressions.walk import children_of
 from derive.pipeline import derive
 from derive.reading.read import parse, read
 from derive.sheet.compose import compose
-from derive.sheet.document import Display, Matrix
+from derive.sheet.document import Display, Matrix, unfolded
 from derive.sheet.plain import plain_outcome, summary_rows
 from derive.sheet.view import LEADING_TERMS, TERM_LIMIT, abridged
 
@@ -56,7 +56,7 @@ def elided_in(sheet):
             visit(child)
 
     for section in sheet.sections:
-        for block in section.blocks:
+        for block in unfolded(section.blocks):
             if isinstance(block, Display) and not isinstance(block.content, Matrix):
                 content = block.content
                 for side in (content.left, content.right) if hasattr(content, "left") else (content,):
@@ -121,8 +121,8 @@ def test_equations_of_several_results_are_numbered_by_their_place():
     numbers = [
         block.number
         for section in compose(outcome, "low_pass").sections
-        for block in section.blocks
+        for block in unfolded(section.blocks)
         if isinstance(block, Display) and block.number
     ]
-    assert {number.partition(".")[0] for number in numbers} == {"1", "2"}
+    assert {number.partition(".")[0] for number in numbers} == {"1", "2", "R1"}
     assert len(numbers) == len(set(numbers))

@@ -1,0 +1,92 @@
+"""Say all of poles, zeros and corner frequencies: closed forms, estimates and their errors, edges, limits."""
+
+from __future__ import annotations
+
+from derive.eliminate.derivation import Derivation
+from derive.estimates.bandwidth import find_bandwidth
+from derive.estimates.closed_forms import closed_forms, names_taken
+from derive.estimates.estimates import Bandwidth, Estimate, Estimates
+from derive.estimates.limits import limits_of_gain
+from derive.estimates.response import response_of
+from derive.estimates.rules import Given, rules_of_thumb
+from derive.estimates.sensitivities import root_sensitivities
+from derive.normalise.form import NominalNumbers, NormalForm
+from derive.normalise.normalise import COEFFICIENT
+from derive.reactances.time_constants import TimeConstants
+from derive.readable.readable import definitions_used
+from derive.readable.vocabulary import Vocabulary
+from derive.topology.topology import BandName
+
+ZERO_RESPONSE = "the response is zero: it has no poles, zeros or bandwidth"
+OPEN = "no bandwidth and no errors of estimates: a value is left open"
+UNDEFINED = "no bandwidth: at these values the response is zero or undefined"
+
+
+def estimate(
+    derivation: Derivation,
+    form: NormalForm,
+    numbers: NominalNumbers | None,
+    time_constants: TimeConstants | None,
+    vocabulary: Vocabulary,
+    band: BandName,
+) -> Estimates:
+    """Give the closed forms, estimates, bandwidth, sensitivities and limits of one response.
+
+    What cannot be given is left out, and `remark` says why there is no bandwidth. The sum of time
+    constants is taken from `time_constants` where it is given, else from the response's coefficients,
+    which is the same unless a mode is hidden.
+    """
+    if form.is_zero:
+        return Estimates((), (), None, (), (), remark=ZERO_RESPONSE)
+    taken = names_taken(derivation, vocabulary)
+    forms = closed_forms(derivation, vocabulary, taken)
+    limits = limits_of_gain(derivation, vocabulary) if form.power_of_s == 0 else ()
+    shown = [form.readable for form in forms]
+    shown += [limit.limit for limit in limits if limit.limit is not None]
+    definitions = definitions_used(shown, vocabulary)
+    if numbers is None:
+        return Estimates(forms, (), None, (), limits, definitions, OPEN)
+    bandwidth, rules, remark = _in_numbers(derivation, form, numbers, time_constants, band, taken)
+    sensitivities = root_sensitivities(derivation, numbers)
+    return Estimates(forms, rules, bandwidth, sensitivities, limits, definitions, remark)
+
+
+def _in_numbers(
+    derivation: Derivation,
+    form: NormalForm,
+    numbers: NominalNumbers,
+    time_constants: TimeConstants | None,
+    band: BandName,
+    taken: set[str],
+) -> tuple[Bandwidth | None, tuple[Estimate, ...], str]:
+    response = response_of(numbers, form.power_of_s)
+    if response is None:
+        return None, (), UNDEFINED
+    impedance = derivation.system.find.quantity == "impedance"
+    bandwidth, remark = find_bandwidth(response, numbers.poles, band, impedance=impedance)
+    names = coefficient_names(derivation, form)
+    pi = "pi"
+    while pi in taken:
+        pi += "_"
+    given = Given(
+        numbers,
+        impedance,
+        response,
+        form.power_of_s,
+        bandwidth,
+        time_constants,
+        lambda index: names.get(index, f"b_{index}"),
+        pi,
+    )
+    return bandwidth, rules_of_thumb(given), remark
+
+
+def coefficient_names(derivation: Derivation, form: NormalForm) -> dict[int, str]:
+    """Give the name under which the derivation defines each coefficient of the denominator."""
+    found = {}
+    for step in derivation.steps:
+        if step.rule == COEFFICIENT and step.defines is not None and step.defines.startswith("b_"):
+            index = step.defines[2:].split("_")[0]
+            if index.isdigit() and int(index) < len(form.denominator):
+                found[int(index)] = step.defines
+    return found

@@ -1,0 +1,1 @@
+"""What each capacitor and inductor does to the response: resistance seen, time constant, Miller's effect."""

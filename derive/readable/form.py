@@ -1,0 +1,25 @@
+"""The noun of a readable form: the normal form once more, in the fewest signs."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from derive.expressions.tree import Expression
+
+Definition = tuple[str, Expression]
+
+
+@dataclass(frozen=True, slots=True)
+class ReadableForm:
+    """Gain and coefficients as a person writes them, each identically equal to the normal form's.
+
+    Their trees may hold `Parallel`. `definitions` are the names that they use beyond the circuit's
+    symbols (β = g_m·r_π), in an order in which each needs symbols and earlier ones only. `far_gain` is
+    the response far above all corners where it is zero at zero frequency, None elsewhere.
+    """
+
+    gain: Expression
+    numerator: tuple[Expression, ...]
+    denominator: tuple[Expression, ...]
+    definitions: tuple[Definition, ...] = ()
+    far_gain: Expression | None = None
