@@ -10,6 +10,7 @@ from dataclasses import dataclass
 from functools import partial
 from pathlib import Path
 
+from derive.approximate.questions import with_short_forms
 from derive.check.verdict import Outcome
 from derive.errors import InputError
 from derive.pipeline import Results, derive
@@ -31,14 +32,17 @@ class Made:
     files: tuple[Path, ...]
 
 
-def make_sheets(files: Sequence[str], folder: Path, kinds: Sequence[str], tell: Tell) -> tuple[Made, ...]:
+def make_sheets(
+    files: Sequence[str], folder: Path, kinds: Sequence[str], tell: Tell, *, simplify: bool = False
+) -> tuple[Made, ...]:
     """Derive, check and write the sheet of each topology file.
 
-    Given: `tell`, which is told the sheet's name and each stage that begins.
+    Given: `tell`, which is told the sheet's name and each stage that begins; whether short forms are wanted
+    of those too that do not ask for them.
     Raises: InputError before anything is written; OutputError.
     """
     names = sheet_names(files)
-    topologies = [read(file) for file in files]
+    topologies = [with_short_forms(read(file)) if simplify else read(file) for file in files]
     worked = [
         (name, *_work(name, topology, kinds, tell))
         for name, topology in zip(names, topologies, strict=True)

@@ -25,6 +25,7 @@ if TYPE_CHECKING:
 
 WELL, FAILED, UNUSABLE = 0, 1, 2
 KINDS = ("html", "pdf", "json")
+SHORT_FORMS = "find short forms within the budget of error"
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -86,6 +87,7 @@ def _parser() -> argparse.ArgumentParser:
         "--out", default="sheets", metavar="DIR", help="folder to write to (default sheets)"
     )
     sheet.add_argument("--only", default=",".join(KINDS), metavar="KINDS", help="of html,pdf,json")
+    sheet.add_argument("--simplify", action="store_true", help=SHORT_FORMS)
     sheet.add_argument("--quiet", action="store_true", help="no progress on standard error")
     sheet.set_defaults(run=_sheet)
     show = commands.add_parser("show", help="print a topology's results in the terminal")
@@ -94,6 +96,7 @@ def _parser() -> argparse.ArgumentParser:
     show.add_argument("--band", metavar="BAND", help="one band only")
     show.add_argument("--steps", action="store_true", help="the whole derivation")
     show.add_argument("--all-checks", action="store_true", help="ask the other engine as well")
+    show.add_argument("--simplify", action="store_true", help=SHORT_FORMS)
     show.add_argument("--quiet", action="store_true", help="no progress on standard error")
     show.set_defaults(run=_show)
     _add_compare(commands)
@@ -119,18 +122,23 @@ def _sheet(options: argparse.Namespace) -> int:
 
     kinds = _kinds(options.only)
     with Progress(len(options.files), 2 + len(kinds), quiet=options.quiet) as progress:
-        made = make_sheets(options.files, Path(options.out), kinds, progress.tell)
+        made = make_sheets(
+            options.files, Path(options.out), kinds, progress.tell, simplify=options.simplify
+        )
     _summary(made)
     return WELL if all(sheet.results.passed for sheet in made) else FAILED
 
 
 def _show(options: argparse.Namespace) -> int:
+    from derive.approximate.questions import with_short_forms
     from derive.pipeline import derive
     from derive.progress import Progress
     from derive.reading.read import read
     from derive.sheet.plain import plain_outcome
 
     topology = read(options.file)
+    if options.simplify:
+        topology = with_short_forms(topology)
     names = [find.name for find in topology.finds]
     if options.find is not None and options.find not in names:
         raise InputError(

@@ -6,6 +6,10 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 from typing import Any
 
+from derive.approximate.approximate import approximate
+from derive.approximate.questions import Simplified
+from derive.approximate.refuse import refuse_assumptions, refuse_idle
+from derive.approximate.simplify import simplify_all
 from derive.bands.band_circuit import BandCircuit
 from derive.bands.choose import bands_of
 from derive.bands.merge import refuse_unused_merges
@@ -17,19 +21,16 @@ from derive.check.verdict import Outcome, Result, Solution, Verdict
 from derive.devices.elements import SmallSignal
 from derive.devices.linearise import linearise
 from derive.eliminate.derivation import Derivation
-from derive.eliminate.eliminate import eliminate
-from derive.eliminate.plan import plan
 from derive.errors import InputError
 from derive.estimates.estimate import estimate
 from derive.nodal.write import write_equations
 from derive.normalise.band_report import report_bands
-from derive.normalise.normalise import normalise
-from derive.normalise.numbers import nominal_numbers
+from derive.normalise.nested_choice import derive_form
 from derive.reactances.find_miller import find_miller
 from derive.reactances.find_time_constants import find_time_constants
 from derive.readable.far_gain import far_gain
 from derive.readable.readable import read_form
-from derive.readable.vocabulary import vocabulary_of
+from derive.readable.vocabulary import Vocabulary, vocabulary_of
 from derive.sheet.ledger import ledger
 from derive.sheet.plain import plain_outcome
 from derive.topology.topology import BandName, Find, Topology
@@ -83,12 +84,15 @@ def derive(
     bands = tuple(restrict(circuit, name) for name in _chosen(circuit, band))
     if band is None:
         refuse_unused_merges(topology.merges, bands)
+    refuse_assumptions(circuit, bands if band is None else [restrict(circuit, b) for b in bands_of(circuit)])
     solutions = []
     for band_circuit in bands:
         for find in topology.finds:
             if only in (None, find.name):
                 progress(f"deriving {find.name}, {band_circuit.band} band")
                 solutions.append(solve(band_circuit, find))
+    if band is None and only is None:
+        refuse_idle(topology.assumptions, [solution.register for solution in solutions])
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
     report = report_bands(circuit, bands)
@@ -129,10 +133,18 @@ def solve(band: BandCircuit, find: Find) -> Solution:
     Given: the find as the user wrote it.
     """
     system = write_equations(band.circuit, find_in(band, find))
-    derivation = eliminate(system, plan(system))
-    form, derivation = normalise(derivation)
-    numbers = nominal_numbers(derivation)
+    derivation, form, numbers = derive_form(system)
     vocabulary = vocabulary_of(band.circuit, _names_taken(derivation))
+    if derivation.nested is not None:
+        return Solution(
+            derivation,
+            form,
+            numbers,
+            band,
+            estimates=estimate(derivation, form, numbers, None, vocabulary, band.band),
+            register=approximate(band, derivation, form, numbers, vocabulary),
+            simplified=_simplified(band, find, vocabulary),
+        )
     readable = read_form(form, derivation.system.ring.plain(), vocabulary)
     readable = replace(readable, far_gain=far_gain(derivation, vocabulary))
     constants = find_time_constants(derivation, form, vocabulary)
@@ -145,7 +157,17 @@ def solve(band: BandCircuit, find: Find) -> Solution:
         constants,
         find_miller(derivation, form, numbers, vocabulary),
         estimate(derivation, form, numbers, constants, vocabulary, band.band),
+        approximate(band, derivation, form, numbers, vocabulary),
+        _simplified(band, find, vocabulary),
     )
+
+
+def _simplified(band: BandCircuit, find: Find, vocabulary: Vocabulary) -> tuple[Simplified, ...]:
+    """Give the short forms that the tool finds, where the budget asks for them."""
+    budget = band.circuit.topology.budget
+    if not budget.simplify:
+        return ()
+    return simplify_all(band.circuit, find_in(band, find), budget, vocabulary=vocabulary)
 
 
 def _names_taken(derivation: Derivation) -> set[str]:

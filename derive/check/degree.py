@@ -15,6 +15,7 @@ from derive.check.points import PRIME_BITS
 from derive.devices.elements import Capacitor, Coupling, OnePoleGain, SmallSignal
 from derive.errors import DeriveError
 from derive.expressions.tree import (
+    ONE,
     Expression,
     Name,
     Negative,
@@ -25,6 +26,7 @@ from derive.expressions.tree import (
     Quotient,
     Sum,
 )
+from derive.expressions.walk import names_of
 from derive.normalise.form import NormalForm
 
 Degrees = tuple[int, int]
@@ -113,11 +115,41 @@ def degree_of_form(form: NormalForm, weights: Mapping[str, int | Degrees]) -> De
 
 
 def degree_of_claim(form: NormalForm, circuit: SmallSignal, definitions: Sequence[Merged] = ()) -> int:
-    """Bound the degree of the polynomial that is zero where form and circuit agree."""
-    top, bottom = degree_of_form(form, weights_of(circuit, definitions))
-    return max(top, bottom) + degree_of_circuit(circuit)
+    """Bound the degree of the polynomial that is zero where form and circuit agree.
+
+    The definitions of a nested form are of two kinds. A ratio of circuit values is counted as a variable,
+    so that sums of many such do not add up denominators which are the same: for 1/R that is all, as 1/R is
+    as random as R and a tableau holds R to the first power only; for others the degree of what
+    is written with them is raised by their own.
+    """
+    weights = weights_of(circuit, definitions)
+    stretch, below = 1, 0
+    defined: set[str] = set()
+    for name, meaning in form.definitions:
+        top, bottom = degrees(meaning, weights)
+        defined.add(name)
+        if not bottom:
+            weights[name] = top
+        elif any(used in defined for used in names_of(meaning)):
+            weights[name] = top, bottom
+        else:
+            weights[name] = 1
+            if not _is_reciprocal(meaning, weights):
+                stretch, below = max(stretch, top), below + bottom
+    degree = max(degree_of_form(form, weights))
+    return degree * (stretch + below) + degree_of_circuit(circuit)
+
+
+def _is_reciprocal(meaning: Expression, weights: Mapping[str, int | Degrees]) -> bool:
+    """Whether something is 1/R of one value that is drawn by itself."""
+    return (
+        isinstance(meaning, Quotient)
+        and meaning.numerator == ONE
+        and isinstance(meaning.denominator, Name)
+        and meaning.denominator.text not in weights
+    )
 
 
 def chance(degree: int) -> float:
     """Give the greatest chance that a wrong result agrees at one random point modulo the prime."""
-    return degree / float((1 << (PRIME_BITS - 1)) - 1)
+    return min(1.0, degree / float((1 << (PRIME_BITS - 1)) - 1))

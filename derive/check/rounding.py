@@ -7,7 +7,7 @@ nothing, and it is taken for nothing.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from fractions import Fraction
 
 from derive.errors import DeriveError
@@ -36,13 +36,27 @@ def value_without_rounding(expression: Expression, values: Mapping[str, Fraction
     return _sized(expression, values)[0]
 
 
-def _sized(expression: Expression, values: Mapping[str, Fraction]) -> Sized:
+def definitions_without_rounding(
+    definitions: Iterable[tuple[str, Expression]], values: Mapping[str, Fraction]
+) -> dict[str, Fraction]:
+    """Give the values of names defined one by the other, what is nothing but rounding being exactly zero.
+
+    Raises: DeriveError for a name that is not known; ZeroDivisionError for a division by zero.
+    """
+    sized: dict[str, Sized] = {name: (value, abs(value)) for name, value in values.items()}
+    for name, meaning in definitions:
+        sized[name] = _sized(meaning, sized)
+    return {name: value for name, (value, _) in sized.items()}
+
+
+def _sized(expression: Expression, values: Mapping[str, Fraction | Sized]) -> Sized:
     if isinstance(expression, Number):
         return expression.value, abs(expression.value)
     if isinstance(expression, Name):
         if expression.text not in values:
             raise DeriveError(f"no value is known for {expression.text}")
-        return values[expression.text], abs(values[expression.text])
+        known = values[expression.text]
+        return known if isinstance(known, tuple) else (known, abs(known))
     if isinstance(expression, Negative):
         value, size = _sized(expression.operand, values)
         return -value, size
@@ -67,7 +81,7 @@ def _sized(expression: Expression, values: Mapping[str, Fraction]) -> Sized:
     raise DeriveError("an expression of this form has no exact value")
 
 
-def _sum(expression: Sum, values: Mapping[str, Fraction]) -> Sized:
+def _sum(expression: Sum, values: Mapping[str, Fraction | Sized]) -> Sized:
     value, size = Fraction(0), Fraction(0)
     for term in expression.terms:
         own, own_size = _sized(term, values)

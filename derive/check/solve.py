@@ -142,6 +142,8 @@ def long_double(value: Fraction | int) -> np.longdouble:
 
 
 PASSES = 4
+# Up to this many unknowns a matrix is solved anew for each pass.
+LARGE = 60
 
 
 @dataclass(frozen=True, slots=True)
@@ -191,9 +193,12 @@ def _solve_stack(tableau: Tableau, omegas: Sequence[float]) -> Sweep:
     x = np.zeros_like(right)
     step = x
     try:
+        inverse = np.linalg.inv(rough)
         for _ in range(PASSES):  # each pass gains the digits that a double solve holds
-            left_over = right - np.einsum("fij,fj->fi", matrix, x)
-            step = np.linalg.solve(rough, left_over.astype(np.complex128)[:, :, None])[:, :, 0]
+            left_over = (right - np.einsum("fij,fj->fi", matrix, x)).astype(np.complex128)[:, :, None]
+            # The inverse, wanted below anyway, gains hardly less and saves large matrices much time.
+            large = tableau.size > LARGE
+            step = (inverse @ left_over if large else np.linalg.solve(rough, left_over))[:, :, 0]
             x = x + step
     except np.linalg.LinAlgError as error:
         raise NoSolutionError("the circuit has no unique solution at these values") from error
@@ -203,9 +208,10 @@ def _solve_stack(tableau: Tableau, omegas: Sequence[float]) -> Sweep:
     # Where a pass gains nothing, small last steps prove nothing. What rounding can cost each unknown is
     # bounded by |A⁻¹|·|A|·|x| (Skeel, Scaling for numerical stability in Gaussian elimination, J. ACM 26
     # (1979) 494-526; from memory), once for the residuals and once more for what the passes leave.
-    backward = np.abs(np.linalg.inv(rough))
+    backward = np.abs(inverse)
     spread = np.einsum("fij,fj->fi", np.abs(rough), np.abs(x).astype(np.float64))
-    lost = np.minimum(np.linalg.cond(rough, np.inf) * np.finfo(np.float64).eps, 1.0)
+    condition = np.abs(rough).sum(axis=2).max(axis=1) * backward.sum(axis=2).max(axis=1)
+    lost = np.minimum(condition * np.finfo(np.float64).eps, 1.0)
     unit = lost**PASSES + 4 * float(np.finfo(np.longdouble).eps)
     unsure = np.abs(step) + unit[:, None] * np.einsum("fij,fj->fi", backward, spread)
     moved = (unsure * columns * np.abs(pick)).sum(axis=1)

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from derive.approximate.questions import Simplified
+from derive.approximate.register import Register
 from derive.bands.band_circuit import BandCircuit
 from derive.bias.operating_point import OperatingPoint
 from derive.devices.elements import SmallSignal
@@ -23,6 +25,8 @@ class Solution:
     `numbers` is None where a value was left open; `band` is the band's circuit, None where the derivation
     is on the circuit as it was written. `readable`, `time_constants`, `miller` and `estimates` say the same
     result in the words of the trade; None or () where they were not asked for or the circuit is too large.
+    `register` holds the assumptions made for it, None where there are none; `simplified` the short forms that the
+    tool found, where they were asked for.
     """
 
     derivation: Derivation
@@ -33,6 +37,8 @@ class Solution:
     time_constants: TimeConstants | None = None
     miller: tuple[MillerView, ...] = ()
     estimates: Estimates | None = None
+    register: Register | None = None
+    simplified: tuple[Simplified, ...] = ()
 
     @property
     def judged(self) -> SmallSignal:
@@ -68,8 +74,10 @@ class Result:
 
     @property
     def passed(self) -> bool:
-        """Whether no check failed and no step is broken."""
-        return not self.broken_steps and all(v.passed is not False for v in self.verdicts)
+        """Whether no check failed, no step is broken, and no assumption fails."""
+        register = self.solution.register
+        sound = not self.broken_steps and (register is None or not register.failed)
+        return sound and all(v.passed is not False for v in self.verdicts)
 
 
 @dataclass(frozen=True, slots=True)

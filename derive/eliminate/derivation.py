@@ -58,10 +58,26 @@ class Step:
 
 
 @dataclass(frozen=True, slots=True)
+class Nested:
+    """Why a derivation is by nested lines, nothing multiplied out.
+
+    `terms` is the number of terms that the denominator would have, None where there was no counting them;
+    it is `exact` unless products cancel. `asked` says whether the user asked for this form. `pivots` are
+    the coefficients divided by, the last included: their product is the determinant but for its sign.
+    """
+
+    terms: int | None
+    exact: bool = True
+    asked: bool = False
+    pivots: tuple[Expression, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
 class Derivation:
     """The steps from the circuit's equations to wanted/input = numerator/denominator in lowest terms.
 
-    The two polynomials are over the system's ring with no name inverted.
+    The two polynomials are over the system's ring with no name inverted. A derivation by nested lines has
+    none: there they are None.
     """
 
     system: NodalSystem
@@ -69,3 +85,4 @@ class Derivation:
     steps: tuple[Step, ...]
     numerator: Polynomial
     denominator: Polynomial
+    nested: Nested | None = None

@@ -39,6 +39,12 @@ def estimate(
     if form.is_zero:
         return Estimates((), (), None, (), (), remark=ZERO_RESPONSE)
     taken = names_taken(derivation, vocabulary)
+    if derivation.nested is not None:
+        # Nothing is in symbols where nothing was multiplied out.
+        if numbers is None:
+            return Estimates((), (), None, (), (), remark=OPEN)
+        bandwidth, rules, remark = _in_numbers(derivation, form, numbers, None, band, taken)
+        return Estimates((), rules, bandwidth, (), (), remark=remark)
     forms = closed_forms(derivation, vocabulary, taken)
     limits = limits_of_gain(derivation, vocabulary) if form.power_of_s == 0 else ()
     shown = [form.readable for form in forms]

@@ -38,6 +38,10 @@ def _parallel(branches: list[Written]) -> Written:
     return f"1/({reciprocals})", QUOTIENT
 
 
+def _struck(written: str) -> str:
+    raise DeriveError(f"{written} is struck out and cannot stand in the ledger")
+
+
 def _elided(elided: Elided) -> str:
     raise DeriveError("elided terms cannot stand in the ledger")
 
@@ -50,4 +54,5 @@ _LEDGER = Dialect(
     root=_root,
     parallel=_parallel,
     elided=_elided,
+    struck=_struck,
 )

@@ -21,6 +21,7 @@ from derive.expressions.tree import (
     Product,
     Quotient,
     Root,
+    Struck,
     Sum,
 )
 
@@ -35,6 +36,7 @@ class Dialect:
 
     `power` takes the base (an atom) and the exponent, `root` the radicand and how tightly it holds,
     `parallel` the branches.
+    `struck` says of what is written that it is struck out.
     """
 
     times: str
@@ -44,6 +46,7 @@ class Dialect:
     root: Callable[[str, int], Written]
     parallel: Callable[[list[Written]], Written]
     elided: Callable[[Elided], str]
+    struck: Callable[[str], str] = "[struck: {}]".format
 
 
 def enclosed(written: Written, needed: int) -> str:
@@ -141,4 +144,5 @@ _WRITERS: dict[type, Callable[..., Written]] = {
     Parallel: _parallel,
     Root: lambda node, d: d.root(*_write(node.radicand, d)),
     Elided: lambda node, d: (d.elided(node), ATOM),
+    Struck: lambda node, d: (d.struck(_write(node.operand, d)[0]), ATOM),
 }

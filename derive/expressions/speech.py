@@ -17,6 +17,7 @@ from derive.expressions.tree import (
     Product,
     Quotient,
     Root,
+    Struck,
     Sum,
 )
 
@@ -126,4 +127,5 @@ _SAYERS: dict[type, Callable[..., _Said]] = {
     Parallel: _parallel,
     Root: _root,
     Elided: _elided,
+    Struck: lambda node: (f"struck out {_say(node.operand)[0]} end struck out", ATOM),
 }

@@ -79,7 +79,14 @@ class Elided:
     pointer: str
 
 
-Expression = Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided
+@dataclass(frozen=True, slots=True)
+class Struck:
+    """A term that an assumption takes out, shown struck, in print only; it has no value."""
+
+    operand: Expression
+
+
+Expression = Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided | Struck
 
 
 @dataclass(frozen=True, slots=True)

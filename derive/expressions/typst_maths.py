@@ -20,6 +20,7 @@ from derive.expressions.tree import (
     Product,
     Quotient,
     Root,
+    Struck,
     Sum,
 )
 
@@ -199,4 +200,5 @@ _SETTERS: dict[type, Callable[..., _Set]] = {
     Parallel: _parallel,
     Root: _root,
     Elided: _elided,
+    Struck: lambda node: (f"cancel({_set(node.operand)[0]})", ATOM),
 }

@@ -20,6 +20,7 @@ from derive.expressions.tree import (
     Product,
     Quotient,
     Root,
+    Struck,
     Sum,
 )
 
@@ -36,7 +37,7 @@ def children_of(expression: Expression) -> tuple[Expression, ...]:
         return (expression.numerator, expression.denominator)
     if isinstance(expression, Power):
         return (expression.base,)
-    if isinstance(expression, Negative):
+    if isinstance(expression, Negative | Struck):
         return (expression.operand,)
     if isinstance(expression, Parallel):
         return expression.branches
@@ -82,7 +83,7 @@ def with_children(expression: Expression, children: tuple[Expression, ...]) -> E
         return Quotient(*children)
     if isinstance(expression, Power):
         return Power(children[0], expression.exponent)
-    if isinstance(expression, Negative | Root):
+    if isinstance(expression, Negative | Root | Struck):
         return type(expression)(children[0])
     return expression
 
@@ -151,7 +152,7 @@ def _looked_up(node: Any, lookup: Any) -> Any:
 
 
 def _elided() -> DeriveError:
-    return DeriveError("an expression with elided terms has no value")
+    return DeriveError("an expression with elided or struck terms has no value")
 
 
 def _square_root(value: Any) -> Any:
@@ -210,7 +211,7 @@ def _residue(node: Expression, lookup: Mapping[str, int], prime: int) -> int:  #
         for branch in node.branches:
             total += pow(_residue(branch, lookup, prime), -1, prime)
         return pow(total, -1, prime)
-    if isinstance(node, Elided):
+    if isinstance(node, Elided | Struck):
         raise _elided()
     raise DeriveError("a square root has no value modulo a prime")
 

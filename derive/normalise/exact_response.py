@@ -52,20 +52,31 @@ def exact_response(circuit: SmallSignal, find: Find) -> ExactResponse | None:
     values = values_of(circuit)
     if values is None:
         return None
-    rows, degree = _rows(write_equations(circuit, find), values)
-    points = range(degree + 1)
-    tops, bottoms = [], []
-    for point in points:
-        matrix, right, column = _at(rows, fmpq(point))
-        bottoms.append(_determinant(matrix))
-        tops.append(_determinant(_replaced(matrix, right, column)))
-    top, bottom = _through(tops), _through(bottoms)
+    top, bottom = _polynomials(write_equations(circuit, find), values)
     if bottom.degree() < 0:
         return None
     if top.degree() < 0:
         return ExactResponse((Fraction(0),), (Fraction(1),))
     shared = top.gcd(bottom)
     return ExactResponse(_fractions(top // shared), _fractions(bottom // shared))
+
+
+def determinants_of(
+    system: NodalSystem, values: dict[str, Fraction]
+) -> tuple[tuple[Fraction, ...], tuple[Fraction, ...]]:
+    """Give the two determinants of Cramer's rule by rising powers of s, nothing cancelled between them."""
+    top, bottom = _polynomials(system, values)
+    return _fractions(top), _fractions(bottom)
+
+
+def _polynomials(system: NodalSystem, values: dict[str, Fraction]) -> tuple[fmpq_poly, fmpq_poly]:
+    rows, degree = _rows(system, values)
+    tops, bottoms = [], []
+    for point in range(degree + 1):
+        matrix, right, column = _at(rows, fmpq(point))
+        bottoms.append(_determinant(matrix))
+        tops.append(_determinant(_replaced(matrix, right, column)))
+    return _through(tops), _through(bottoms)
 
 
 def ratio_at(

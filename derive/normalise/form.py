@@ -14,12 +14,19 @@ class NormalForm:
     """H(s) = gain · s^power_of_s · (sum numerator[k]·s^k) / (sum denominator[k]·s^k).
 
     Both polynomials begin with 1. An identically zero response has gain 0 and both equal to (1,).
+    `definitions` gives, in an order in which each needs earlier ones only, the names in gain and
+    coefficients that are no symbols of the circuit: a form too large to be multiplied out is written with
+    such names. `shared` is the degree of a factor in s that top and bottom may then have in common; where
+    `at_points`, the definitions have whole numbers in the place of s.
     """
 
     gain: Expression
     power_of_s: int
     numerator: tuple[Expression, ...]
     denominator: tuple[Expression, ...]
+    definitions: tuple[tuple[str, Expression], ...] = ()
+    shared: int = 0
+    at_points: bool = False
 
     @property
     def is_zero(self) -> bool:

@@ -32,7 +32,7 @@ def normalise(derivation: Derivation) -> tuple[NormalForm, Derivation]:
         _normalised(scribe, top),
         _normalised(scribe, bottom),
     )
-    _write_steps(scribe, form)
+    write_steps(scribe, form)
     return form, replace(derivation, steps=tuple(scribe.steps))
 
 
@@ -53,7 +53,7 @@ def _normalised(scribe: Scribe, found: dict[int, Polynomial]) -> tuple[Expressio
     )
 
 
-def _write_steps(scribe: Scribe, form: NormalForm) -> None:
+def write_steps(scribe: Scribe, form: NormalForm) -> None:
     """Define K, a_k and b_k, and write the response with them."""
     ratio = len(scribe.steps)
     taken = {*scribe.writer.ring.names, scribe.system.input}

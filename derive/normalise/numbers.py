@@ -29,9 +29,17 @@ def nominal_numbers(derivation: Derivation) -> NominalNumbers | None:
         return None
     if derivation.numerator == 0:
         return NominalNumbers(Fraction(0), (Fraction(0),), (Fraction(1),), (), (), ())
-    squares = _mutual_squares(circuit, known)
+    squares = mutual_squares(circuit, known)
     top = _values(derivation, derivation.numerator, known, squares)
     bottom = _values(derivation, derivation.denominator, known, squares)
+    return numbers_of(top, bottom)
+
+
+def numbers_of(top: tuple[Fraction, ...], bottom: tuple[Fraction, ...]) -> NominalNumbers:
+    """Give the numbers of a ratio of polynomials with exact coefficients, by rising powers of s.
+
+    Given: both from the lowest power that occurs for other values, without leading zeros.
+    """
     gain = top[0] / bottom[0] if bottom and bottom[0] else None
     if gain is not None and not top:
         gain = Fraction(0)
@@ -51,7 +59,7 @@ def values_of(circuit: SmallSignal) -> dict[str, Fraction] | None:
     known = {name: value for name, value in values.items() if value is not None}
     if len(known) < len(values):
         return None
-    squares = _mutual_squares(circuit, known)
+    squares = mutual_squares(circuit, known)
     return known | {name: _square_root(square, known, name, circuit) for name, square in squares.items()}
 
 
@@ -77,7 +85,7 @@ def _certified(found: Sequence[Root]) -> tuple[CertifiedRoot, ...]:
     )
 
 
-def _mutual_squares(circuit: SmallSignal, values: dict[str, Fraction]) -> dict[str, Fraction]:
+def mutual_squares(circuit: SmallSignal, values: dict[str, Fraction]) -> dict[str, Fraction]:
     """Give M² = k²·L_1·L_2 of every coupling."""
     coils = {e.name: values[e.inductance] for e in circuit.elements if isinstance(e, Inductor)}
     squares = {}

@@ -7,6 +7,8 @@ from difflib import get_close_matches
 
 _LONGEST_QUOTE = 48
 
+_SUPERSCRIPTS = str.maketrans("0123456789", "⁰¹²³⁴⁵⁶⁷⁸⁹")
+
 
 def quoted(text: str) -> str:
     """Give the text in quotes, on one line and short enough for a message."""
@@ -29,6 +31,14 @@ def did_you_mean(word: str, known: Iterable[str], otherwise: str) -> str:
     """Give the cure for a name that is not known: a near one, or else the other advice."""
     near = nearest(word, known)
     return f'did you mean "{near}"?' if near else otherwise
+
+
+def rounded_count(count: int) -> str:
+    """Write a count: whole up to a million, beyond as 2.4·10¹⁸."""
+    if count < 1_000_000:
+        return f"{count:,}"
+    digits, _, power = f"{count:.1e}".partition("e+")
+    return f"{digits}·10{str(int(power)).translate(_SUPERSCRIPTS)}"
 
 
 def listed(names: Iterable[str], word: str = "and") -> str:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 from pathlib import PurePath
 
+from derive.reading.assumptions import read_assumptions, read_budget
 from derive.reading.circuit import check_circuit
 from derive.reading.document import Document, load
 from derive.reading.drives import read_drives, read_node_words
@@ -16,16 +17,14 @@ from derive.reading.models import check_models_used, read_models
 from derive.reading.parts import read_parts
 from derive.reading.roles import read_bands
 from derive.reading.supplies import read_supplies, read_temperature
-from derive.reading.title_block import read_title_block
+from derive.reading.title_block import read_form, read_title_block
 from derive.topology.topology import Topology
 
 _TABLES = (
     *("bands", "sheet", "nodes", "supplies", "drives", "parts", "models", "conditions", "merge"),
-    "find",
+    *("find", "assume", "budget"),
 )
 _LATER = {
-    "assume": "take the assumptions out; the exact result is derived",
-    "budget": "take the table out",
     "drawing": "take the table out",
 }
 
@@ -51,6 +50,7 @@ def parse(text: str, file: str) -> Topology:
     drives = read_drives(document)
     parts = read_parts(document, models)
     check_models_used(document, models, parts)
+    finds = read_finds(document, drives)
     topology = Topology(
         file=PurePath(file).name,
         text=text,
@@ -58,11 +58,14 @@ def parse(text: str, file: str) -> Topology:
         node_words=read_node_words(document),
         drives=drives,
         parts=parts,
-        finds=read_finds(document, drives),
+        finds=finds,
         supplies=read_supplies(document),
         bands=read_bands(document),
         temperature=read_temperature(document),
         merges=read_merges(document),
+        assumptions=read_assumptions(document, [find.name for find in finds]),
+        budget=read_budget(document),
+        form=read_form(document),
     )
     check_circuit(topology, document)
     return topology

@@ -7,7 +7,7 @@ from typing import Any
 
 from derive.reading.document import Document
 from derive.reading.fields import known_keys, not_yet, table, text
-from derive.topology.topology import TitleBlock
+from derive.topology.topology import SheetForm, TitleBlock
 
 _KEYS = (
     "title",
@@ -20,6 +20,7 @@ _KEYS = (
     "project",
     "notes",
 )
+_FORMS: tuple[SheetForm, ...] = ("nested", "expanded")
 _LONGEST_NOTES = 4000
 _TITLE_CURE = 'write [sheet] with title = "..." at the top'
 
@@ -34,13 +35,33 @@ def read_title_block(document: Document) -> TitleBlock:
     sheet = table(document, document.data["sheet"], "sheet", "sheet", cure=_TITLE_CURE)
     if "hand" in sheet:
         raise not_yet(document, "sheet: the key hand is", "sheet", "hand", cure="take the line out")
-    known_keys(document, sheet, _KEYS, "sheet", "sheet")
+    known_keys(document, sheet, (*_KEYS, "form"), "sheet", "sheet")
     if "title" not in sheet:
         raise document.error("sheet: the title is missing", "sheet", cure='write title = "..."')
-    entries = {key: _entry(document, raw, key) for key, raw in sheet.items()}
+    entries = {key: _entry(document, raw, key) for key, raw in sheet.items() if key != "form"}
     if not entries["title"].strip():
         raise document.error("sheet: the title is empty", "sheet", "title", cure="say what the stage is")
     return TitleBlock(**entries)
+
+
+def read_form(document: Document) -> SheetForm:
+    """Give the form in which results are to be derived; "" where the user left that open.
+
+    Raises: InputError for a form that there is not.
+    """
+    sheet = document.data.get("sheet", {})
+    if "form" not in sheet:
+        return ""
+    written = text(document, sheet["form"], "sheet: form", "sheet", "form")
+    for form in _FORMS:
+        if written == form:
+            return form
+    raise document.error(
+        f'sheet: there is no form "{written}"',
+        "sheet",
+        "form",
+        cure='write form = "nested" or form = "expanded", or leave it out',
+    )
 
 
 def _entry(document: Document, raw: Any, key: str) -> str:

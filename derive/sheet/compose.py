@@ -9,6 +9,7 @@ from typing import Any
 
 from derive.check.verdict import Outcome
 from derive.sheet import sections as folder
+from derive.sheet.assumed import failed_assumptions
 from derive.sheet.document import Field, Section, Sheet
 from derive.sheet.ledger import ledger_text
 from derive.sheet.view import views
@@ -85,6 +86,7 @@ def _failures(outcome: Outcome) -> tuple[str, ...]:
         if result.broken_steps:
             numbers = ", ".join(str(number) for number, _ in result.broken_steps)
             names.append(f"{find}: proof of step {numbers}")
+        names += [f"{find}: {words}" for words in failed_assumptions(result)]
     return tuple(names)
 
 

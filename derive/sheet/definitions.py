@@ -29,6 +29,8 @@ def definitions_of(solution: Solution) -> tuple[Definition, ...]:
     sources += [miller.definitions for miller in solution.miller]
     if solution.estimates:
         sources.append(solution.estimates.definitions)
+    if solution.register:
+        sources.append(solution.register.definitions)
     return tuple(dict.fromkeys(entry for source in sources for entry in source))
 
 

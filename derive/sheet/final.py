@@ -26,6 +26,7 @@ from derive.readable.form import ReadableForm
 from derive.readable.measure import leaves, measure
 from derive.sheet.document import Line, Text
 from derive.sheet.figures import root_in_hertz
+from derive.sheet.nested import is_nested, short_equation
 from derive.sheet.view import View
 
 # Up to so many names and numbers a final equation is shown whole, without names for its coefficients.
@@ -86,6 +87,8 @@ def final(view: View) -> Final:
     A response with one zero at the origin and one pole is written by its corner, K/(1 + ω_L/s); a zero
     by itself by its corner too where it lies in the right half-plane: 1 − s/ω_z.
     """
+    if is_nested(view):
+        return Final(short_equation(view))
     read, power = reading(view), view.result.solution.form.power_of_s
     corner = _with_corner(view, read, power)
     if corner is not None:
@@ -98,6 +101,11 @@ def final(view: View) -> Final:
         named = (*(() if zero is None else (zero[1],)), *(() if pair is None else pair[1]))
         return Final(Equation(Name(view.name), _response(read.gain, power, above, below)), named)
     return _with_names(view, read, power)
+
+
+def explicit(read: ReadableForm, power: int) -> Expression:
+    """Write a response with its gain and coefficients written out, in one expression."""
+    return _response(read.gain, power, _polynomial(read.numerator), _polynomial(read.denominator))
 
 
 def _is_short(read: ReadableForm) -> bool:

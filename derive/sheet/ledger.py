@@ -18,7 +18,9 @@ from derive.expressions.tree import Equation, Expression
 from derive.expressions.walk import substitute
 from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.units import ledger_unit
+from derive.sheet.approximations import approximations, shown_in
 from derive.sheet.definitions import definitions_of, used_in
+from derive.sheet.simplified import simplified
 from derive.sheet.wording import Wording, plain_line
 from derive.topology.topology import Find
 from derive.version import VERSION
@@ -120,7 +122,8 @@ def _result(result: Result) -> dict[str, Any]:
         "time_constants": _time_constants(solution),
         "bandwidth": _bandwidth(solution),
         "estimates": _estimates(solution),
-        "approximations": [],
+        "approximations": approximations(solution.register),
+        **({"simplified": simplified(solution.simplified)} if solution.simplified else {}),
         "checks": [_check(verdict) for verdict in result.verdicts],
     }
 
@@ -139,7 +142,7 @@ def _per(find: Find) -> str | dict[str, str] | None:
 
 
 def _definitions(solution: Solution) -> list[list[str]]:
-    """Define what is not a part's own value: mutual inductances, merged parts, and words such as β."""
+    """Define what is not a part's own value: mutual inductances, merged parts, a nested form's, words such as β."""
     circuit = solution.judged
     inductance = {e.name: getattr(e, "inductance", "") for e in circuit.elements}
     mutual = [
@@ -151,17 +154,20 @@ def _definitions(solution: Solution) -> list[list[str]]:
         if isinstance(element, Coupling)
     ]
     known: dict[str, Expression] = {}
-    for merged in solution.band.definitions if solution.band else ():
-        known[merged.name] = substitute(merged.definition, known)
+    for entry in solution.band.definitions if solution.band else ():
+        known[entry.name] = substitute(entry.definition, known)
     words = used_in(_readables(solution), definitions_of(solution))
     defined = [[name, to_ledger(value)] for name, value in words]
-    return [*mutual, *([name, to_ledger(expanded)] for name, expanded in known.items()), *defined]
+    merged = [[name, to_ledger(expanded)] for name, expanded in known.items()]
+    nested = [[name, to_ledger(meaning)] for name, meaning in solution.form.definitions]
+    return [*mutual, *merged, *nested, *defined]
 
 
 def _readables(solution: Solution) -> list[Expression]:
     """Give every expression that stands in the ledger for reading."""
     read, constants = solution.readable, solution.time_constants
     found = [read.gain, *read.numerator, *read.denominator] if read else []
+    found += shown_in(solution.register)
     rows = (*constants.open_circuit, *constants.short_circuit) if constants else ()
     return found + [row.readable for row in rows if row.readable is not None]
 

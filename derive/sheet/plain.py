@@ -9,6 +9,7 @@ from derive.check.verdict import Outcome, Verdict
 from derive.expressions.tree import Equation
 from derive.expressions.unicode_text import to_unicode
 from derive.normalise.form import NominalNumbers
+from derive.sheet.assumed import failed_assumptions
 from derive.sheet.compose import section_modules
 from derive.sheet.document import (
     Block,
@@ -31,7 +32,7 @@ from derive.sheet.view import View, far_value, gain_dimension, views
 # What a terminal shows of a result, by the files of the sections; the rest with the steps.
 FIRST = ("glance",)
 CIRCUIT = ("operating_point", "parameters", "bands")
-RESULT = ("time_constants", "poles_and_zeros", "miller", "limits")
+RESULT = ("time_constants", "poles_and_zeros", "miller", "limits", "assumptions", "simplified")
 STEPS = ("equations", "elimination", "normal_form", "values", *RESULT)
 MARKS = {True: "✓", False: "✗", None: "–"}
 
@@ -197,6 +198,7 @@ def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
             gain = "0"
         failed = [verdict.name for verdict in result.verdicts if verdict.passed is False]
         failed += [f"step {number}" for number, _ in result.broken_steps]
+        failed += failed_assumptions(result)
         good = sum(verdict.passed is True for verdict in result.verdicts)
         count = f"{good} of {len(result.verdicts)}"
         rows.append((view.title, gain, f"FAILED: {', '.join(failed)}" if failed else f"{count} passed"))

@@ -117,9 +117,11 @@ def views(outcome: Outcome) -> tuple[View, ...]:
 
 def same_poles(view: View) -> View | None:
     """Give the earlier result of the band that has the same denominator; None where this one is new."""
-    own = view.result.solution.form.denominator
+    own = view.result.solution.form
     for earlier in views(view.outcome)[: view.place]:
-        if earlier.band == view.band and earlier.result.solution.form.denominator == own:
+        form = earlier.result.solution.form
+        same = (form.denominator, form.definitions) == (own.denominator, own.definitions)
+        if earlier.band == view.band and same:
             return earlier
     return None
 

@@ -13,10 +13,14 @@ from derive.eliminate.rules import (
     current_law,
     form_ratio,
     multiply_out,
+    name_entry,
+    name_ratio,
     solve_for,
     substitute,
+    take_off,
     wanted,
     weigh,
+    write_short,
 )
 from derive.expressions.text import to_text
 from derive.expressions.tree import ONE, Expression, Name, Negative
@@ -225,6 +229,27 @@ def _reduce(wording: Wording, step: Step) -> Line:
     return _used(wording, step), Text(" with the factors cancelled that top and bottom share.")
 
 
+def _name_entry(wording: Wording, step: Step) -> Line:
+    return (Text("A short name for an entry of the equations."),)
+
+
+def _name_ratio(wording: Wording, step: Step) -> Line:
+    return (Text("The multiple that takes an unknown out."), *_not_zero(step.nonzero))
+
+
+def _write_short(wording: Wording, step: Step) -> Line:
+    return _used(wording, step), Text(" collected by its unknowns, with these names.")
+
+
+def _take_off(wording: Wording, step: Step) -> Line:
+    head: Line = (_used(wording, step), Text(" less "))
+    if step.factor not in (None, ONE):
+        head = (*head, Maths(step.factor or ONE), Text(" times "))
+    falls = (Text(": "), Maths(Name(step.subject or "")), Text(" falls out"))
+    turned = step.certificate is not None and step.certificate.divisor == Negative(ONE)
+    return (*head, _used(wording, step, 1), *falls, Text(", all signs turned." if turned else "."))
+
+
 def _gain(wording: Wording, step: Step) -> Line:
     return (Text("The gain: the lowest coefficient of the numerator over that of the denominator."),)
 
@@ -251,6 +276,10 @@ SENTENCES: Mapping[str, Sentence] = {
     cancel.NAME: _cancel,
     form_ratio.NAME: _form_ratio,
     form_ratio.REDUCE: _reduce,
+    name_entry.NAME: _name_entry,
+    name_ratio.NAME: _name_ratio,
+    write_short.NAME: _write_short,
+    take_off.NAME: _take_off,
     normalise.GAIN: _gain,
     normalise.COEFFICIENT: _coefficient,
     normalise.NORMAL: _normal,

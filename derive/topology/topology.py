@@ -6,12 +6,15 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Literal
 
+from derive.expressions.tree import Expression
 from derive.quantities.symbol import Value
 
 GROUND = "gnd"
 # What a capacitor or inductor is for; it says in which bands it acts. "" is kept in every band.
 Role = Literal["", "coupling", "bypass", "parasitic"]
 BandName = Literal["low", "mid", "high", "full"]
+# How results are to be derived: "" leaves it to the count of terms.
+SheetForm = Literal["", "nested", "expanded"]
 # 27 °C, common practice for small-signal parameters.
 ROOM_TEMPERATURE = Fraction("300.15")
 
@@ -105,6 +108,44 @@ class Find:
     per: tuple[tuple[str, Fraction], ...] = ()
 
 
+AssumptionForm = Literal["to_inf", "to_zero", "much_greater", "much_less", "equal"]
+
+
+@dataclass(frozen=True, slots=True)
+class Assumption:
+    """An engineering approximation: left -> inf, left -> 0, left >> right, left << right or left = right.
+
+    `that` is the statement as it was written; `right` is None for a limit. `finds` and `bands` name the
+    results that it is made for; empty for all. `by` says who made it: the user, or the tool, whose
+    assumptions have no place.
+    """
+
+    that: str
+    form: AssumptionForm
+    left: Expression
+    right: Expression | None = None
+    because: str = ""
+    place: Place | None = None
+    by: Literal["user", "tool"] = "user"
+    finds: tuple[str, ...] = ()
+    bands: tuple[BandName, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Budget:
+    """What assumptions may cost: errors as fractions, decibels and degrees, over a range of frequencies.
+
+    `range_hz` is None where the user stated none. `simplify` asks for further assumptions by the tool.
+    """
+
+    gain: Fraction = Fraction(2, 100)
+    magnitude_db: Fraction = Fraction(1, 2)
+    phase_deg: Fraction = Fraction(5)
+    range_hz: tuple[Fraction, Fraction] | None = None
+    simplify: bool = False
+    place: Place | None = None
+
+
 @dataclass(frozen=True, slots=True)
 class TitleBlock:
     """The [sheet] table; "" where nothing was written."""
@@ -138,3 +179,6 @@ class Topology:
     bands: tuple[BandName, ...] = ()
     temperature: Fraction = ROOM_TEMPERATURE
     merges: tuple[Merge, ...] = ()
+    assumptions: tuple[Assumption, ...] = ()
+    budget: Budget = Budget()
+    form: SheetForm = ""

@@ -30,6 +30,7 @@ STATIONS = (
     "bias",
     "reactances",
     "estimates",
+    "approximate",
     "check",
     "sheet",
     "render",

@@ -121,8 +121,6 @@ TABLES = (
 )
 
 LATER = (
-    row("assume", GOOD + '[[assume]] #<\nthat = "R_1 -> 0"\n', "assume", "not yet supported"),
-    row("budget", GOOD + "[budget] #<\n", "budget", "not yet supported"),
     row("drawing", GOOD + "[drawing] #<\n", "drawing", "not yet supported"),
     row("hand", SHEET + 'hand = "h.toml" #<\n', "hand", "not yet supported"),
     row("return ratio", finds('[find.T]\nreturn_ratio = "R_1" #<\n'), "return_ratio", "not yet"),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import malformed_assumptions
 import malformed_bias
 import malformed_devices
 import malformed_topologies
@@ -10,9 +11,15 @@ import pytest
 from derive.bias.solve import operating_point
 from derive.devices.linearise import linearise
 from derive.errors import InputError
+from derive.pipeline import derive
 from derive.reading.read import parse
 
-ROWS = (*malformed_topologies.ROWS, *malformed_devices.READ, *malformed_bias.CONTRADICTED)
+ROWS = (
+    *malformed_topologies.ROWS,
+    *malformed_devices.READ,
+    *malformed_bias.CONTRADICTED,
+    *malformed_assumptions.READ,
+)
 
 
 def judge(error, row):
@@ -38,6 +45,14 @@ def test_data_that_disagree_are_refused_once_they_are_worked_out(row):
     topology = parse(row.text, "bad.toml")
     with pytest.raises(InputError) as caught:
         linearise(topology)
+    judge(caught.value, row)
+
+
+@pytest.mark.parametrize("row", malformed_assumptions.WORKED, ids=lambda row: row.name.replace(" ", "-"))
+def test_assumptions_that_cannot_be_made_are_refused_once_the_circuit_is_worked(row):
+    topology = parse(row.text, "bad.toml")
+    with pytest.raises(InputError) as caught:
+        derive(topology, other_engine=False)
     judge(caught.value, row)
 
 
@@ -73,6 +88,7 @@ def test_the_sound_transistor_behind_the_table_is_accepted():
 
 
 def test_table_has_at_least_250_rows_of_different_names():
-    names = [row.name for row in (*ROWS, *malformed_devices.WORKED, *malformed_bias.BIASED)]
+    worked = (*malformed_devices.WORKED, *malformed_bias.BIASED, *malformed_assumptions.WORKED)
+    names = [row.name for row in (*ROWS, *worked)]
     assert len(names) >= 280
     assert len(set(names)) == len(names)

@@ -34,7 +34,7 @@ ROADS = find_roads()
 
 
 # These judge what is said of a result beyond the result itself; each is made to fail in its own tests.
-WORDS = ("readable", "time_constants", "miller", "estimates")
+WORDS = ("readable", "time_constants", "miller", "estimates", "assumptions")
 AMPLIFIER = """
 [sheet]
 title = "Common-emitter stage"
@@ -50,6 +50,8 @@ R_L = { resistor = "4k7", between = ["out", "gnd"] }
 [find.A_v]
 voltage = "out"
 per = "V_s"
+[[assume]]
+that = "g_m*R_L >> 1"
 """
 
 

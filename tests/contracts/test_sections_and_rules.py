@@ -11,7 +11,7 @@ from derive.expressions.tree import Elided
 from derive.expressions.walk import children_of
 from derive.normalise import normalise
 from derive.pipeline import derive
-from derive.reading.read import read
+from derive.reading.read import parse
 from derive.sheet import sections
 from derive.sheet.compose import compose, section_modules
 from derive.sheet.document import (
@@ -30,12 +30,14 @@ from derive.sheet.wording import SENTENCES, Wording, plain_line
 
 CIRCUITS = Path(__file__).parents[1] / "benchmarks" / "circuits"
 CASES = Path(__file__).parents[2] / "cases"
+ASSUMED = '[[assume]]\nthat = "beta >> 1"\n[budget]\nsimplify = true\n'
 
 
 @pytest.fixture(scope="module")
 def outcome():
     # A stage with supplies, a device, roles and merged parts has something for every section.
-    return derive(read(CASES / "echo_preamp" / "topology.toml"), other_engine=False).outcome
+    text = (CASES / "echo_preamp" / "topology.toml").read_text(encoding="utf-8")
+    return derive(parse(text + ASSUMED, "topology.toml"), other_engine=False).outcome
 
 
 def names_in(package):

@@ -60,6 +60,23 @@ ROOT_TOLERANCE = 1e-9
 NUMBER_TOLERANCE = 1e-6
 
 
+APPROXIMATION = [
+    *(
+        "that",
+        "because",
+        "by",
+        "gain",
+        "power_of_s",
+        "numerator",
+        "denominator",
+        "ratio",
+        "errors",
+        "status",
+    ),
+]
+ERRORS = ["gain", "magnitude_db", "phase_deg", "range_hz", "poles"]
+
+
 def check_ledger(text: str, *, passed: bool = True) -> dict[str, Any]:
     """Assert that a ledger's text keeps the contract; give its data.
 
@@ -122,7 +139,8 @@ def check_result(result: dict[str, Any], symbols: dict[str, Any], *, passed: boo
     check_bandwidth(result, symbols)
     for estimate in result["estimates"]:
         check_estimate(estimate)
-    assert result["approximations"] == []
+    for approximation in result["approximations"]:
+        check_approximation(approximation, result, symbols)
     for number, step in enumerate(result["steps"], start=1):
         check_step(step, number, passed=passed)
     assert result["checks"]
@@ -252,6 +270,29 @@ def check_estimate(estimate: dict[str, Any]) -> None:
     assert all(math.isfinite(estimate[key]) for key in ESTIMATE[1:])
     error = (estimate["value"] - estimate["exact"]) / estimate["exact"]
     assert math.isclose(estimate["error"], error, rel_tol=NUMBER_TOLERANCE, abs_tol=1e-9)
+
+
+def check_approximation(
+    approximation: dict[str, Any], result: dict[str, Any], symbols: dict[str, Any]
+) -> None:
+    """Assert what is promised of a result under an assumption."""
+    assert list(approximation)[: len(APPROXIMATION)] == APPROXIMATION
+    assert approximation["by"] in ("user", "tool")
+    assert approximation["status"] in ("holds", "fails at a corner", "fails", "not checked")
+    known = {*symbols, *(name for name, _ in result["definitions"])}
+    check_expression(approximation["gain"]["exact"], known)
+    for polynomial in (approximation["numerator"], approximation["denominator"]):
+        assert polynomial[0] == "1"
+        for entry in polynomial:
+            check_expression(entry, known)
+    errors = approximation["errors"]
+    if errors is None:
+        assert approximation["status"] in ("fails", "not checked")
+        return
+    assert list(errors)[: len(ERRORS)] == ERRORS
+    low, high = errors["range_hz"]
+    assert 0 < low <= high
+    assert all(isinstance(error, float | int | None) for error in errors["poles"])
 
 
 def check_roots(result: dict[str, Any], symbols: dict[str, Any]) -> None:

@@ -36,6 +36,10 @@ class DimensionError(ValueError):
 def judge(solution: Solution) -> Verdict:
     """Judge whether every sum adds like to like, and gain and coefficients are what they must be."""
     system, form = solution.derivation.system, solution.form
+    if form.at_points:
+        return Verdict(
+            NAME, METHOD, None, "not tried: the definitions have numbers in the place of s", LIMIT
+        )
     try:
         names = _names(solution)
     except DimensionError as error:
@@ -76,6 +80,14 @@ def _names(solution: Solution) -> dict[str, Dimension]:
         if found is None or found != wanted:
             raise DimensionError(f"{merged.name} is not of the kind of its parts")
         names[merged.name] = found
+    for name, meaning in solution.form.definitions:
+        try:
+            of_meaning = dimension_of(meaning, names)
+        except DimensionError as error:
+            raise DimensionError(f"{name}: {error}") from None
+        if of_meaning is None:
+            raise DimensionError(f"{name} is defined as nothing")
+        names[name] = of_meaning
     return names
 
 

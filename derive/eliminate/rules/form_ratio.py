@@ -6,7 +6,7 @@ from derive.algebra.ring import Polynomial
 from derive.eliminate.rows import Row
 from derive.eliminate.scribe import Scribe, number
 from derive.expressions.polynomials import divide, multiply
-from derive.expressions.tree import ONE, Equation, Name
+from derive.expressions.tree import ONE, Equation, Expression, Name
 
 NAME = "form the ratio"
 REDUCE = "reduce the ratio"
@@ -19,6 +19,14 @@ def apply(scribe: Scribe, source: int, row: Row) -> int:
     divisor = multiply([scribe.polynomial(pivot), Name(system.input)])
     equation = Equation(Name(system.find.name), scribe.ratio(row.right, pivot))
     nonzero = None if pivot.is_constant() else scribe.polynomial(pivot)
+    return scribe.follow(NAME, equation, [(source, ONE)], divisor, nonzero=nonzero)
+
+
+def write(
+    scribe: Scribe, source: int, value: Expression, divisor: Expression, nonzero: Expression | None
+) -> int:
+    """Give "what is sought = value" from an equation that was divided by the divisor."""
+    equation = Equation(Name(scribe.system.find.name), value)
     return scribe.follow(NAME, equation, [(source, ONE)], divisor, nonzero=nonzero)
 
 

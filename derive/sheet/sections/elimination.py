@@ -6,6 +6,7 @@ from derive.eliminate.derivation import Plan
 from derive.expressions.tree import Name
 from derive.normalise import normalise
 from derive.sheet.document import Block, Column, Inline, Line, Maths, Paragraph, Section, Table, Text
+from derive.sheet.nested import is_nested, why_nested
 from derive.sheet.sections.equations import INTRODUCTORY, numbered
 from derive.sheet.view import View
 
@@ -22,7 +23,7 @@ def compose(view: View) -> tuple[Section, ...]:
     """Give the section: the plan, then every step of it."""
     derivation = view.result.solution.derivation
     others = INTRODUCTORY | NORMALISING
-    blocks: list[Block] = []
+    blocks: list[Block] = [Paragraph(line) for line in (why_nested(view),) if line]
     if len(derivation.plan.lines) > 1:
         blocks.append(_plan(view, derivation.plan))
     shown = [step for step in derivation.steps if step.rule not in others]
@@ -41,7 +42,8 @@ def _plan(view: View, plan: Plan) -> Table:
         Column((Text("Unknown"),)),
         Column((Text("Solved from"),)),
         Column((Text("Put into"),)),
-        Column((Text("Estimated terms"),), True),
+        # In nested lines nothing grows that an estimate could be made of.
+        *(() if is_nested(view) else (Column((Text("Estimated terms"),), True),)),
     )
     numbers = {
         step.row: step.number for step in view.result.solution.derivation.steps if step.row is not None
@@ -57,7 +59,7 @@ def _plan(view: View, plan: Plan) -> Table:
                 (Maths(Name(line.unknown)),),
                 (view.wording.reference(numbers[line.equation]),),
                 tuple(into) or (Text("–"),),
-                (Text(f"{line.terms:,}"),),
+                *(() if is_nested(view) else ((Text(f"{line.terms:,}"),),)),
             )
         )
     return Table("Plan: order of elimination, the wanted quantity last", columns, tuple(rows))

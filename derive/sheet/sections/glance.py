@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from fractions import Fraction
 
 from derive.check.verdict import Outcome, Result
@@ -14,6 +14,7 @@ from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.dimension import RATIO
 from derive.readable.form import Definition, ReadableForm
 from derive.readable.measure import leaves
+from derive.sheet.assumed import assumed
 from derive.sheet.bandwidth import pass_band
 from derive.sheet.definitions import known_definitions, used_in, with_words
 from derive.sheet.document import (
@@ -29,6 +30,7 @@ from derive.sheet.document import (
 )
 from derive.sheet.figures import decibels, figure, root_in_hertz, signed_percent
 from derive.sheet.final import CORNER, PASS_BAND, ZERO_CORNER, Final, Named, final, reading
+from derive.sheet.nested import where_written, why_nested
 from derive.sheet.resistances import shares_of
 from derive.sheet.view import View, coefficient_value, far_value, gain_dimension, same_poles, views
 from derive.sheet.wording import joined
@@ -71,16 +73,20 @@ def _blocks(view: View, told: Told) -> list[Block]:
     form = view.result.solution.form
     if form.is_zero:
         return [Paragraph(_zero(view)), Paragraph(_checked(view.result))]
-    before = told.whole.setdefault((view.name, form.power_of_s, reading(view)), view)
+    # The names of a nested form mean what its definitions say.
+    read = replace(reading(view), definitions=form.definitions) if form.definitions else reading(view)
+    before = told.whole.setdefault((view.name, form.power_of_s, read), view)
     if before is not view:
         as_before = (Maths(Name(view.name)), Text(f" is the same as in the {before.band} band."))
         return [Paragraph((*_asked(view), Text(" "), *as_before)), Paragraph(_checked(view.result))]
     found = final(view)
     blocks: list[Block] = [Display(found.equation, _asked(view), boxed=True)]
     blocks += _named(view, found, told)
+    blocks += [Paragraph(line) for line in (why_nested(view), where_written(view)) if line]
+    blocks += assumed(view)
     lines = [_words(view, found, told), _numbers(view, found), pass_band(view), _rules(view)]
     blocks += [Paragraph(joined(line)) for line in (*lines, _checked(view.result)) if line]
-    if not found.named:
+    if not found.named and not form.definitions:
         told.values.setdefault(found.equation.right, (view.name, view))
     return blocks
 

@@ -5,10 +5,12 @@ from fractions import Fraction
 
 import pytest
 import sympy
-from road import derivation_of, solution_of
+from road import derivation_of, solution_of, system_of
 
 from derive.eliminate import rows
-from derive.eliminate.derivation import Certificate
+from derive.eliminate.derivation import Certificate, Nested
+from derive.eliminate.nested import eliminate_nested
+from derive.eliminate.plan import plan
 from derive.expressions.tree import ONE, Equation, Name, Number, Sum
 from derive.expressions.walk import evaluate, names_of
 from derive.sheet.wording import SENTENCES
@@ -214,6 +216,8 @@ def test_every_rule_occurs_in_some_witness(monkeypatch):
     }
     monkeypatch.setattr(rows, "FACTOR_LIMIT", 0)
     seen |= {step.rule for step in derivation_of(BUFFER).steps}
+    system = system_of(LADDER)
+    seen |= {step.rule for step in eliminate_nested(system, plan(system), Nested(None)).steps}
     assert sorted(set(SENTENCES) - seen) == []
 
 

@@ -1,0 +1,1 @@
+"""Assumptions: what each one changes, and what it costs."""
