@@ -27,6 +27,7 @@ from derive.normalise.normalise import normalise
 from derive.normalise.numbers import nominal_numbers
 from derive.reactances.find_miller import find_miller
 from derive.reactances.find_time_constants import find_time_constants
+from derive.readable.factored import factored
 from derive.readable.far_gain import far_gain
 from derive.readable.readable import read_form
 from derive.readable.vocabulary import vocabulary_of
@@ -67,14 +68,15 @@ def derive(
     engine_seconds: float = ENGINE_SECONDS,
     only: str | None = None,
     band: str | None = None,
+    explain: bool = True,
     progress: Callable[[str], None] = lambda stage: None,
     meanwhile: Callable[[Outcome], None] = lambda outcome: None,
 ) -> Results:
     """Derive and check what a topology asks for.
 
     Given: whether the other engine is asked as well, and for how long; `only` names one quantity, `band`
-    one band; `progress` is told the stages; `meanwhile` is given the outcome without its verdicts, while
-    the other engine works.
+    one band; whether the results are to be put in the words of the trade as well; `progress` is told the
+    stages; `meanwhile` is given the outcome without its verdicts, while the other engine works.
 
     Raises: InputError, TooLargeError or SingularError where the circuit cannot be worked.
     """
@@ -88,7 +90,7 @@ def derive(
         for find in topology.finds:
             if only in (None, find.name):
                 progress(f"deriving {find.name}, {band_circuit.band} band")
-                solutions.append(solve(band_circuit, find))
+                solutions.append(solve(band_circuit, find, explain=explain))
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
     report = report_bands(circuit, bands)
@@ -123,28 +125,36 @@ def _result(solution: Solution, verdicts: tuple[Verdict, ...]) -> Result:
         return Result(solution, verdicts)
 
 
-def solve(band: BandCircuit, find: Find) -> Solution:
-    """Go from the circuit of a band to one quantity in normal form, with every step and in every form.
+def solve(band: BandCircuit, find: Find, *, explain: bool = True) -> Solution:
+    """Go from the circuit of a band to one quantity in normal form, with every step.
 
-    Given: the find as the user wrote it.
+    Given: the find as the user wrote it; whether the result is to be put in the words of the trade as well.
     """
     system = write_equations(band.circuit, find_in(band, find))
     derivation = eliminate(system, plan(system))
     form, derivation = normalise(derivation)
-    numbers = nominal_numbers(derivation)
+    bare = Solution(derivation, form, nominal_numbers(derivation), band)
+    return explained(bare, band) if explain else bare
+
+
+def explained(solution: Solution, band: BandCircuit) -> Solution:
+    """Put a result in the words of the trade: readable forms, time constants, Miller's view, estimates."""
+    derivation, form, numbers = solution.derivation, solution.form, solution.numbers
     vocabulary = vocabulary_of(band.circuit, _names_taken(derivation))
-    readable = read_form(form, derivation.system.ring.plain(), vocabulary)
-    readable = replace(readable, far_gain=far_gain(derivation, vocabulary))
+    above, below = factored(derivation, vocabulary)
+    readable = replace(
+        read_form(form, derivation.system.ring.plain(), vocabulary),
+        far_gain=far_gain(derivation, vocabulary),
+        numerator_factors=above,
+        denominator_factors=below,
+    )
     constants = find_time_constants(derivation, form, vocabulary)
-    return Solution(
-        derivation,
-        form,
-        numbers,
-        band,
-        readable,
-        constants,
-        find_miller(derivation, form, numbers, vocabulary),
-        estimate(derivation, form, numbers, constants, vocabulary, band.band),
+    return replace(
+        solution,
+        readable=readable,
+        time_constants=constants,
+        miller=find_miller(derivation, form, numbers, vocabulary),
+        estimates=estimate(derivation, form, numbers, constants, vocabulary, band.band),
     )
 
 

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from derive.eliminate.derivation import Derivation
 from derive.estimates.bandwidth import find_bandwidth
 from derive.estimates.closed_forms import closed_forms, names_taken
-from derive.estimates.estimates import Bandwidth, Estimate, Estimates
+from derive.estimates.estimates import Estimates
 from derive.estimates.limits import limits_of_gain
 from derive.estimates.response import response_of
 from derive.estimates.rules import Given, rules_of_thumb
@@ -33,8 +35,8 @@ def estimate(
     """Give the closed forms, estimates, bandwidth, sensitivities and limits of one response.
 
     What cannot be given is left out, and `remark` says why there is no bandwidth. The sum of time
-    constants is taken from `time_constants` where it is given, else from the response's coefficients,
-    which is the same unless a mode is hidden.
+    constants is taken from `time_constants` where they are given and all show in the response, else from the
+    response's coefficients.
     """
     if form.is_zero:
         return Estimates((), (), None, (), (), remark=ZERO_RESPONSE)
@@ -46,9 +48,14 @@ def estimate(
     definitions = definitions_used(shown, vocabulary)
     if numbers is None:
         return Estimates(forms, (), None, (), limits, definitions, OPEN)
-    bandwidth, rules, remark = _in_numbers(derivation, form, numbers, time_constants, band, taken)
-    sensitivities = root_sensitivities(derivation, numbers)
-    return Estimates(forms, rules, bandwidth, sensitivities, limits, definitions, remark)
+    found = _in_numbers(derivation, form, numbers, time_constants, band, taken)
+    return replace(
+        found,
+        closed_forms=forms,
+        sensitivities=root_sensitivities(derivation, numbers),
+        limits=limits,
+        definitions=definitions,
+    )
 
 
 def _in_numbers(
@@ -58,10 +65,11 @@ def _in_numbers(
     time_constants: TimeConstants | None,
     band: BandName,
     taken: set[str],
-) -> tuple[Bandwidth | None, tuple[Estimate, ...], str]:
+) -> Estimates:
+    """Give the bandwidth and the rules with what is to be said of both."""
     response = response_of(numbers, form.power_of_s)
     if response is None:
-        return None, (), UNDEFINED
+        return Estimates((), (), None, (), (), remark=UNDEFINED)
     impedance = derivation.system.find.quantity == "impedance"
     bandwidth, remark = find_bandwidth(response, numbers.poles, band, impedance=impedance)
     names = coefficient_names(derivation, form)
@@ -77,8 +85,10 @@ def _in_numbers(
         time_constants,
         lambda index: names.get(index, f"b_{index}"),
         pi,
+        band == "low",
     )
-    return bandwidth, rules_of_thumb(given), remark
+    rules, no_rules = rules_of_thumb(given)
+    return Estimates((), rules, bandwidth, (), (), remark=remark, rules_remark=no_rules)
 
 
 def coefficient_names(derivation: Derivation, form: NormalForm) -> dict[int, str]:

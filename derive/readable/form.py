@@ -15,7 +15,8 @@ class ReadableForm:
 
     Their trees may hold `Parallel`. `definitions` are the names that they use beyond the circuit's
     symbols (β = g_m·r_π), in an order in which each needs symbols and earlier ones only. `far_gain` is
-    the response far above all corners where it is zero at zero frequency, None elsewhere.
+    the response far above all corners where it is zero at zero frequency, None elsewhere. The factors are
+    those of numerator and denominator in s, each by its coefficients, () where one does not come apart.
     """
 
     gain: Expression
@@ -23,3 +24,5 @@ class ReadableForm:
     denominator: tuple[Expression, ...]
     definitions: tuple[Definition, ...] = ()
     far_gain: Expression | None = None
+    numerator_factors: tuple[tuple[Expression, ...], ...] = ()
+    denominator_factors: tuple[tuple[Expression, ...], ...] = ()
