@@ -29,7 +29,7 @@ from derive.reactances.find_miller import find_miller
 from derive.reactances.find_time_constants import find_time_constants
 from derive.readable.factored import factored
 from derive.readable.far_gain import far_gain
-from derive.readable.readable import read_form
+from derive.readable.readable import definitions_used, read_form
 from derive.readable.vocabulary import vocabulary_of
 from derive.sheet.ledger import ledger
 from derive.sheet.plain import plain_outcome
@@ -148,6 +148,7 @@ def explained(solution: Solution, band: BandCircuit) -> Solution:
         numerator_factors=above,
         denominator_factors=below,
     )
+    readable = replace(readable, definitions=definitions_used(readable.expressions, vocabulary))
     constants = find_time_constants(derivation, form, vocabulary)
     return replace(
         solution,

@@ -2,23 +2,26 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 
 from derive.eliminate.derivation import Derivation
 from derive.estimates.bandwidth import find_bandwidth
 from derive.estimates.closed_forms import closed_forms, names_taken
-from derive.estimates.estimates import Estimates
+from derive.estimates.estimates import ClosedForm, Estimates
 from derive.estimates.limits import limits_of_gain
 from derive.estimates.response import response_of
 from derive.estimates.rules import Given, rules_of_thumb
 from derive.estimates.sensitivities import root_sensitivities
-from derive.normalise.form import NominalNumbers, NormalForm
+from derive.normalise.form import CertifiedRoot, NominalNumbers, NormalForm
 from derive.normalise.normalise import COEFFICIENT
 from derive.reactances.time_constants import TimeConstants
 from derive.readable.readable import definitions_used
 from derive.readable.vocabulary import Vocabulary
 from derive.topology.topology import BandName
 
+# Closed forms and certified roots agree far better where both are of one root.
+SAME_ROOT = 1e-6
 ZERO_RESPONSE = "the response is zero: it has no poles, zeros or bandwidth"
 OPEN = "no bandwidth and no errors of estimates: a value is left open"
 UNDEFINED = "no bandwidth: at these values the response is zero or undefined"
@@ -41,7 +44,7 @@ def estimate(
     if form.is_zero:
         return Estimates((), (), None, (), (), remark=ZERO_RESPONSE)
     taken = names_taken(derivation, vocabulary)
-    forms = closed_forms(derivation, vocabulary, taken)
+    forms = _at_roots(closed_forms(derivation, vocabulary, taken), numbers)
     limits = limits_of_gain(derivation, vocabulary) if form.power_of_s == 0 else ()
     shown = [form.readable for form in forms]
     shown += [limit.limit for limit in limits if limit.limit is not None]
@@ -56,6 +59,32 @@ def estimate(
         limits=limits,
         definitions=definitions,
     )
+
+
+def _at_roots(forms: tuple[ClosedForm, ...], numbers: NominalNumbers | None) -> tuple[ClosedForm, ...]:
+    """Leave out forms of roots that are not there at the nominal values, as those of coils coupled fully."""
+    if numbers is None:
+        return forms
+    kept: list[ClosedForm] = []
+    for form in forms:
+        roots = numbers.poles if form.of == "pole" else numbers.zeros
+        value = abs(form.value or 0.0)
+        if not form.name.startswith("Q"):
+            if any(math.isclose(root.magnitude, value, rel_tol=SAME_ROOT) for root in roots):
+                kept.append(form)
+        elif any(math.isclose(_quality(root), value, rel_tol=SAME_ROOT) for root in roots):
+            kept.append(form)
+        elif kept and kept[-1].of == form.of:
+            # A pair on the axis, or one that is not there: its ω_0 goes with its Q.
+            kept.pop()
+    return tuple(kept)
+
+
+def _quality(root: CertifiedRoot) -> float:
+    """Give the Q of a pair, 1/2 where its two are one, infinity on the axis; -1 for a single real root."""
+    if root.imaginary == 0:
+        return 0.5 if root.multiplicity > 1 else -1.0
+    return root.quality or math.inf
 
 
 def _in_numbers(

@@ -26,3 +26,11 @@ class ReadableForm:
     far_gain: Expression | None = None
     numerator_factors: tuple[tuple[Expression, ...], ...] = ()
     denominator_factors: tuple[tuple[Expression, ...], ...] = ()
+
+    @property
+    def expressions(self) -> tuple[Expression, ...]:
+        """Everything that is written for reading."""
+        far = () if self.far_gain is None else (self.far_gain,)
+        factors = (*self.numerator_factors, *self.denominator_factors)
+        entries = (entry for factor in factors for entry in factor)
+        return (self.gain, *self.numerator, *self.denominator, *far, *entries)
