@@ -28,8 +28,9 @@ from derive.normalise.band_report import report_bands
 from derive.normalise.nested_choice import derive_form
 from derive.reactances.find_miller import find_miller
 from derive.reactances.find_time_constants import find_time_constants
+from derive.readable.factored import factored
 from derive.readable.far_gain import far_gain
-from derive.readable.readable import read_form
+from derive.readable.readable import definitions_used, read_form
 from derive.readable.vocabulary import Vocabulary, vocabulary_of
 from derive.sheet.ledger import ledger
 from derive.sheet.plain import plain_outcome
@@ -68,14 +69,15 @@ def derive(
     engine_seconds: float = ENGINE_SECONDS,
     only: str | None = None,
     band: str | None = None,
+    explain: bool = True,
     progress: Callable[[str], None] = lambda stage: None,
     meanwhile: Callable[[Outcome], None] = lambda outcome: None,
 ) -> Results:
     """Derive and check what a topology asks for.
 
     Given: whether the other engine is asked as well, and for how long; `only` names one quantity, `band`
-    one band; `progress` is told the stages; `meanwhile` is given the outcome without its verdicts, while
-    the other engine works.
+    one band; whether the results are to be put in the words of the trade as well; `progress` is told the
+    stages; `meanwhile` is given the outcome without its verdicts, while the other engine works.
 
     Raises: InputError, TooLargeError or SingularError where the circuit cannot be worked.
     """
@@ -84,14 +86,16 @@ def derive(
     bands = tuple(restrict(circuit, name) for name in _chosen(circuit, band))
     if band is None:
         refuse_unused_merges(topology.merges, bands)
-    refuse_assumptions(circuit, bands if band is None else [restrict(circuit, b) for b in bands_of(circuit)])
+    refuse_assumptions(
+        circuit, bands if band is None else [restrict(circuit, b) for b in bands_of(circuit)]
+    )
     solutions = []
     for band_circuit in bands:
         for find in topology.finds:
             if only in (None, find.name):
                 progress(f"deriving {find.name}, {band_circuit.band} band")
-                solutions.append(solve(band_circuit, find))
-    if band is None and only is None:
+                solutions.append(solve(band_circuit, find, explain=explain))
+    if band is None and only is None and explain:
         refuse_idle(topology.assumptions, [solution.register for solution in solutions])
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
@@ -127,38 +131,47 @@ def _result(solution: Solution, verdicts: tuple[Verdict, ...]) -> Result:
         return Result(solution, verdicts)
 
 
-def solve(band: BandCircuit, find: Find) -> Solution:
-    """Go from the circuit of a band to one quantity in normal form, with every step and in every form.
+def solve(band: BandCircuit, find: Find, *, explain: bool = True) -> Solution:
+    """Go from the circuit of a band to one quantity in normal form, with every step.
 
-    Given: the find as the user wrote it.
+    Given: the find as the user wrote it; whether the result is to be put in the words of the trade as well.
     """
     system = write_equations(band.circuit, find_in(band, find))
     derivation, form, numbers = derive_form(system)
+    bare = Solution(derivation, form, numbers, band)
+    return explained(bare, band, find) if explain else bare
+
+
+def explained(solution: Solution, band: BandCircuit, find: Find) -> Solution:
+    """Put a result in the words of the trade: readable forms, time constants, Miller's view, estimates.
+
+    A nested result gets what needs no expansion. What the user assumed, and short forms where they are asked
+    for, come with both.
+    """
+    derivation, form, numbers = solution.derivation, solution.form, solution.numbers
     vocabulary = vocabulary_of(band.circuit, _names_taken(derivation))
+    said = replace(
+        solution,
+        register=approximate(band, derivation, form, numbers, vocabulary),
+        simplified=_simplified(band, find, vocabulary),
+    )
     if derivation.nested is not None:
-        return Solution(
-            derivation,
-            form,
-            numbers,
-            band,
-            estimates=estimate(derivation, form, numbers, None, vocabulary, band.band),
-            register=approximate(band, derivation, form, numbers, vocabulary),
-            simplified=_simplified(band, find, vocabulary),
-        )
-    readable = read_form(form, derivation.system.ring.plain(), vocabulary)
-    readable = replace(readable, far_gain=far_gain(derivation, vocabulary))
+        return replace(said, estimates=estimate(derivation, form, numbers, None, vocabulary, band.band))
+    above, below = factored(derivation, vocabulary)
+    readable = replace(
+        read_form(form, derivation.system.ring.plain(), vocabulary),
+        far_gain=far_gain(derivation, vocabulary),
+        numerator_factors=above,
+        denominator_factors=below,
+    )
+    readable = replace(readable, definitions=definitions_used(readable.expressions, vocabulary))
     constants = find_time_constants(derivation, form, vocabulary)
-    return Solution(
-        derivation,
-        form,
-        numbers,
-        band,
-        readable,
-        constants,
-        find_miller(derivation, form, numbers, vocabulary),
-        estimate(derivation, form, numbers, constants, vocabulary, band.band),
-        approximate(band, derivation, form, numbers, vocabulary),
-        _simplified(band, find, vocabulary),
+    return replace(
+        said,
+        readable=readable,
+        time_constants=constants,
+        miller=find_miller(derivation, form, numbers, vocabulary),
+        estimates=estimate(derivation, form, numbers, constants, vocabulary, band.band),
     )
 
 

@@ -188,7 +188,19 @@ def _judge_root(
             found = complex(-(ends[0] - ends[1]) / slope)
             if not abs(found - stated[name]) <= SENSITIVITY_ERROR * max(1.0, abs(found)):
                 return f"{root.of} {root.index + 1} follows {name} otherwise than stated"
+            if not _is_quality_right(root, name, found):
+                return f"Q of {root.of} {root.index + 1} follows {name} otherwise than stated"
     return ""
+
+
+def _is_quality_right(root: RootSensitivity, name: str, found: complex) -> bool:
+    """Whether Q = |p|/(2·|Re p|) follows a part as stated; a root without a Q states nothing."""
+    p, stated = root.root, dict(root.quality)
+    if not p.imag or not p.real:
+        return not stated
+    true = found.real - (found * p).real / p.real
+    scale = max(1.0, abs(p.imag / p.real))
+    return name in stated and abs(stated[name] - true) <= SENSITIVITY_ERROR * scale * max(1.0, abs(found))
 
 
 def _ball(value: Fraction | int) -> Any:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from derive.check.protocol import Road, find_roads
-from derive.check.verdict import Solution, Verdict
+from derive.check.verdict import NOT_ASKED, Solution, Verdict
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,7 +59,7 @@ def _judge(road: Road, solution: Solution) -> Verdict:
 
 def _fetch(road: Road, count: int, begun: dict[str, Any]) -> Sequence[Verdict]:
     if road.finish is None or road.key not in begun:
-        return [Verdict(road.name, road.method, None, "not asked for", "")] * count
+        return [Verdict(road.name, road.method, None, NOT_ASKED, "")] * count
     handle = begun[road.key]
     if isinstance(handle, Verdict):
         return [handle] * count

@@ -37,7 +37,8 @@ def _wrong(given: TimeConstants, nominal: Mapping[str, Fraction] | None) -> Iter
             if row.seconds != value:
                 yield f"{row.symbol}, {row.kind}: its seconds are not those of its time constant"
         parts = [Fraction(0) if not value else 1 / value for value in seconds] if short else seconds
-        whole = _sum(parts) if short else sums.get("b_1", _sum(parts))
+        # Where modes are hidden, b_1 is the response's own, and the shares are those of the circuit's sum.
+        whole = _sum(parts) if short or given.hidden_says else sums.get("b_1", _sum(parts))
         for row, part in zip(rows, parts, strict=True):
             if not _is_share(row.share, part, whole):
                 yield f"{row.symbol}, {row.kind}: its share is not its part of the sum"

@@ -17,6 +17,9 @@ from derive.reactances.miller import MillerView
 from derive.reactances.time_constants import TimeConstants
 from derive.readable.form import ReadableForm
 
+# What is measured by a check that the user can do without, and did.
+NOT_ASKED = "not asked for"
+
 
 @dataclass(frozen=True, slots=True)
 class Solution:
@@ -50,8 +53,9 @@ class Solution:
 class Verdict:
     """The outcome of one check.
 
-    `passed` is None where the check could not be finished or does not apply: neither pass nor fail.
-    `measured` and `limit` are printed as they stand.
+    `passed` is None where the check could not be finished, was not asked for, or does not apply because
+    there is nothing to judge (then `applies` is False too): neither pass nor fail. `measured` and `limit`
+    are printed as they stand.
     """
 
     name: str
@@ -59,6 +63,7 @@ class Verdict:
     passed: bool | None
     measured: str
     limit: str
+    applies: bool = True
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,4 +1,4 @@
-"""Where mid-band lies, and what a response is worth there: exactly where it is constant around it."""
+"""Where the mid band lies, and what a response is worth there: exactly where it is constant around it."""
 
 from __future__ import annotations
 
@@ -33,7 +33,7 @@ def bandwidth_of(solution: Solution) -> Bandwidth | None:
 
 
 def mid_frequency(solution: Solution) -> float:
-    """Give the frequency that stands for mid-band in a response.
+    """Give the frequency that stands for the mid band in a response.
 
     Without a low edge that is 0; with a low edge alone it is infinite; between two edges it is their
     geometric mean. Where no edges are known it is the end at which the response is constant.

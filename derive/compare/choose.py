@@ -49,13 +49,15 @@ def kind_of(find: Find, topology: Topology) -> str:
 
 
 def asked(find: Find) -> Line:
-    """Say what is wanted of a stage, as its user wrote it: "voltage of out per V_s"."""
+    """Say what is wanted of a stage, as its user wrote it: "voltage at node out per V_s"."""
     if find.quantity == "current":
         line: tuple[Inline, ...] = (Text("current through "), Maths(Name(find.part or "")))
     else:
         plus, minus = find.nodes or ("", "")
         against = "" if minus == GROUND else f" against {minus}"
-        line = (Text(f"{find.quantity} of {plus}{against}"),)
+        between = f"impedance between {plus} and {minus}"
+        words = between if find.quantity == "impedance" else f"voltage at node {plus}{against}"
+        line = (Text(words),)
     for place, (drive, weight) in enumerate(find.per):
         share = "" if weight == 1 else f"{weight} ".replace("-", "−")
         line = (*line, Text(f"{', ' if place else ' per '}{share}"), Maths(Name(drive)))

@@ -19,7 +19,7 @@ from derive.pipeline import derive
 from derive.quantities.dimension import RATIO
 from derive.topology.topology import BandName, Find, Topology
 
-# The band that stands for mid-band, and those that know the edges: the first that a stage has.
+# The band that stands for the mid band, and those that know the edges: the first that a stage has.
 MID: tuple[BandName, ...] = ("mid", "full", "high", "low")
 LOW_EDGE: tuple[BandName, ...] = ("low", "full", "mid")
 HIGH_EDGE: tuple[BandName, ...] = ("high", "full", "mid")

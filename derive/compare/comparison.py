@@ -24,16 +24,18 @@ class Level:
 
 @dataclass(frozen=True, slots=True)
 class PortImpedance:
-    """An impedance at one port of a stage at mid-band.
+    """An impedance at one port of a stage in the mid band.
 
-    `says` is what is in and what is out. `result` holds the derivation and its checks; where there is none,
-    `remark` says why, and `level` may still be known (infinite where nothing conducts).
+    `says` is what is in and what is out, `between` the nodes alone. `result` holds the derivation and its
+    checks; where there is none, `remark` says why, and `level` may still be known (infinite where nothing
+    conducts).
     """
 
     says: str
     level: Level | None
     result: Result | None = None
     remark: str = ""
+    between: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,7 +59,7 @@ class Point:
 class Stage:
     """One stage with all that is compared.
 
-    `main` is its response in the band that stands for mid-band, `at_hertz` the frequency of mid-band in it
+    `main` is its response in the band that stands for the mid band, `at_hertz` its frequency there
     (0 for all frequencies that are low enough, infinite for all that are high enough). `low_hz` and
     `high_hz` are None where the pass band is open on that side or where it is not known.
     """
@@ -81,7 +83,7 @@ class Stage:
 
     @property
     def band(self) -> BandName:
-        """The band that stands for mid-band."""
+        """The band that stands for the mid band."""
         return self.main.band.band if self.main.band else "full"
 
     @property

@@ -16,7 +16,7 @@ NEAR = (-4.0, -2.0, -1.0, -0.5, 0.0, 0.5, 1.0, 2.0, 4.0)
 # Shown beyond the edges: what falls, falls by decades.
 BEYOND_EDGE = 30.0
 BEYOND_OPEN = 1000.0
-# Seen at mid-band, a response that inverts stands at −180°, one that does not at 0°.
+# Seen in the mid band, a response that inverts stands at −180°, one that does not at 0°.
 LEAST_DEGREES = -225.0
 Edges = tuple[float | None, float | None]
 

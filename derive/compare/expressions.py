@@ -1,4 +1,4 @@
-"""The expressions behind the figures of a comparison: gain and port impedances of each stage at mid-band."""
+"""The expressions behind the figures of a comparison: gain and port impedances of each stage in the mid band."""
 
 from __future__ import annotations
 
@@ -38,8 +38,12 @@ class _Shown:
 
 def expressions(comparison: Comparison) -> tuple[Section, ...]:
     """Give a section that holds a part for each stage."""
-    parts = [Section(stage.name, blocks, 2) for stage in comparison.stages if (blocks := _blocks(stage))]
-    return (Section("Expressions at mid-band", ()), *parts) if parts else ()
+    parts = [
+        Section(f"{stage.name}: {stage.topology.title_block.title}", blocks, 2)
+        for stage in comparison.stages
+        if (blocks := _blocks(stage))
+    ]
+    return (Section("Expressions in the mid band", ()), *parts) if parts else ()
 
 
 def _blocks(stage: Stage) -> tuple[Block, ...]:
@@ -48,7 +52,8 @@ def _blocks(stage: Stage) -> tuple[Block, ...]:
     for label, port in (("Input", stage.input), ("Output", stage.output)):
         if port.result is not None:
             solution = port.result.solution
-            says = Wording(stage.main.derivation).with_names(f"{label} impedance {port.says}")
+            # What is in it and what is out stands once for all, under what the figures are.
+            says = Wording(stage.main.derivation).with_names(f"{label} impedance {port.between}")
             found.append(_Shown(solution, port.level, RESISTANCE, says))
     blocks: list[Block] = []
     used: dict[str, Expression] = {}
@@ -62,7 +67,7 @@ def _blocks(stage: Stage) -> tuple[Block, ...]:
 
 
 def _at_mid_band(stage: Stage, solution: Solution) -> Expression | None:
-    """Give the expression of a response at mid-band, where there is one that is short enough to be read."""
+    """Give the expression of a response in the mid band, where there is one that is short enough to be read."""
     form, readable = solution.form, solution.readable
     found: Expression | None = None
     if stage.at_hertz == 0 and form.power_of_s == 0:

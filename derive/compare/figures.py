@@ -52,7 +52,7 @@ def impedance_words(level: Level | None) -> str:
 
 
 def where_words(stage: Stage) -> str:
-    """Say where mid-band is taken for a stage."""
+    """Say where the mid band is taken for a stage."""
     circuit = "" if stage.band == "full" else f"{stage.band} band, "
     if stage.at_hertz == 0:
         return "mid band" if stage.band == "mid" else f"{circuit}zero frequency"

@@ -5,17 +5,17 @@ from __future__ import annotations
 from derive.compare.comparison import Comparison, Stage
 
 DEFINITIONS = (
-    "Mid-band is the mid band of a stage that is worked in bands. Of one that is worked in full it is zero "
-    "frequency, or frequencies far above its corners where the response falls towards zero frequency, or the "
-    "geometric mean of its two −3 dB frequencies.",
-    "The −3 dB frequencies are those at which the magnitude is 1/√2 of its value at mid-band: the low one "
+    "The mid band of a stage that is worked in full is taken at zero frequency, or at frequencies far above "
+    "its corners where the response falls towards zero frequency, or at the geometric mean of its two −3 dB "
+    "frequencies.",
+    "The −3 dB frequencies are those at which the magnitude is 1/√2 of its value in the mid band: the low one "
     "from the low band, the high one from the high band, or both from the full circuit. A dash says that the "
-    "pass band is open on that side; “not worked”, that the topology leaves that band out.",
-    "The gain-bandwidth product is the magnitude of the gain at mid-band times the high −3 dB frequency.",
-    "The input impedance is what the drive sees at mid-band: the drive itself is taken out, all other drives "
+    "pass band is open on that side; “not asked for”, that the file leaves out the band that would show it.",
+    "The gain-bandwidth product is the magnitude of the gain in the mid band times the high −3 dB frequency.",
+    "The input impedance is what the drive sees in the mid band: the drive itself is taken out, all other drives "
     "are at zero, and everything from its terminals on is in place, a source resistor and the load included. "
     "Where a single resistor leads from the drive into the stage, the impedance past it is given as well.",
-    "The output impedance is seen at mid-band at the nodes where the output is taken: all drives are at zero, "
+    "The output impedance is seen in the mid band at the nodes where the output is taken: all drives are at zero, "
     "and the source resistor and the load are in place.",
 )
 

@@ -86,7 +86,7 @@ def _curve_words(stage: Stage) -> str:
         if stage.dimension == RATIO
         else level_words(stage.gain, stage.dimension)
     )
-    words = f"{stage.name}: {level} at mid-band"
+    words = f"{stage.name}: {level} in the mid band"
     if stage.low_hz is not None:
         words += f", down by 3 dB at {frequency(stage.low_hz)} below it"
     if stage.high_hz is not None:

@@ -24,7 +24,7 @@ def input_impedance(
 ) -> tuple[PortImpedance, PastSource | None]:
     """Give what the drive of a quantity sees, and the same past a resistor that alone leads from the drive.
 
-    Given: the circuit before any band's changes, and the frequency of mid-band in that band.
+    Given: the circuit before any band's changes, and the frequency of the mid band in it.
     """
     if len(find.per) != 1:
         why = (
@@ -33,7 +33,8 @@ def input_impedance(
         return PortImpedance("", None, remark=why), None
     drive = next(drive for drive in circuit.drives if drive.name == find.per[0][0])
     plus, minus = drive.nodes
-    says = f"between {plus} and {minus} with {drive.name} taken out and"
+    between = f"between {plus} and {minus}"
+    says = f"{between} with {drive.name} taken out and"
     says += " all other drives at zero; source resistor and load are in it"
     sensor = sensed_currents(circuit).get(drive.name)
     if sensor is not None:
@@ -41,7 +42,7 @@ def input_impedance(
         return PortImpedance(says, None, remark=why), None
     left = replace(circuit, drives=tuple(other for other in circuit.drives if other != drive))
     found = _impedance(left, find, drive.nodes, "Z_in", band, hertz, says)
-    return found, _past_source(left, drive, band, found)
+    return replace(found, between=between), _past_source(left, drive, band, found)
 
 
 def output_impedance(circuit: SmallSignal, find: Find, band: BandName, hertz: float) -> PortImpedance:
@@ -52,10 +53,11 @@ def output_impedance(circuit: SmallSignal, find: Find, band: BandName, hertz: fl
     if nodes is None:
         why = f"the current through {find.part} has no pair of nodes to look into"
         return PortImpedance("", None, remark=why)
-    says = f"between {nodes[0]} and {nodes[1]}, all drives at zero; source resistor and load are in it"
+    between = f"between {nodes[0]} and {nodes[1]}"
+    says = f"{between}, all drives at zero; source resistor and load are in it"
     if find.part is not None:
-        says = f"{says}, {find.part} itself as well"
-    return _impedance(circuit, find, nodes, "Z_out", band, hertz, says)
+        between, says = f"{between}, {find.part} in place", f"{says}, {find.part} itself as well"
+    return replace(_impedance(circuit, find, nodes, "Z_out", band, hertz, says), between=between)
 
 
 def _ends(circuit: SmallSignal, part: str) -> tuple[str, str] | None:

@@ -47,14 +47,16 @@ def tables(comparison: Comparison, most: int = MOST_STAGES) -> tuple[Table, ...]
 def rows_of(comparison: Comparison) -> tuple[Row, ...]:
     """Give the rows; those that would be empty for every stage are left out where they can be."""
     stages = comparison.stages
-    gain = "Impedance at mid-band" if stages[0].find.quantity == "impedance" else "Gain at mid-band"
+    impedance = stages[0].find.quantity == "impedance"
+    gain = "Impedance in the mid band" if impedance else "Gain in the mid band"
     rows: list[Row] = [
+        _row("Title", stages, lambda stage: _words(stage.topology.title_block.title)),
         _row("Quantity", stages, _quantity),
         _row("Worked in", stages, lambda stage: _words(_bands(stage))),
-        _row("Taken as mid-band", stages, lambda stage: _words(where_words(stage))),
+        _row("Taken as mid band", stages, lambda stage: _words(where_words(stage))),
         _row(gain, stages, lambda stage: _words(_gain(stage))),
     ]
-    ratio, ports = stages[0].dimension == RATIO, stages[0].find.quantity != "impedance"
+    ratio, ports = stages[0].dimension == RATIO, not impedance
     if ratio:
         rows.append(_row("… in decibels", stages, lambda stage: _words(decibel_words(stage.gain))))
     rows += [
@@ -100,7 +102,8 @@ def _gain(stage: Stage) -> str:
 
 def _edge(stage: Stage, side: Literal["low", "high"]) -> str:
     found = stage.low_hz if side == "low" else stage.high_hz
-    return "not worked" if found is None and side in left_out(stage) else frequency(found)
+    missing = found is None and side in left_out(stage)
+    return f"not asked for (no {side} band in the file)" if missing else frequency(found)
 
 
 def left_out(stage: Stage) -> tuple[BandName, ...]:

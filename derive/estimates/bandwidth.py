@@ -99,6 +99,11 @@ def _reference(response: Response, band: BandName) -> tuple[Reference | None, st
         return Reference(at_infinity, "infinity"), ""
     if at_zero and (band == "high" or not response.rises_from_zero or not response.lowest_corner_is_zero):
         return Reference(at_zero, "zero"), ""
+    if at_zero and at_infinity is not None:
+        peak = _peak(response)
+        if max(at_infinity, peak.square if peak else 0) <= at_zero / HALF:
+            # It rises from zero frequency, but by less than the 3 dB that are counted.
+            return Reference(at_zero, "zero"), ""
     if at_infinity:
         peak = None if at_zero is None else _peak(response)
         if peak is not None and peak.square > PASS_BAND_ABOVE_ENDS * max(at_infinity, at_zero or 0):

@@ -1,8 +1,8 @@
 """Poles and zeros in symbols, exactly: first and second order, and higher ones that come apart.
 
 A factor c_0 + c_1·s has its root at −c_0/c_1. A factor c_0 + c_1·s + c_2·s² is 1 + s/(Q·ω_0) + s²/ω_0² with
-ω_0 = √(c_0/c_2) and Q = √(c_0·c_2)/c_1, whichever way its roots lie; where they are real and the formula
-short, the two roots are given instead.
+ω_0 = √(c_0/c_2) and Q = √(c_0·c_2)/c_1. Where its roots are two real ones these are given instead if their
+formula is short, and nothing if it is long.
 """
 
 from __future__ import annotations
@@ -18,7 +18,6 @@ from derive.eliminate.derivation import Derivation
 from derive.estimates.estimates import ClosedForm
 from derive.estimates.factors import Section, sections_of
 from derive.estimates.pen import Pen, inverse_root, root_of, written_value
-from derive.estimates.words import plain
 from derive.expressions.polynomials import add, divide, multiply, negate
 from derive.expressions.tree import ONE, ZERO, Expression, Negative, Number, Power
 from derive.normalise.numbers import values_of
@@ -121,14 +120,15 @@ def _said(kind: Kind, right: bool | None, multiplicity: int = 1) -> str:
 def _double(
     pen: Pen, names: Names, kind: Kind, index: int, mark: str, section: Section
 ) -> list[ClosedForm]:
-    """Give two real roots where there are some and they are short; else ω_0 and Q."""
+    """Give two real roots where their formula is short, and ω_0 and Q where they are no two real ones."""
     values = section.values
     opposed = values is not None and values[0] * values[2] < 0
-    if values is not None and section.multiplicity == 1:
-        discriminant = values[1] ** 2 - 4 * values[0] * values[2]
-        if opposed or (discriminant > 0 and section.size <= TERMS_OF_TWO):
-            return _two_real(pen, names, kind, index, section, discriminant)
-    if opposed or (values is not None and not values[0]):
+    if values is not None and values[1] ** 2 > 4 * values[0] * values[2]:
+        # By ω_0 and Q nobody tells two real roots: b_1 and b_2 do so with the rules of thumb.
+        if section.multiplicity > 1 or not (opposed or section.size <= TERMS_OF_TWO):
+            return []
+        return _two_real(pen, names, kind, index, section, values[1] ** 2 - 4 * values[0] * values[2])
+    if values is not None and not values[0]:
         return []
     return _pair(pen, names, kind, mark, section)
 
@@ -207,9 +207,7 @@ def _pair_said(kind: Kind, square: Fraction | None, quality: float | None, *, un
     side = "right" if quality < 0 else "left"
     if square == Fraction(1, 4):
         return f"two equal real {kind}s in the {side} half-plane: Q is 1/2"
-    if square > Fraction(1, 4):
-        return f"complex pair of {kind}s in the {side} half-plane: Q is above 1/2"
-    return f"two real {kind}s in the {side} half-plane: Q = {plain(abs(quality))} is below 1/2"
+    return f"complex pair of {kind}s in the {side} half-plane: Q is above 1/2"
 
 
 def names_taken(derivation: Derivation, vocabulary: Vocabulary) -> set[str]:

@@ -11,7 +11,7 @@ from derive.readable.form import Definition
 
 @dataclass(frozen=True, slots=True)
 class ClosedForm:
-    """A root in symbols, exactly: a real root, or ω_0 and Q of a quadratic.
+    """A root in symbols, exactly: a real root, or ω_0 and Q of a quadratic whose roots are not two real ones.
 
     `of` is "pole" or "zero"; `name` a symbol for it (omega_p1, omega_z1, omega_0, Q); `value` at the nominal
     values in rad/s (Q a pure number), None where open. `says` names it in words: "right half-plane zero".
@@ -31,7 +31,7 @@ class Estimate:
 
     `formula` is in the coefficients b_1, b_2, … of the normal form; that of the two-factor rules is the
     polynomial in s which takes the denominator's place, not the frequency itself. `value` and `exact` are
-    in rad/s for poles (a complex one as −|p|) and in Hz for frequencies (`unit`); `error` is
+    in rad/s for poles (real ones only) and in Hz for frequencies (`unit`); `error` is
     (value − exact)/exact, signed. `usable` and `says` state whether it may be used here and why.
     """
 
@@ -64,12 +64,16 @@ class Bandwidth:
 
 @dataclass(frozen=True, slots=True)
 class RootSensitivity:
-    """How a root follows each part: (x/p)·dp/dx, a complex number (real part: relative change of its size)."""
+    """How a root follows each part: (x/p)·dp/dx, a complex number (real part: relative change of its size).
+
+    `quality` is (x/Q)·dQ/dx of a complex pair by every such part, () for a real root and one without a Q.
+    """
 
     of: Literal["pole", "zero"]
     index: int
     root: complex
     by_symbol: tuple[tuple[str, complex], ...]
+    quality: tuple[tuple[str, float], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,7 +89,8 @@ class Limit:
 class Estimates:
     """All that is said of poles, zeros and corner frequencies of one response.
 
-    `remark` says in words why there is no bandwidth, "" where there is one.
+    `remark` says in words why there is no bandwidth, "" where there is one; `rules_remark` why the rules
+    for real poles, or one of them, are not there, "" where nothing is to be said.
     """
 
     closed_forms: tuple[ClosedForm, ...]
@@ -95,3 +100,4 @@ class Estimates:
     limits: tuple[Limit, ...]
     definitions: tuple[Definition, ...] = ()
     remark: str = ""
+    rules_remark: str = ""

@@ -21,36 +21,53 @@ from derive.readable.vocabulary import Vocabulary
 # Limits of a longer gain would be as unreadable as itself.
 MOST_TERMS = 200
 # A line of sanity is read at a glance: longer ones are left out, and all together keep within a page.
-MOST_TERMS_EACH = 8
-MOST_TERMS_WRITTEN = 40
+MOST_TERMS_EACH = 12
+MOST_TERMS_WRITTEN = 60
 
 End = Literal["0", "inf"]
 ENDS: tuple[End, ...] = ("0", "inf")
+_Ratio = tuple[Polynomial, Polynomial]
 
 
 def limits_of_gain(derivation: Derivation, vocabulary: Vocabulary) -> tuple[Limit, ...]:
     """Give what K becomes at either end of every symbol that it depends on, finite limits first.
 
-    Values that a mutual inductance is made of are left out, as it would go with them. () where the gain
-    is too long to read.
+    Long limits are left out, the longest first, and so are values that a mutual inductance is made of, as
+    it would go with them. () where the gain is too long to read, or is one symbol and no more.
     """
     if derivation.numerator == 0:
         return ()
     ring = derivation.system.ring.plain()
     top, bottom = gain_of(ring, derivation)
-    if len(top) + len(bottom) > MOST_TERMS:
+    if len(top) + len(bottom) > MOST_TERMS or _is_one_part(top, bottom):
         return ()
     tied = _tied(derivation)
-    desk = _Desk(ring, vocabulary)
-    found: list[Limit] = []
+    parts = {part.name for part in derivation.system.small_signal.topology.parts}
+    found: list[tuple[str, End, _Ratio]] = []
     for symbol in derivation.system.small_signal.symbols:
         for end in ENDS if symbol.name not in tied else ():
             limit = limit_of(ring, top, bottom, symbol.name, end)
-            if limit is not None and limit[1] == 0:
-                found.append(Limit(symbol.name, end, None))
-            elif limit is not None and (expression := desk.write(*limit)) is not None:
-                found.append(Limit(symbol.name, end, expression))
-    return tuple(sorted(found, key=lambda limit: limit.limit is None))
+            if limit is not None:
+                found.append((symbol.name, end, limit))
+    # The shortest first, and of equal ones those of parts before those of devices' parameters.
+    order = sorted(found, key=lambda one: (_size(one[2]), one[0] not in parts))
+    desk = _Desk(ring, vocabulary)
+    written = {(name, end): desk.write(*limit) for name, end, limit in order if limit[1] != 0}
+    kept = [
+        Limit(name, end, written.get((name, end)))
+        for name, end, limit in found
+        if limit[1] == 0 or written[name, end] is not None
+    ]
+    return tuple(sorted(kept, key=lambda limit: limit.limit is None))
+
+
+def _size(limit: _Ratio) -> int:
+    return len(limit[0]) + len(limit[1])
+
+
+def _is_one_part(top: Polynomial, bottom: Polynomial) -> bool:
+    """Whether the gain is a single symbol, whose limits tell nothing."""
+    return len(top) == len(bottom) == 1 and sum(top.degrees()) + sum(bottom.degrees()) == 1
 
 
 @dataclass(slots=True)
@@ -69,7 +86,7 @@ class _Desk:
         for top, bottom, expression in self.written:
             if top == above and bottom == below:
                 return expression
-        size = len(above) + len(below)
+        size = _size((above, below))
         if size > MOST_TERMS_EACH or self.terms + size > MOST_TERMS_WRITTEN:
             return None
         self.terms += size

@@ -1,5 +1,7 @@
 """Rules of thumb held against the truth: dominant pole, pole splitting, sums of time constants.
 
+Of a low band the corner is set by the highest pole: there the rules are about the lowest and the highest.
+
 Sources, from memory: p_1 ≈ −1/b_1 and p_2 ≈ −b_1/b_2 for poles far apart, and the bandwidth by the sum of
 open-circuit time constants: Gray and Searle, Electronic Principles (1969). The error printed is always the
 actual one at these values, never the rule's reputation.
@@ -18,7 +20,7 @@ from derive.algebra.roots import rational_polynomial
 from derive.estimates.bandwidth import AT, HALF, crossings
 from derive.estimates.estimates import Bandwidth, Estimate
 from derive.estimates.response import Response, make_response
-from derive.estimates.verdicts import Scene, judge_frequency, judge_pole
+from derive.estimates.verdicts import Scene, judge_frequency, judge_pole, no_real_pole
 from derive.expressions.polynomials import add, divide, multiply
 from derive.expressions.tree import ONE, Expression, Name, Negative, Number
 from derive.normalise.form import NominalNumbers
@@ -26,6 +28,8 @@ from derive.reactances.time_constants import TimeConstant, TimeConstants
 
 DOMINANT = "dominant pole"
 SECOND = "second pole"
+LOWEST = "lowest pole"
+HIGHEST = "highest pole"
 SUM = "bandwidth by time constants"
 LOW_SUM = "low corner by time constants"
 FACTORS = "bandwidth by two factors"
@@ -34,7 +38,7 @@ LOW_FACTORS = "low corner by two factors"
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Given:
-    """What the rules work on.
+    """What the rules work on; `low` says that the response is that of a low band.
 
     `b` are the coefficients b_0 = 1, b_1, … at the nominal values; `name_of` gives their names.
     """
@@ -47,6 +51,12 @@ class Given:
     time_constants: TimeConstants | None
     name_of: Callable[[int], str]
     pi: str
+    low: bool = False
+
+    @property
+    def shown(self) -> TimeConstants | None:
+        """The time constants, unless some belong to modes that this response does not show."""
+        return None if self.time_constants and self.time_constants.hidden_says else self.time_constants
 
     @property
     def b(self) -> tuple[Fraction, ...]:
@@ -59,40 +69,44 @@ class Given:
         return Name(self.name_of(index))
 
 
-def rules_of_thumb(given: Given) -> tuple[Estimate, ...]:
+def rules_of_thumb(given: Given) -> tuple[tuple[Estimate, ...], str]:
     """Give every rule that has something to say of this response, with its actual error.
 
-    () where the denominator has no constant term at these values, or there are no poles.
+    Gives: the rules, and a sentence where those for real poles do not apply, else "". () where the
+    denominator has no constant term at these values, or there are no poles.
     """
     if len(given.numbers.bottom) < 2 or not given.numbers.bottom[0]:
-        return ()
+        return (), ""
     scene = Scene.of(given.numbers)
-    found = [_dominant(given, scene), _second(given, scene), *_frequencies(given, scene)]
-    return tuple(estimate for estimate in found if estimate is not None)
+    found = [*_poles(given, scene), *_frequencies(given, scene)]
+    remark = no_real_pole(scene, low=given.low) if len(given.b) > 2 else ""
+    return tuple(estimate for estimate in found if estimate is not None), remark
 
 
-def _dominant(given: Given, scene: Scene) -> Estimate | None:
-    b = given.b
-    if len(b) < 3 or not b[1]:
-        return None
-    formula = Negative(divide(ONE, given.named(1)))
-    return _of_pole(DOMINANT, formula, float(-1 / b[1]), scene, 0)
-
-
-def _second(given: Given, scene: Scene) -> Estimate | None:
-    b = given.b
-    if len(b) < 3 or not b[1] or not b[2]:
-        return None
-    formula = Negative(divide(given.named(1), given.named(2)))
-    return _of_pole(SECOND, formula, float(-b[1] / b[2]), scene, 1)
+def _poles(given: Given, scene: Scene) -> list[Estimate | None]:
+    """Give the two rules for real poles: first and second, or in a low band lowest and highest."""
+    b, last = given.b, len(given.b) - 1
+    if last < 2:
+        return []
+    found = []
+    if b[1]:
+        name = LOWEST if given.low else DOMINANT
+        formula = Negative(divide(ONE, given.named(1)))
+        found.append(_of_pole(name, formula, float(-1 / b[1]), scene, 0))
+    place = last if given.low else 2
+    if b[place - 1] and b[place]:
+        name = HIGHEST if given.low else SECOND
+        formula = Negative(divide(given.named(place - 1), given.named(place)))
+        index = len(scene.poles) - 1 if given.low else 1
+        found.append(_of_pole(name, formula, float(-b[place - 1] / b[place]), scene, index))
+    return found
 
 
 def _of_pole(name: str, formula: Expression, value: float, scene: Scene, index: int) -> Estimate | None:
-    """Hold a value against the pole of this place; a complex one counts by its magnitude, as −|p|."""
-    if index >= len(scene.poles):
+    """Hold a value against the pole of this place; None where that is one of a complex pair."""
+    if index >= len(scene.poles) or scene.poles[index].imaginary:
         return None
-    pole = scene.poles[index]
-    exact = pole.real if not pole.imaginary else -pole.magnitude
+    exact = scene.poles[index].real
     error = (value - exact) / exact
     usable, says = judge_pole(scene, index, error)
     return Estimate(name, formula, "rad/s", value, exact, error, usable, says)
@@ -119,7 +133,7 @@ def _frequencies(given: Given, scene: Scene) -> list[Estimate | None]:
 def _sum(given: Given, scene: Scene, exact: float) -> Estimate | None:
     """1/(2π·Σ τ) by the open-circuit time constants; their sum is b_1 where nothing is hidden."""
     total, below = given.b[1], given.named(1)
-    known = given.time_constants.open_circuit if given.time_constants else ()
+    known = given.shown.open_circuit if given.shown else ()
     summed = _summed(known, inverse=False)
     if summed is not None and summed[0] != total:
         total, below = summed
@@ -138,7 +152,7 @@ def _low_sum(given: Given, scene: Scene, exact: float) -> Estimate | None:
     two_pi: list[Expression] = [Number(Fraction(2)), Name(given.pi)]
     above = given.named(top - 1) if top > 1 else ONE
     formula = divide(above, multiply([*two_pi, given.named(top)]))
-    known = given.time_constants.short_circuit if given.time_constants else ()
+    known = given.shown.short_circuit if given.shown else ()
     summed = _summed(known, inverse=True)
     if summed is not None and summed[0] != total:
         total, formula = summed[0], divide(summed[1], multiply(two_pi))

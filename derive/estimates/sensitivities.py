@@ -52,10 +52,22 @@ def root_sensitivities(derivation: Derivation, numbers: NominalNumbers) -> tuple
             for index, root in enumerate(roots):
                 if root.multiplicity == 1 and root.magnitude > 0:
                     by_symbol = _of_root(root, own, partial, names)
+                    place = complex(root.real, root.imaginary)
                     found.append(
-                        RootSensitivity(kind, index, complex(root.real, root.imaginary), by_symbol)
+                        RootSensitivity(kind, index, place, by_symbol, _of_quality(root, by_symbol))
                     )
     return tuple(found)
+
+
+def _of_quality(
+    root: CertifiedRoot, by_symbol: Sequence[tuple[str, complex]]
+) -> tuple[tuple[str, float], ...]:
+    """Give (x/Q)·dQ/dx for Q = |p|/(2·|Re p|): with S = (x/p)·dp/dx it is Im S·Im p/Re p."""
+    if root.quality is None:
+        return ()
+    # ln Q moves by Re S − Re(S·p)/Re p, and Re(S·p) = Re S·Re p − Im S·Im p.
+    turn = root.imaginary / root.real
+    return tuple((name, value.imag * turn) for name, value in by_symbol)
 
 
 def _derivatives(

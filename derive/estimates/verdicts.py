@@ -41,18 +41,11 @@ class Scene:
 
 def judge_pole(scene: Scene, index: int, error: float) -> tuple[bool, str]:
     """Say whether an estimate of the pole of this place may be used."""
-    pole = scene.poles[index]
     off = f"off by {percent(error)}" if abs(error) > EXACT_ERROR else "exact here"
     if scene.unstable:
         return (
             False,
             f"not to be used: a pole lies in the right half-plane, the stage is unstable ({off})",
-        )
-    if pole.imaginary:
-        quality = "infinite" if pole.quality is None else plain(pole.quality)
-        return False, (
-            f"not to be used: this pole belongs to a complex pair (Q = {quality}), which no real pole stands "
-            f"for; against the pair's magnitude it is {off}"
         )
     ratio, other = _nearest(scene, index)
     equal = ratio < 1 + EXACT_ERROR
@@ -62,8 +55,30 @@ def judge_pole(scene: Scene, index: int, error: float) -> tuple[bool, str]:
     if abs(error) <= USABLE_ERROR:
         return True, f"may be used: {apart}, and it is {off}"
     if ratio > CLOSE_RATIO:
-        return False, f"not to be used: {off}, for poles further out have their share as well"
+        where = "in" if index and index + 1 == len(scene.poles) else "out"
+        return False, f"not to be used: {off}, for poles further {where} have their share as well"
     return False, f"not to be used: {'' if equal else 'only '}{apart}; {off}"
+
+
+def no_real_pole(scene: Scene, *, low: bool) -> str:
+    """Say that the rules for real poles do not apply, or one of them; "" where both may be tried."""
+    if not scene.poles:
+        return ""
+    first, last = scene.poles[0], scene.poles[-1]
+    if first.imaginary:
+        pair = f"the lowest poles are a pair with Q = {_quality(first)}"
+        return f"No real pole dominates: {pair}. Rules for real poles do not apply."
+    if low and last.imaginary:
+        pair = f"The highest poles are a pair with Q = {_quality(last)}"
+        return f"{pair}: the rule for a highest real pole does not apply."
+    if not low and len(scene.poles) > 1 and scene.poles[1].imaginary:
+        pair = f"The next poles are a pair with Q = {_quality(scene.poles[1])}"
+        return f"{pair}: the rule for a second real pole does not apply."
+    return ""
+
+
+def _quality(pole: CertifiedRoot) -> str:
+    return "infinite" if pole.quality is None else plain(pole.quality)
 
 
 def _nearest(scene: Scene, index: int) -> tuple[float, str]:
@@ -100,8 +115,7 @@ def _near_pair(scene: Scene, exact_hz: float) -> str:
     span = (exact_hz / NEAR, exact_hz * NEAR)
     for pole in scene.poles:
         if pole.imaginary > 0 and span[0] <= pole.hertz <= span[1]:
-            quality = "infinite" if pole.quality is None else plain(pole.quality)
-            return f"a complex pair (Q = {quality}) shapes the corner"
+            return f"a complex pair (Q = {_quality(pole)}) shapes the corner"
     return ""
 
 

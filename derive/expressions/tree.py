@@ -86,7 +86,9 @@ class Struck:
     operand: Expression
 
 
-Expression = Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided | Struck
+Expression = (
+    Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided | Struck
+)
 
 
 @dataclass(frozen=True, slots=True)

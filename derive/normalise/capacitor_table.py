@@ -16,8 +16,10 @@ from typing import Literal
 
 from derive.bands.choose import State, state_in
 from derive.bands.rewire import label_of, rewire
+from derive.bands.wiring import ends_of
 from derive.devices.elements import (
     Capacitor,
+    CurrentDrive,
     Element,
     Inductor,
     OnePoleGain,
@@ -35,8 +37,8 @@ from derive.topology.topology import GROUND, BandName, Find, Place, Role
 class ReactanceAt:
     """The reactance in ohms at a frequency, and its ratio to the resistance that the part sees.
 
-    `where` is "lower edge", "upper edge" or "centre". `ratio` is None where the resistance is zero or
-    not known, and 0 where it is infinite.
+    `where` is "lower edge", "upper edge" or "centre". `ratio` is None where the resistance is zero,
+    infinite or not known: what carries a given current is no short by its small reactance.
     """
 
     where: Literal["lower edge", "upper edge", "centre"]
@@ -50,7 +52,7 @@ class CapacitorRow:
     """One capacitor or inductor of the circuit in one band.
 
     `symbol` is its symbol, `resistance` what it sees in ohms: `says` tells in words where that is None
-    ("infinite") or could not be worked. `at` is empty where its value is open or the band has no edge.
+    ("infinite", and why) or could not be worked. `at` is empty where its value is open or the band has no edge.
     """
 
     symbol: str
@@ -88,7 +90,7 @@ def _row(
             continue
         omega = 2 * math.pi * hertz
         ohms = omega * float(value) if inductor else 1 / (omega * float(value))
-        ratio = ohms / float(resistance) if resistance else (0.0 if says == "infinite" else None)
+        ratio = ohms / float(resistance) if resistance else None
         at.append(ReactanceAt(where, hertz, ohms, ratio))
     return CapacitorRow(
         label_of(element),
@@ -119,7 +121,8 @@ def _frequencies(
 def resistance_seen(circuit: SmallSignal, element: Capacitor | Inductor) -> tuple[Fraction | None, str]:
     """Give the resistance between a part's nodes, and "" or words where there is no number.
 
-    The words are "infinite", "a value is left open" or what makes the circuit unworkable.
+    The words are "infinite" with the reason where it is plain, "a value is left open", or what makes the
+    circuit unworkable.
     """
     changed = _resistive(circuit)
     changed[element.name] = "open"
@@ -139,11 +142,21 @@ def resistance_seen(circuit: SmallSignal, element: Capacitor | Inductor) -> tupl
             return None, "a value is left open"
         find = Find("Z", Place(circuit.topology.file, 0), "impedance", nodes=(first, second))
         if not {first, second} <= {*nodes_of(rewired.circuit), GROUND}:
-            return None, "infinite"
+            return None, _infinite(circuit, element)
         found = driving_point(rewired.circuit, find)
     except InputError as error:
         return None, error.what
-    return (None, "infinite") if found is None else (found, "")
+    return (None, _infinite(circuit, element)) if found is None else (found, "")
+
+
+def _infinite(circuit: SmallSignal, element: Capacitor | Inductor) -> str:
+    """Word an infinite resistance; where the part alone carries on the current of a drive, that is said."""
+    for node in element.between:
+        others = [item for item in circuit.elements if item != element and node in ends_of(item)]
+        drives = [drive for drive in circuit.drives if node in drive.nodes]
+        if not others and len(drives) == 1 and isinstance(drives[0], CurrentDrive):
+            return f"infinite: in series with the current drive {drives[0].name}"
+    return "infinite"
 
 
 def _resistive(circuit: SmallSignal) -> dict[str, State]:

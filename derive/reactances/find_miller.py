@@ -27,6 +27,7 @@ from derive.normalise.form import NominalNumbers, NormalForm
 from derive.normalise.numbers import values_of
 from derive.reactances.miller import MillerView
 from derive.reactances.miller_bridges import Bridge, bridges
+from derive.reactances.miller_cause import cause_of_change
 from derive.reactances.miller_errors import compare, corners
 from derive.reactances.miller_gain import NodeGain, NodeGains
 from derive.reactances.miller_judgement import judge
@@ -37,7 +38,8 @@ from derive.readable.vocabulary import Vocabulary
 MOST_CAPACITORS = 6
 MOST_UNKNOWNS = 6
 # Ratios of more terms than this are not rewritten: to seek their shortest form would be felt.
-GAIN_TERMS = 10
+GAIN_TERMS = 40
+# Up to here 1 − A_0 is sought anew; beyond, the gain is put into it as it is written.
 FACTOR_TERMS = 6
 
 
@@ -118,7 +120,7 @@ def _normalised(
     return (
         ONE,
         *(
-            _read(writer, vocabulary, found.get(power, zero), found[0], FACTOR_TERMS)
+            _read(writer, vocabulary, found.get(power, zero), found[0], GAIN_TERMS)
             for power in range(1, max(found) + 1)
         ),
     )
@@ -160,7 +162,9 @@ def _with_numbers(view: MillerView, system: NodalSystem, bridge: Bridge, gain: N
     if comparison is None:
         return replace(view, halves=halves)
     own = [root for part in (gain.top, gain.bottom) for root in corners(_dense(gain.ring, part, values))]
-    usable, reasons = judge(comparison, at_zero, own, (bridge.near, bridge.far))
+    nodes, capacitor = (bridge.near, bridge.far), bridge.capacitor.capacitance
+    cause = cause_of_change(gain, circuit, values)
+    usable, reasons = judge(comparison, at_zero, own, nodes, capacitor=capacitor, cause=cause)
     return replace(
         view,
         errors=comparison.errors,

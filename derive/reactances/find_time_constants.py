@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from fractions import Fraction
 
+from derive.algebra.ratio import coefficients
 from derive.devices.elements import Capacitor, Coupling, Inductor, SmallSignal
 from derive.eliminate.derivation import Derivation
-from derive.expressions.tree import Expression
+from derive.expressions.tree import ONE, Expression
 from derive.normalise.form import NormalForm
 from derive.reactances.constants import completed, table_row
-from derive.reactances.expansion import Expansion, determinants, expand, hidden_factor
+from derive.reactances.expansion import Expansion, Ratio, determinants, expand, hidden_factor
+from derive.reactances.hidden import hidden_symbols, sentence, without
+from derive.reactances.inactive import at_the_origin
 from derive.reactances.products import (
     denominator_coefficients,
     highest_power,
@@ -29,6 +32,18 @@ from derive.readable.vocabulary import Vocabulary
 STATES_LIMIT, UNKNOWNS_LIMIT = 8, 8
 TABLE_STATES_LIMIT, TABLE_UNKNOWNS_LIMIT, TABLE_TERMS_LIMIT = 16, 16, 20_000
 _UNKNOWN: tuple[Expression, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class _Cancelled:
+    """What the circuit has and the response has not."""
+
+    says: str = ""
+    readable: tuple[Expression, ...] = ()
+    symbols: tuple[str, ...] = ()
+
+
+_NOTHING = _Cancelled()
 
 
 def find_time_constants(
@@ -50,29 +65,49 @@ def find_time_constants(
         )
     reader = Reader.of(derivation, vocabulary)
     remarks: list[str] = []
-    found, hidden = None, _UNKNOWN
+    found, hidden, cancelled = None, _UNKNOWN, _NOTHING
     if len(states) <= STATES_LIMIT and unknowns <= UNKNOWNS_LIMIT:
         found = determinants(derivation.system, derivation.plan)
     expansion = None if found is None else expand(derivation, found)
     if found is None:
         remarks.append("the circuit is too large for coefficients as sums of products")
     else:
-        hidden = tuple(reader.raw(*ratio) for ratio in hidden_factor(derivation, found[1]))
+        factor = hidden_factor(derivation, found[1])
+        hidden = tuple(reader.raw(*ratio) for ratio in factor)
+        if len(factor) > 1:
+            cancelled = _cancelled(derivation, reader, factor)
     opened = _table(reader, circuit, expansion, states, "open-circuit", remarks)
     closed: tuple[TimeConstant, ...] = ()
     if _has_low_corners(circuit, form):
         closed = _table(reader, circuit, expansion, states, "short-circuit", remarks)
-    coefficients = _coefficients(reader, form, expansion, remarks)
+    own = expansion
+    if cancelled.says:
+        own = without(expansion, cancelled.symbols) if expansion and cancelled.symbols else None
+    products = _coefficients(reader, derivation, form, own, remarks)
     remarks += _about_circuit(circuit, states)
-    written = [item for each in coefficients for product in each.products for item in [product.readable]]
+    written = [item for each in products for product in each.products for item in [product.readable]]
     return TimeConstants(
-        _with_shares(opened, coefficients, reader),
+        _with_shares(opened, () if cancelled.says else products, reader),
         closed,
-        coefficients,
+        products,
         hidden,
         "; ".join(dict.fromkeys(remarks)),
-        definitions_used(written, vocabulary),
+        definitions_used([*written, *cancelled.readable], vocabulary),
+        cancelled.says,
+        cancelled.readable,
+        cancelled.symbols,
     )
+
+
+def _cancelled(derivation: Derivation, reader: Reader, factor: tuple[Ratio, ...]) -> _Cancelled:
+    """Say which modes the response does not show."""
+    symbols = hidden_symbols(derivation, factor)
+    ring = derivation.system.ring.plain()
+    readable = tuple(ONE if not power else reader.readable(*ratio) for power, ratio in enumerate(factor))
+    sides = (derivation.numerator, derivation.denominator)
+    own = any(len(coefficients(ring, side, "s")) > 1 for side in sides)
+    says = sentence(derivation.system.find.name, readable, symbols, coefficients=own)
+    return _Cancelled(says, readable, symbols)
 
 
 def _has_low_corners(circuit: SmallSignal, form: NormalForm) -> bool:
@@ -148,7 +183,11 @@ def _with_shares(
 
 
 def _coefficients(
-    reader: Reader, form: NormalForm, expansion: Expansion | None, remarks: list[str]
+    reader: Reader,
+    derivation: Derivation,
+    form: NormalForm,
+    expansion: Expansion | None,
+    remarks: list[str],
 ) -> tuple[Coefficient, ...]:
     if expansion is None:
         return ()
@@ -156,13 +195,7 @@ def _coefficients(
     if base is None:
         remarks.append("so b_1 and higher are no sums of time constants")
         return ()
-    for state in expansion.among(base):
-        why = {
-            "capacitor": f"{state.symbol} sees an open circuit at DC",
-            "inductor": f"{state.symbol} sees a short at DC",
-            "op amp": f"the op amp of {state.symbol} has nothing that feeds DC back",
-        }[state.kind]
-        remarks.append(f"{why}: it brings a pole at zero frequency and no part of b_1 and higher")
+    remarks += at_the_origin(derivation, form, expansion, base)
     found = list(denominator_coefficients(reader, expansion, base))
     remarks += _left_out("b", len(found), highest_power(expansion.bottom, base))
     for mask in expansion.bottom:

@@ -11,12 +11,17 @@ from derive.readable.form import Definition
 
 @dataclass(frozen=True, slots=True)
 class MillerError:
-    """What the approximation makes of one quantity, and the truth; `error` is relative and signed."""
+    """What the approximation makes of one quantity, and the truth; `error` is relative and signed.
+
+    A pair of poles stands once, by its upper member. Roots in opposite half-planes, or a real one against
+    a pair, have no error (None): `says` tells why. `exact` is None for a pole that the circuit has not.
+    """
 
     name: str
     approximate: complex
-    exact: complex
-    error: float
+    exact: complex | None
+    error: float | None
+    says: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,7 +32,8 @@ class MillerView:
     capacitor in place (`gain_numerator`, `gain_denominator`: coefficients by rising power, `gain` its value
     at zero frequency). `input_factor` is 1 − A_0, `output_factor` 1 − 1/A_0, each times the capacitor.
     `errors` compares the response with both halves in the capacitor's place; () where a value is open.
-    `usable` says whether the approximation may be used, `reasons` why not (or within what).
+    `usable` says whether the approximation may be used, if only for the pole that is judged, `reasons` why
+    not (or within what). That is the first pole, unless it does not follow the capacitor.
 
     `halves` is the two halves' value in farads, near and far, None where a value is open; one may be
     negative. `missing_zeros` are the response's zeros, in rad/s, that the approximation does not have.

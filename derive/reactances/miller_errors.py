@@ -19,7 +19,16 @@ from derive.reactances.miller import MillerError
 from derive.reactances.miller_bridges import Bridge
 from derive.topology.topology import GROUND, Find
 
-ORDINALS = ("first", "second")
+# Poles beyond these are named by nobody.
+ORDINALS = ("first", "second", "third", "fourth", "fifth", "sixth", "seventh", "eighth")
+# As many poles are compared in any case.
+COMPARED = 2
+WRONG_SIDE = "wrong half-plane"
+NOT_THERE = "the circuit has no such pole"
+# A capacitor is changed by this part to see which poles follow it; one that does so by less than a
+# hundredth of that does not.
+STEP = Fraction(1, 10**6)
+FOLLOWS = 0.01
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,15 +51,17 @@ class Landmarks:
 
     @property
     def upper_poles(self) -> tuple[complex, ...]:
-        """The poles from the first on."""
-        return self.poles[self.first :]
+        """The poles from the first on, a pair once: its upper member."""
+        return tuple(pole for pole in self.poles[self.first :] if pole.imag >= 0)
 
 
 @dataclass(frozen=True, slots=True)
 class Comparison:
     """What the approximation makes of the response; `approximate` is None where it has no solution.
 
-    `same` says that the two responses are equal exactly, for all s.
+    `same` says that the two responses are equal exactly, for all s. `judged` is the place among the upper
+    poles of the one to judge by: the first, or where that one does not follow the capacitor, the one that
+    follows it most.
     """
 
     exact: Landmarks
@@ -59,6 +70,7 @@ class Comparison:
     errors: tuple[MillerError, ...]
     missing_zeros: tuple[complex, ...]
     further_zeros: tuple[complex, ...]
+    judged: int = 0
 
 
 def compare(
@@ -72,14 +84,36 @@ def compare(
     if exact is None or exact.is_zero:
         return None
     truth = _landmarks(exact)
+    judged = _judged(circuit, find, bridge, truth)
     found = exact_response(_with_halves(circuit, bridge, halves), find)
     if found is None or found.is_zero:
-        return Comparison(truth, None, False, (), truth.zeros, ())
+        return Comparison(truth, None, False, (), truth.zeros, (), judged)
     guess = _landmarks(found)
     pairs, missing, further = _paired(guess.zeros, truth.zeros)
-    return Comparison(
-        truth, guess, _scaled(exact) == _scaled(found), _errors(guess, truth, pairs), missing, further
+    errors = _errors(guess, truth, pairs, judged)
+    same = _scaled(exact) == _scaled(found)
+    return Comparison(truth, guess, same, errors, missing, further, judged)
+
+
+def _judged(circuit: SmallSignal, find: Find, bridge: Bridge, truth: Landmarks) -> int:
+    """Give the place of the upper pole to judge by."""
+    name = bridge.capacitor.capacitance
+    symbols = tuple(
+        replace(symbol, value=symbol.value * (1 + STEP))
+        if symbol.name == name and symbol.value is not None
+        else symbol
+        for symbol in circuit.symbols
     )
+    moved = exact_response(replace(circuit, symbols=symbols), find)
+    if moved is None or moved.is_zero:
+        return 0
+    others = _landmarks(moved).upper_poles
+    if len(others) != len(truth.upper_poles) or not others:
+        return 0
+    pairs = zip(others, truth.upper_poles, strict=True)
+    shifts = [abs(one - other) / abs(other) / float(STEP) for one, other in pairs]
+    place = shifts.index(max(shifts))
+    return 0 if shifts[0] >= FOLLOWS or shifts[place] < FOLLOWS or place >= len(ORDINALS) else place
 
 
 def _with_halves(circuit: SmallSignal, bridge: Bridge, halves: tuple[Fraction, Fraction]) -> SmallSignal:
@@ -119,23 +153,42 @@ def _scaled(response: ExactResponse) -> tuple[tuple[Fraction, ...], tuple[Fracti
 
 
 def _errors(
-    guess: Landmarks, truth: Landmarks, zeros: Sequence[tuple[complex, complex]]
+    guess: Landmarks, truth: Landmarks, zeros: Sequence[tuple[complex, complex]], judged: int
 ) -> tuple[MillerError, ...]:
     found = []
     if guess.power == truth.power:
         gain = float((guess.gain - truth.gain) / truth.gain)
         found.append(MillerError("gain", complex(guess.gain), complex(truth.gain), gain))
-    # The pole at the same place of each, if both have it: the numbers of poles may differ.
-    both = zip(ORDINALS, guess.poles[truth.first :], truth.upper_poles, strict=False)
-    found += [_error(f"{ordinal} pole", *pair) for ordinal, *pair in both]
+    found += _errors_of_poles(guess, truth, judged)
     for count, (approximate, exact) in enumerate(zeros, 1):
         found.append(_error("zero" if len(zeros) == 1 else f"zero {count}", approximate, exact))
     return tuple(found)
 
 
+def _errors_of_poles(guess: Landmarks, truth: Landmarks, judged: int) -> list[MillerError]:
+    """Compare poles at the same place, as their numbers may differ; a false one on the right is always told."""
+    found = []
+    own = tuple(pole for pole in guess.poles[truth.first :] if pole.imag >= 0)
+    stable = all(pole.real <= 0 for pole in truth.poles)
+    for place, (ordinal, pole) in enumerate(zip(ORDINALS, own, strict=False)):
+        there = place < len(truth.upper_poles)
+        false = pole.real > 0 and stable
+        name = f"{ordinal} pole"
+        if there and (false or place < max(COMPARED, judged + 1)):
+            found.append(_error(name, pole, truth.upper_poles[place]))
+        elif false:
+            found.append(MillerError(name, pole, None, None, NOT_THERE))
+    return found
+
+
 def _error(name: str, approximate: complex, exact: complex) -> MillerError:
-    """Compare two roots: real ones with their signs, others by their distance from the origin."""
-    if approximate.imag or exact.imag:
+    """Compare two roots: real ones with their signs, pairs by their distance from the origin."""
+    if approximate.real * exact.real < 0:
+        return MillerError(name, approximate, exact, None, WRONG_SIDE)
+    if bool(approximate.imag) != bool(exact.imag):
+        says = "real, and no pair" if exact.imag else "a pair, and not real"
+        return MillerError(name, approximate, exact, None, says)
+    if exact.imag:
         return MillerError(name, approximate, exact, abs(approximate) / abs(exact) - 1)
     # Plus zero, so that no difference is never minus zero.
     return MillerError(name, approximate, exact, (approximate.real - exact.real) / exact.real + 0.0)

@@ -14,6 +14,7 @@ from itertools import combinations
 from derive.algebra.ring import Polynomial
 from derive.expressions.polynomials import divide, multiply
 from derive.expressions.tree import Expression, Name
+from derive.reactances.cancel import multiplied
 from derive.reactances.expansion import Expansion
 from derive.reactances.reader import Reader, shares, times
 from derive.reactances.time_constants import Coefficient, Product
@@ -25,6 +26,8 @@ COST_LIMIT = 180
 # Up to this power products are given in any case, beyond the limit as ratios multiplied out.
 ALWAYS = 2
 HIGHEST = 4
+# What cancels within a product is written anew where both its polynomials have no more terms than this.
+SHORT = 6
 
 
 def denominator_coefficients(reader: Reader, expansion: Expansion, base: int) -> Iterator[Coefficient]:
@@ -37,7 +40,9 @@ def denominator_coefficients(reader: Reader, expansion: Expansion, base: int) ->
             term = _term(reader, expansion, groups, base, mask)
             readable = term
             if read and order is not None:
-                readable = multiply(list(_chain(reader, expansion, base, order)))
+                readable, cancels = multiplied(list(_chain(reader, expansion, base, order)))
+                if cancels and len(groups[base | mask]) + len(groups[base]) <= SHORT:
+                    readable = _whole(reader, expansion, groups, base, mask)
             elif read:
                 readable = _whole(reader, expansion, groups, base, mask)
             products.append(Product(_symbols(expansion, mask, order), term, readable, None))

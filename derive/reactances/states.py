@@ -26,7 +26,7 @@ from derive.devices.elements import (
 )
 from derive.nodal.voltages import groups
 from derive.nodal.write import element_nodes, nodes_of
-from derive.topology.topology import GROUND, Find
+from derive.topology.topology import GROUND, Find, Place
 
 Pair = tuple[str, str]
 
@@ -118,10 +118,8 @@ def at_dc(element: OnePoleGain) -> OnePoleGain | VirtualShort:
 
 def port_find(circuit: SmallSignal, port: Pair, name: str) -> Find:
     """Give the wish for the resistance between two nodes."""
-    place = (
-        circuit.topology.finds[0].place if circuit.topology.finds else circuit.topology.drives[0].place
-    )
-    return Find(name, place, "impedance", nodes=port)
+    # No line of the file asks for it, so no message can name one.
+    return Find(name, Place(circuit.topology.file, 1), "impedance", nodes=port)
 
 
 def _open_end(taken: set[str], node: str, element: str) -> str:

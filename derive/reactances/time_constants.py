@@ -23,7 +23,7 @@ class TimeConstant:
     None where the resistance is infinite. `constant` is the time constant in symbols, None where it is
     infinite. `seconds` is None where it is infinite or a value is open. `share` is its part of b_1
     of the circuit's own polynomial (the sum of all, and of what op amps' own poles add; for short-circuit
-    ones of the sum of reciprocals), None likewise.
+    ones of the sum of reciprocals), None likewise. Where modes are hidden it is its part of the sum of all.
     """
 
     part: str
@@ -62,8 +62,7 @@ class Coefficient:
     """A coefficient of the normal form as a sum of products of time constants (times transfer ratios).
 
     `name` is b_1, b_2, a_1, …. `products` holds the terms that are not zero; their sum equals the
-    coefficient of the circuit's own polynomial, which is that of the normal form unless the two share
-    a factor (`TimeConstants.hidden`).
+    coefficient of the normal form.
     """
 
     name: str
@@ -76,9 +75,12 @@ class TimeConstants:
 
     `hidden` is the factor 1 + f_1·s + … by its coefficients that the circuit's own polynomial has beyond the
     response's denominator: modes that this response does not show; (1,) where there are none, () where
-    that was not looked for because the circuit is too large.
+    that was not looked for because the circuit is too large. Where there are some, `hidden_says` tells so
+    in sentences to stand before the table, `hidden_readable` is the same factor for reading, and
+    `hidden_symbols` are the parts whose modes these are, () where they cannot be told from those of the
+    response: then there are no coefficients.
     `remark` says in words why something could not be given, "" where nothing is missing. `definitions`
-    are those that the readable forms of the products use.
+    are those that the readable forms of the products and of the hidden factor use.
     """
 
     open_circuit: tuple[TimeConstant, ...]
@@ -87,3 +89,6 @@ class TimeConstants:
     hidden: tuple[Expression, ...]
     remark: str = ""
     definitions: tuple[Definition, ...] = ()
+    hidden_says: str = ""
+    hidden_readable: tuple[Expression, ...] = ()
+    hidden_symbols: tuple[str, ...] = ()

@@ -8,10 +8,9 @@ from dataclasses import dataclass
 from derive.algebra.ring import Polynomial
 from derive.expressions.polynomials import add
 from derive.expressions.tree import ONE, Expression, Name, Negative, Product
-from derive.expressions.walk import children_of, substitute, with_children
+from derive.expressions.walk import children_of, names_of, substitute, with_children
 from derive.quantities.dimension import (
     CAPACITANCE,
-    CONDUCTANCE,
     FREQUENCY,
     INDUCTANCE,
     RATIO,
@@ -30,7 +29,7 @@ CLUSTER = NAME + 2
 # A sum of time constants, each with its part, is what is asked for, even where another form is shorter.
 PER_PART = 1_000
 # (1 + 1/β)·g_m/C is worth a sign or two more than (1 + β)/(r_π·C).
-CORNER_BONUS = NAME + 2
+CORNER_BONUS = NAME + 6
 # Of ratios with more terms than this, not every way of writing the transistors is searched through.
 SEARCH_ALL = 30
 # Of longer ones fewer forms are tried, and of very long ones only common factors are taken out.
@@ -47,12 +46,14 @@ def candidates(space: Workspace, ratio: Ratio, vocabulary: Vocabulary) -> Iterat
     if len(reactive) > 1:
         yield desk.per_part(ratio, reactive), PER_PART if alone else 0
     if len(reactive) <= 1 or not alone:
-        corner = _dimension(space, ratio, vocabulary) == FREQUENCY
-        yield desk.form(ratio, deep=alone, corner=corner), CORNER_BONUS if corner else 0
-        if corner:
+        if _dimension(space, ratio, vocabulary) == FREQUENCY:
+            form = desk.form(ratio, deep=alone, corner=True)
+            yield form, CORNER_BONUS if _in_g_m(form, vocabulary.junctions) else 0
             # 1/(R·C) where R is easier to read than its reciprocal.
-            inverse = desk.form(space.ratio(ratio.bottom, ratio.top, ratio.minus), corner=None)
+            inverse = desk.form(space.ratio(ratio.bottom, ratio.top, ratio.minus))
             yield desk.composer.quotient(ONE, inverse), 0
+        else:
+            yield desk.form(ratio, deep=alone), 0
         if vocabulary.amplifiers & set(space.names(ratio.top, ratio.bottom)):
             yield _Desk(space, vocabulary, desk.composer, ideal=True).form(ratio), AMPLIFIER_BONUS
 
@@ -64,11 +65,11 @@ class _Desk:
     composer: Composer
     ideal: bool = False
 
-    def form(self, ratio: Ratio, *, deep: bool = True, corner: bool | None = False) -> Expression:
+    def form(self, ratio: Ratio, *, deep: bool = True, corner: bool = False) -> Expression:
         """Give the shortest form in any of the transistors' words, one transistor after the other.
 
         Not `deep`: the words are chosen by how long the ratio looks as one fraction, and only those searched.
-        A `corner` frequency is written with g_m/C and not with r_e, its reciprocal (None) with neither.
+        A `corner` frequency is written with g_m/C and not with r_e.
         """
         space = self.space
         best: Expression | None = None
@@ -102,12 +103,15 @@ class _Desk:
         self, ratio: Ratio, reactive: Sequence[tuple[tuple[str, ...], Polynomial]]
     ) -> Expression:
         """Give a sum over the parts: each with the resistance that it sees, the largest first."""
-        terms = []
+        shared: dict[Expression, list[Expression]] = {}
         for names, top in reactive:
             part = self.space.ratio(top, ratio.bottom, ratio.minus)
-            products = self.composer.product([Name(name) for name in names])
             coefficient = self.form(part, deep=len(names) == 1)
-            terms.append(self.composer.product([products, coefficient]))
+            # Parts that see the same stand in one bracket: R·(C_1 + C_2).
+            shared.setdefault(coefficient, []).append(
+                self.composer.product([Name(name) for name in names])
+            )
+        terms = [self.composer.product([add(parts), seen]) for seen, parts in shared.items()]
         sizes = [magnitude(term, self.vocabulary.values) for term in terms]
         if None not in sizes:
             order = sorted(range(len(terms)), key=lambda k: (-(sizes[k] or 0.0), k))
@@ -144,6 +148,12 @@ class _Desk:
         return self.composer.sum(pair) if cluster.way == "series" else self.composer.parallel(pair)
 
 
+def _in_g_m(form: Expression, junctions: Sequence[Junction]) -> bool:
+    """Whether a corner is written with g_m and β alone: (1 + 1/β)·g_m/C."""
+    used = set(names_of(form))
+    return any(j.g_m in used and j.r_pi not in used and j.beta in used for j in junctions)
+
+
 def _with_words(expression: Expression, junctions: Sequence[Junction]) -> Expression:
     """Write β for every product of g_m and r_π that is left."""
     if isinstance(expression, Product):
@@ -169,7 +179,6 @@ def _composer(vocabulary: Vocabulary) -> Composer:
     return Composer(
         {name: place for place, name in enumerate(vocabulary.order)},
         frozenset(name for name, dimension in dimensions.items() if dimension == RATIO),
-        frozenset(name for name, dimension in dimensions.items() if dimension == CONDUCTANCE),
     )
 
 

@@ -31,11 +31,10 @@ from derive.expressions.walk import children_of, names_of
 
 @dataclass(frozen=True, slots=True)
 class Composer:
-    """Knows each name's place in a product; `words` are pure numbers such as β, `gains` transconductances."""
+    """Knows each name's place in a product; `words` are pure numbers such as β."""
 
     rank: Mapping[str, int]
     words: frozenset[str]
-    gains: frozenset[str]
 
     def product(self, factors: Sequence[Expression]) -> Expression:
         """Multiply; signs go to the front, divisors share one fraction bar."""
@@ -170,10 +169,10 @@ class Composer:
         return (4 if isinstance(term, Product) else 5), self._rank_of(term)
 
     def _miller(self, factor: Expression) -> bool:
-        """Whether a factor is 1 + g·R."""
+        """Whether a factor is 1 + g·R, and not 1 + β alone."""
         if not (isinstance(factor, Sum) and ONE in factor.terms):
             return False
-        return any(name in self.gains for name in names_of(factor))
+        return not set(names_of(factor)) <= self.words
 
     def _rank_of(self, expression: Expression) -> int:
         return min((self.rank.get(name, 0) for name in names_of(expression)), default=0)

@@ -15,7 +15,8 @@ class ReadableForm:
 
     Their trees may hold `Parallel`. `definitions` are the names that they use beyond the circuit's
     symbols (β = g_m·r_π), in an order in which each needs symbols and earlier ones only. `far_gain` is
-    the response far above all corners where it is zero at zero frequency, None elsewhere.
+    the response far above all corners where it is zero at zero frequency, None elsewhere. The factors are
+    those of numerator and denominator in s, each by its coefficients, () where one does not come apart.
     """
 
     gain: Expression
@@ -23,3 +24,13 @@ class ReadableForm:
     denominator: tuple[Expression, ...]
     definitions: tuple[Definition, ...] = ()
     far_gain: Expression | None = None
+    numerator_factors: tuple[tuple[Expression, ...], ...] = ()
+    denominator_factors: tuple[tuple[Expression, ...], ...] = ()
+
+    @property
+    def expressions(self) -> tuple[Expression, ...]:
+        """Everything that is written for reading."""
+        far = () if self.far_gain is None else (self.far_gain,)
+        factors = (*self.numerator_factors, *self.denominator_factors)
+        entries = (entry for factor in factors for entry in factor)
+        return (self.gain, *self.numerator, *self.denominator, *far, *entries)

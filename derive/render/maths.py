@@ -25,6 +25,7 @@ from derive.sheet.document import (
     Text,
     unfolded,
 )
+from derive.sheet.wording import marked
 
 # The columns of the A4 page in em of the text that stands in them; print.css holds the same in mm.
 COLUMN_EM = 32.0
@@ -243,6 +244,7 @@ def _lines(block: object) -> Iterator[tuple[Line, float]]:
             yield block.reason, REASON_EM
         case Table():
             limit = cell_em(block)
+            yield marked(block.caption), PARAGRAPH_EM
             for column in block.columns:
                 yield column.heading, limit
             for row in block.rows:

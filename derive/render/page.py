@@ -37,6 +37,7 @@ from derive.sheet.document import (
     Table,
     Text,
 )
+from derive.sheet.wording import marked
 
 # What no page may hold: halves of surrogate pairs, and control characters but for tab and line end.
 _UNPRINTABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f\ud800-\udfff\ufffe\uffff]")
@@ -51,7 +52,7 @@ _KINDS: dict[type, str] = {
     Folded: "folded",
 }
 _LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
-_SHORT_TABLE = 6  # rows: a longer one may begin at the foot of a page and go on
+_SHORT_TABLE = 8  # rows: a longer one may begin at the foot of a page and go on
 _FEW_COLUMNS = 2  # spread over the whole page, the eye would lose the row
 _MANY_COLUMNS = 8
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
@@ -119,6 +120,10 @@ class Page:
         line: Line = (Text(heading.title),)
         return self.words((*line, Text(" "), heading.about) if heading.about else line, PARAGRAPH_EM)
 
+    def caption(self, block: Table) -> Markup:
+        """Return the caption of a table, names such as A_v in it set as maths."""
+        return self.words(marked(block.caption), PARAGRAPH_EM)
+
     def cell(self, line: Line, limit: float) -> Markup:
         """Return the words of a cell of a table whose formulas have this width in em."""
         return self.words(line, limit)
@@ -167,6 +172,10 @@ class Page:
     def kind(self, block: Block) -> str:
         """Return the name of the template that writes a block."""
         return _KINDS[type(block)]
+
+    def leads_to(self, block: Block | None) -> bool:
+        """Say whether words before a block belong to it, and are not to be parted from it by a page's end."""
+        return isinstance(block, Display | Table | Plot)
 
     def is_short(self, block: Table) -> bool:
         """Say whether a table is short enough to be kept on one page."""
@@ -301,6 +310,8 @@ def _kept(blocks: tuple[Block, ...]) -> int:
     """
     match blocks:
         case (Paragraph(), Display(), *_):
+            return 2
+        case (Paragraph(), Table(_, _, rows), *_) if len(rows) <= _SHORT_TABLE:
             return 2
         case (Table(_, _, rows), *_) if len(rows) > _SHORT_TABLE:
             return 0

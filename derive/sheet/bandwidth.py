@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+from derive.estimates.bandwidth import AT
 from derive.estimates.estimates import Bandwidth
+from derive.estimates.response import fraction_of, positive_roots, response_of
 from derive.sheet.document import Line, Text
 from derive.sheet.figures import hertz
 from derive.sheet.view import View, views
@@ -12,6 +14,19 @@ def bandwidth_of(view: View) -> Bandwidth | None:
     """Give the bandwidth of a result; None where there is none."""
     estimates = view.result.solution.estimates
     return estimates.bandwidth if estimates else None
+
+
+def peak_of(view: View) -> tuple[float, float] | None:
+    """Give magnitude and frequency of the peak that the pass band lies around; None where it is no peak."""
+    found, solution = bandwidth_of(view), view.result.solution
+    if found is None or solution.numbers is None or AT["peak"] not in found.reference_says:
+        return None
+    response = response_of(solution.numbers, solution.form.power_of_s)
+    roots = positive_roots(response.slope) if response else []
+    if response is None or not roots:
+        return None
+    highest = max(roots, key=lambda root: fraction_of(response.square_at(root.ball)))
+    return found.reference, highest.hertz
 
 
 def pass_band(view: View) -> Line:

@@ -23,7 +23,7 @@ from derive.expressions.tree import (
 from derive.expressions.walk import children_of
 from derive.normalise import normalise
 from derive.readable.form import ReadableForm
-from derive.readable.measure import leaves, measure
+from derive.readable.measure import leaves
 from derive.sheet.document import Line, Text
 from derive.sheet.figures import root_in_hertz
 from derive.sheet.nested import is_nested, short_equation
@@ -31,8 +31,12 @@ from derive.sheet.view import View
 
 # Up to so many names and numbers a final equation is shown whole, without names for its coefficients.
 EXPLICIT_LEAVES = 14
+# Factors of a polynomial, all of them together, stand in the box up to so many.
+FACTORS_LEAVES = 20
 # A gain of up to so many stands in the box itself where only the corner has a name.
 SHORT_GAIN = 9
+# A coefficient of s² or more that has more names and numbers than this is not read at a glance.
+LONG_COEFFICIENT = 20
 CORNER, PASS_BAND, ZERO_CORNER = "omega_L", "K_p", "omega_z"
 
 
@@ -81,9 +85,27 @@ def coefficient_name(view: View, letter: str, power: int) -> str:
     return (step.subject if step else None) or f"{letter}_{power}"
 
 
+def coefficient_of(view: View, entry: Named) -> tuple[str, int] | None:
+    """Give which coefficient a name in the box stands for, ("b", 2); None where it is none."""
+    for (letter, power), step in coefficient_steps(view).items():
+        if step.number == entry.step and entry.name == coefficient_name(view, letter, power):
+            return letter, power
+    return None
+
+
+def is_long(view: View, entry: Named) -> bool:
+    """Whether a name stands for a coefficient of s² or more that is too long, or beside one too long, for a glance."""
+    which, read = coefficient_of(view, entry), reading(view)
+    if which is None or which[1] < 2:
+        return False
+    beside = read.numerator if which[0] == "a" else read.denominator
+    return any(leaves(value) > LONG_COEFFICIENT for value in beside[2:] if value != ZERO)
+
+
 def final(view: View) -> Final:
     """Give the final equation: explicit when short, else with names for gain and coefficients.
 
+    A gain that would be all there is to name is written out, however long it is.
     A response with one zero at the origin and one pole is written by its corner, K/(1 + ω_L/s); a zero
     by itself by its corner too where it lies in the right half-plane: 1 − s/ω_z.
     """
@@ -93,13 +115,17 @@ def final(view: View) -> Final:
     corner = _with_corner(view, read, power)
     if corner is not None:
         return corner
-    if _is_short(read):
+    if _is_short(read) or (read.gain != ONE and read.numerator == read.denominator == (ONE,)):
         zero = _zero_of(view, read) if _turned(read.numerator) else None
         pair = _pair_of(view)
         above = _polynomial(read.numerator) if zero is None else zero[0]
         below = _polynomial(read.denominator) if pair is None else pair[0]
         named = (*(() if zero is None else (zero[1],)), *(() if pair is None else pair[1]))
-        return Final(Equation(Name(view.name), _response(read.gain, power, above, below)), named)
+        value = _response(read.gain, power, above, below)
+        if not _is_short(read):
+            step = view.step(normalise.GAIN)
+            value = view.shown(value, step.number if step else 0)
+        return Final(Equation(Name(view.name), value), named)
     return _with_names(view, read, power)
 
 
@@ -135,19 +161,33 @@ def _with_names(view: View, read: ReadableForm, power: int) -> Final:
         gain = Name((step.subject if step else None) or "K")
         named.append(Named(gain.text, read.gain, (), step.number if step else None))
     zero = _zero_of(view, read)
-    if zero is None:
+    if zero is None and _come_apart(read.numerator_factors):
+        above = _product_of(read.numerator_factors)
+    elif zero is None:
         above = _named_polynomial(view, "a", read.numerator, named)
     else:
         above = zero[0]
         named.append(zero[1])
     pair = _pair_of(view)
-    if pair is None:
+    if pair is None and _come_apart(read.denominator_factors):
+        below = _product_of(read.denominator_factors)
+    elif pair is None:
         below = _named_polynomial(view, "b", read.denominator, named)
     else:
         below = pair[0]
         named += pair[1]
     value = _response(gain, power, above, below, draw_in=False)
     return Final(Equation(Name(view.name), value), tuple(named))
+
+
+def _come_apart(factors: tuple[tuple[Expression, ...], ...]) -> bool:
+    """Whether a polynomial is the product of factors that are short enough to stand in the box."""
+    lengths = [leaves(entry) for factor in factors for entry in factor[1:] if entry != ZERO]
+    return len(factors) > 1 and sum(lengths) <= FACTORS_LEAVES
+
+
+def _product_of(factors: tuple[tuple[Expression, ...], ...]) -> Expression:
+    return multiply([_polynomial(factor) for factor in factors])
 
 
 def _zero_of(view: View, read: ReadableForm) -> tuple[Expression, Named] | None:
@@ -191,11 +231,11 @@ def _pair_of(view: View) -> tuple[Expression, tuple[Named, ...]] | None:
 
 
 def _corner(view: View, kind: Literal["pole", "zero"], coefficient: Expression) -> Expression:
-    """Give the corner of 1 + coefficient·s, 1/coefficient or as it was found in closed form."""
+    """Give the corner of 1 + coefficient·s as it was found in closed form, else 1/coefficient."""
     found = divide(ONE, coefficient.operand if isinstance(coefficient, Negative) else coefficient)
     estimates = view.result.solution.estimates
     roots = [form.readable for form in (estimates.closed_forms if estimates else ()) if form.of == kind]
-    return min([found, *roots[:1]], key=measure) if len(roots) == 1 else found
+    return roots[0] if len(roots) == 1 else found
 
 
 def _turned(numerator: tuple[Expression, ...]) -> bool:

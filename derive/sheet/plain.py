@@ -10,6 +10,7 @@ from derive.expressions.tree import Equation
 from derive.expressions.unicode_text import to_unicode
 from derive.normalise.form import NominalNumbers
 from derive.sheet.assumed import failed_assumptions
+from derive.sheet.bandwidth import peak_of
 from derive.sheet.compose import section_modules
 from derive.sheet.document import (
     Block,
@@ -26,8 +27,9 @@ from derive.sheet.document import (
     Table,
     Text,
 )
-from derive.sheet.figures import figure, newton_difference
-from derive.sheet.view import View, far_value, gain_dimension, views
+from derive.sheet.figures import figure, hertz, newton_difference
+from derive.sheet.tally import NOTHING_TO_JUDGE, kind_of, tally_of
+from derive.sheet.view import View, far_value, gain_dimension, power_of_s, views
 
 # What a terminal shows of a result, by the files of the sections; the rest with the steps.
 FIRST = ("glance",)
@@ -143,7 +145,8 @@ def _verdicts(view: View) -> Iterator[str]:
 
 
 def _verdict(verdict: Verdict) -> str:
-    return f"  {MARKS[verdict.passed]} {verdict.name}: {verdict.measured}"
+    lead = f"{NOTHING_TO_JUDGE}, " if kind_of(verdict) == NOTHING_TO_JUDGE else ""
+    return f"  {MARKS[verdict.passed]} {verdict.name}: {lead}{verdict.measured}"
 
 
 def line_text(line: Line) -> str:
@@ -180,11 +183,15 @@ def _bias_verdicts(outcome: Outcome) -> Iterator[str]:
 
 
 def _gain(view: View, numbers: NominalNumbers) -> str:
-    """Word the gain; far above all corners where it is zero at zero frequency and finite there."""
-    far = far_value(view, numbers)
+    """Word the gain in the pass band: far above all corners, at a peak, or at zero frequency."""
+    power = view.result.solution.form.power_of_s
+    far, peak = far_value(view, numbers), peak_of(view)
+    if peak is not None:
+        return f"{figure(peak[0], gain_dimension(view, -power))} at {hertz(peak[1])}"
     if far is not None:
-        return figure(far, gain_dimension(view, -view.result.solution.form.power_of_s))
-    return figure(numbers.gain, gain_dimension(view))
+        return figure(far, gain_dimension(view, -power))
+    factor = f", the factor of {to_unicode(power_of_s(power))}" if power else ""
+    return figure(numbers.gain, gain_dimension(view)) + factor
 
 
 def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
@@ -199,9 +206,8 @@ def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
         failed = [verdict.name for verdict in result.verdicts if verdict.passed is False]
         failed += [f"step {number}" for number, _ in result.broken_steps]
         failed += failed_assumptions(result)
-        good = sum(verdict.passed is True for verdict in result.verdicts)
-        count = f"{good} of {len(result.verdicts)}"
-        rows.append((view.title, gain, f"FAILED: {', '.join(failed)}" if failed else f"{count} passed"))
+        count = tally_of(result.verdicts).brief
+        rows.append((view.title, gain, f"FAILED: {', '.join(failed)}" if failed else count))
     if outcome.point is not None:
         passed = "passed" if outcome.point.passed else "FAILED"
         rows.append(("operating point", "", passed))

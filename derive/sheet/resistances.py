@@ -2,29 +2,38 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from derive.check.verdict import Outcome
-from derive.eliminate.derivation import Derivation
+from derive.eliminate.derivation import Derivation, Step
 from derive.expressions.polynomials import multiply
-from derive.expressions.tree import ONE, Name
+from derive.expressions.tree import ONE, Equation, Name
+from derive.expressions.walk import substitute
+from derive.nodal.voltages import fresh
 from derive.reactances.time_constants import TimeConstant, TimeConstants
+from derive.readable.measure import leaves
 from derive.sheet.document import Inline, Line, Maths, Text
 from derive.sheet.figures import percent
 from derive.sheet.view import View, views
 from derive.sheet.wording import Wording
 
+SEEN = "R_seen_"
 # As many shares as a line holds.
 MOST_SHARES = 5
 LEAST_SHARE = 1e-4
+COUNTS = dict(enumerate(("one", "two", "three", "four", "five", "six", "seven", "eight", "nine"), 1))
 
 
 @dataclass(frozen=True, slots=True)
 class Seen:
-    """The derivation of a resistance, the wording of its steps, and the result under which it stands."""
+    """The derivation of a resistance, its steps and their wording, and the result under which it stands.
+
+    The steps are those of the derivation with the resistance under the name that is printed.
+    """
 
     constant: TimeConstant
     derivation: Derivation
+    steps: tuple[Step, ...]
     wording: Wording
     place: int
 
@@ -49,19 +58,50 @@ def derivations(outcome: Outcome) -> tuple[Seen, ...]:
     for view in views(outcome):
         for constant in constants_of(view):
             derivation = constant.derivation
-            if derivation is None or _among(found, derivation) is not None:
+            if derivation is None or is_plain(constant) or _among(found, derivation) is not None:
                 continue
-            number = len(found) + 1
-            wording = Wording(derivation, f"R{number}.", f"seen-{number}")
-            found.append(Seen(constant, derivation, wording, view.place))
+            number, own = len(found) + 1, _renamed(derivation, name_of(constant))
+            wording = Wording(own, f"R{number}.", f"seen-{number}")
+            found.append(Seen(constant, derivation, own.steps, wording, view.place))
     return tuple(found)
 
 
-def derivation_of(view: View, constant: TimeConstant) -> Seen | None:
-    """Give the derivation of a resistance as it is printed, be it with this result or an earlier one."""
-    if constant.derivation is None:
-        return None
-    return _among(list(derivations(view.outcome)), constant.derivation)
+def is_plain(constant: TimeConstant) -> bool:
+    """Whether a resistance is a single part, or a name for several: its derivation would tell nothing."""
+    return constant.readable is not None and leaves(constant.readable) == 1
+
+
+def name_of(constant: TimeConstant) -> str:
+    """Give the name of a resistance in its own derivation as it is printed, "" where it has none.
+
+    R_seen_C_2 is what C_2 sees: R_C_2 would read as the second of the resistors R_C.
+    """
+    derivation = constant.derivation
+    if derivation is None or constant.kind != "open-circuit" or is_plain(constant):
+        return ""
+    taken = {symbol.name for symbol in derivation.system.small_signal.symbols}
+    name = f"{SEEN}{derivation.system.find.name.removeprefix('R_').removeprefix('seen_')}"
+    return fresh(taken, name)
+
+
+def _renamed(derivation: Derivation, name: str) -> Derivation:
+    """Give a derivation in which what is sought bears another name; as it is where that is ""."""
+    find = derivation.system.find
+    if not name:
+        return derivation
+    names = {find.name: Name(name)}
+    steps = tuple(
+        replace(
+            step,
+            equation=Equation(
+                substitute(step.equation.left, names), substitute(step.equation.right, names)
+            ),
+            subject=name if step.subject == find.name else step.subject,
+        )
+        for step in derivation.steps
+    )
+    system = replace(derivation.system, find=replace(find, name=name))
+    return replace(derivation, system=system, steps=steps)
 
 
 def _among(found: list[Seen], derivation: Derivation) -> Seen | None:
@@ -101,8 +141,12 @@ def shares_of(view: View, name: str) -> Line:
     for place, (symbols, share) in enumerate(shown):
         line += [Text(", ")] if place else []
         line += [*_symbols(symbols), Text(f" {percent(share)}")]
-    rest = len(known) - len(shown)
-    return (*line, Text(f" and {rest} less")) if rest else tuple(line)
+    rest = known[len(shown) :]
+    if not rest:
+        return tuple(line)
+    small = all(abs(share) < LEAST_SHARE for _, share in rest)
+    count = COUNTS.get(len(rest), str(len(rest)))
+    return (*line, Text(f" and {count} more{f' below {percent(LEAST_SHARE)}' if small else ''}"))
 
 
 def _symbols(symbols: tuple[str, ...]) -> Line:

@@ -9,7 +9,19 @@ from fractions import Fraction
 from derive.check.verdict import Outcome, Result
 from derive.devices.elements import Coupling
 from derive.eliminate.derivation import Derivation, Step
-from derive.expressions.tree import Elided, Equation, Expression, Name, Negative, Product, Quotient, Sum
+from derive.expressions.tree import (
+    ONE,
+    Elided,
+    Equation,
+    Expression,
+    Name,
+    Negative,
+    Power,
+    Product,
+    Quotient,
+    Sum,
+)
+from derive.normalise import normalise
 from derive.normalise.form import NominalNumbers
 from derive.quantities.dimension import (
     CURRENT,
@@ -166,6 +178,35 @@ def gain_dimension(view: View, extra: int = 0) -> Dimension:
         above = CURRENT if system.find.quantity == "current" else VOLTAGE
         wanted = above / _input_dimension(view)
     return wanted * TIME ** (view.result.solution.form.power_of_s + extra)
+
+
+def gain_name(view: View) -> str:
+    """Give the name of the gain in the normal form: K, or another where a part bears that name."""
+    step = view.step(normalise.GAIN)
+    return (step.subject if step else None) or "K"
+
+
+def power_of_s(power: int) -> Expression:
+    """Write what the gain is the factor of: s, s² or 1/s."""
+    s: Expression = Name("s") if abs(power) == 1 else Power(Name("s"), abs(power))
+    return s if power > 0 else Quotient(ONE, s)
+
+
+def is_constant(view: View) -> bool:
+    """Whether the response is the same at all frequencies."""
+    form = view.result.solution.form
+    return len(form.numerator) == len(form.denominator) == 1 and not form.power_of_s
+
+
+def at_zero(view: View) -> Line:
+    """Name what the gain of the normal form is: "A_v", "A_v at zero frequency" or "K, the factor of s in A_v"."""
+    own, power = Maths(Name(view.name)), view.result.solution.form.power_of_s
+    if is_constant(view):
+        return (own,)
+    if not power:
+        return own, Text(" at zero frequency")
+    factor = Maths(power_of_s(power))
+    return Maths(Name(gain_name(view))), Text(", the factor of "), factor, Text(" in "), own
 
 
 def far_value(view: View, numbers: NominalNumbers) -> Fraction | None:

@@ -75,7 +75,12 @@ def test_the_table_goes_to_standard_output_and_nothing_is_written(
     out, err = capsys.readouterr()
     assert err == ""
     assert re.match(r"Stage +low +high\n", out)
-    for words in ("Gain at mid-band", "Gain-bandwidth product", "Input impedance", "Output impedance"):
+    for words in (
+        "Gain in the mid band",
+        "Gain-bandwidth product",
+        "Input impedance",
+        "Output impedance",
+    ):
         assert words in out
     assert "\x1b" not in out
     assert sorted(os.listdir()) == ["high.toml", "low.toml"]

@@ -36,6 +36,21 @@ FURTHER = (
 )
 
 DEVICE = "derive/devices/models/schottky.py"
+REWRITE = "derive/readable/rewrites/current_divider.py"
+BRANCHES = """
+[sheet]
+title = "Meter in one of two branches"
+[drives]
+V_s = { voltage = ["in", "gnd"] }
+[parts]
+R_S = { resistor = "50R", between = ["in", "m"] }
+R_1 = { resistor = "4k7", between = ["m", "a"] }
+R_2 = { resistor = "100R", between = ["a", "gnd"] }
+R_3 = { resistor = "1R", between = ["a", "gnd"] }
+[find.Y]
+current = "R_2"
+per = "V_s"
+"""
 PROBE = """
 [sheet]
 title = "Level detector"
@@ -103,6 +118,7 @@ def copy(tmp_path_factory):
         assert not path.exists(), name
         path.parent.mkdir(parents=True, exist_ok=True)
         path.write_text(text, encoding="utf-8")
+    (place / "branches.toml").write_text(BRANCHES, encoding="utf-8")
     for name, old, new in FURTHER:
         replace(place / name, old, new)
     return place
@@ -134,6 +150,7 @@ def test_the_journey_gives_the_values_that_the_page_shows():
 def test_the_page_shows_every_kind_of_plug_in():
     assert set(told()) == {
         DEVICE,
+        REWRITE,
         "derive/eliminate/rules/swap_sides.py",
         "derive/sheet/wording.py",
         "derive/sheet/sections/places.py",
@@ -211,6 +228,28 @@ def test_section_is_on_the_sheet(copy):
     page = (copy / "out" / "level_divider.html").read_text(encoding="utf-8")
     assert "Places in the file" in page
     assert "topology.toml:11" in page
+
+
+def test_rewrite_is_at_work_and_proved(copy):
+    ended = run(copy, "-m", "derive", "show", "branches.toml", "--steps")
+    assert (ended.returncode, ended.stderr) == (0, "")
+    # Ohm's law and the current divider: R_3/(R_2 + R_3) of V_s over the whole resistance.
+    assert "  Y = R_3/(R_2 + R_3)·(1/(R_S + R_1 + (R_2 ∥ R_3)))\n" in ended.stdout
+    assert "✓ readable form: " in ended.stdout
+    assert "✗" not in ended.stdout
+
+
+def test_rewrite_with_a_slip_is_refused_by_its_proof(copy):
+    rewrite = copy / REWRITE
+    kept = rewrite.read_text(encoding="utf-8")
+    try:
+        replace(rewrite, "space.ratio(ratio.top, total)", "space.ratio(total, ratio.top)")
+        ended = run(copy, "-m", "derive", "show", "branches.toml", "--steps")
+    finally:
+        rewrite.write_text(kept, encoding="utf-8")
+    assert ended.returncode == 0
+    assert "(R_2 ∥ R_3)" not in ended.stdout
+    assert "✓ readable form: " in ended.stdout
 
 
 def test_step_rule_with_a_wrong_certificate_fails(copy):

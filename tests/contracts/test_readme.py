@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import shlex
 import tomllib
 from fractions import Fraction
 from pathlib import Path
@@ -14,6 +15,7 @@ import derive.reading.read as reading
 import derive.render.pdf
 from derive.bands.choose import state_in
 from derive.devices.registry import models
+from derive.pipeline import derive as derive_all
 from derive.reading.kinds import KINDS
 from derive.reading.roles import BANDS
 
@@ -21,6 +23,9 @@ ROOT = Path(__file__).parents[2]
 README = (ROOT / "README.md").read_text(encoding="utf-8")
 SETUP = (ROOT / ".ci" / "setup").read_text(encoding="utf-8")
 COMMAND = re.compile(r"^```sh\n(.*)\n```$", re.MULTILINE)
+SAMPLES = re.findall(
+    r"^```text\n\$ nodeledger (\w+) ([^\n]*)\n(.*?)^```$", README, re.DOTALL | re.MULTILINE
+)
 
 
 def test_example_is_the_case_without_its_remarks():
@@ -116,6 +121,51 @@ def test_every_command_and_option_stands_in_the_table(capsys):
             derive.cli.main([command, "--help"])
         for option in re.findall(r"(--[a-z-]+)", capsys.readouterr().out):
             assert option == "--help" or option in README, option
+
+
+def first_not_printed(shown, printed):
+    """Give the first line shown that is not printed after those before it; `…` stands for lines left out."""
+    rest = iter([line.rstrip() for line in printed.splitlines()])
+    return next((line for line in shown.splitlines() if line != "…" and line not in rest), None)
+
+
+def test_there_is_a_sample_of_each_command_that_prints():
+    assert [command for command, _, _ in SAMPLES] == ["show", "compare"]
+
+
+@pytest.mark.parametrize(("command", "rest", "shown"), SAMPLES, ids=[sample[0] for sample in SAMPLES])
+def test_what_a_command_is_shown_to_print_is_what_it_prints(command, rest, shown, capsys, monkeypatch):
+    monkeypatch.chdir(ROOT)
+    assert derive.cli.main([command, *shlex.split(rest), "--quiet"]) == 0
+    printed = capsys.readouterr().out
+    assert len(shown.splitlines()) > 15
+    assert first_not_printed(shown, printed) is None
+    assert first_not_printed(shown, printed.replace("1", "2")) is not None
+
+
+def test_a_line_too_many_or_in_another_place_would_be_seen():
+    assert first_not_printed("a\n…\nc\n", "a\nb \nc\n") is None
+    assert first_not_printed("a\nd\n", "a\nb\nc\n") == "d"
+    assert first_not_printed("c\na\n", "a\nb\nc\n") == "a"
+
+
+def test_the_example_in_python_gives_what_stands_beside_it(capsys, monkeypatch):
+    (shown,) = re.findall(r"^```python\n(.*?)^```$", README, re.DOTALL | re.MULTILINE)
+    beside = re.findall(r"^print\(.+\)  # (.+)$", shown, re.MULTILINE)
+    assert beside[0].startswith("as `nodeledger")
+    monkeypatch.chdir(ROOT)
+    exec(shown, {})  # the page's own text
+    assert capsys.readouterr().out.splitlines()[1 - len(beside) :] == beside[1:]
+
+
+def test_every_key_of_a_result_in_the_ledger_stands_in_the_table():
+    topology = reading.read(str(ROOT / "cases/post_filter/topology.toml"))
+    (result, *_) = derive_all(topology, other_engine=False).ledger()["results"]
+    (rows,) = re.findall(r"^\| key \| holds \|\n(.*?)\n\n", README, re.DOTALL | re.MULTILINE)
+    named = [key for row in rows.splitlines() for key in re.findall(r"`(\w+)`", row.split("|")[1])]
+    left = {"approximations"}  # told of beside the checks
+    assert set(named) == set(result) - left
+    assert all(f"`{key}`" in rows for key in left)
 
 
 def test_picture_stands_beside_its_case_and_is_small():

@@ -35,6 +35,7 @@ def final_results(name):
             "definitions": result["definitions"],
             "numerator": result["numerator"],
             "denominator": result["denominator"],
+            "readable": result["readable"],
             "gain_value": f"{result['gain']['value']:.{DIGITS}g}",
             "zeros": [rounded(root) for root in result["zeros"]],
             "poles": [rounded(root) for root in result["poles"]],

@@ -13,6 +13,10 @@ from derive.errors import SingularError, TooLargeError
 from derive.pipeline import derive
 
 POINTS = 3
+# What is not asked for here, and what does not apply where nothing stores energy or bridges two nodes; these
+# last are judged below where they fail.
+NOT_ALWAYS = ("another engine",)
+MAY_NOT_APPLY = ("readable form", "time constants", "Miller's theorem", "estimates")
 
 
 @dataclass(frozen=True)
@@ -56,7 +60,8 @@ def compare(seed: int) -> Comparison:
     checks: list[dict] = []
     count, too_large = 0, False
     try:
-        results = derive(topology, other_engine=False)
+        # What is said of a result beyond itself takes most of the time: it is tried on every fifth.
+        results = derive(topology, other_engine=False, explain=seed % 5 == 0)
     except SingularError as error:
         if not singular:
             differences.append(f"refused, but it has a unique solution: {error}")
@@ -72,7 +77,7 @@ def compare(seed: int) -> Comparison:
                 differences.append(f"other symbols: {sorted(ledger['symbols'])}")
             for result in ledger["results"]:
                 differences += _differences(result, points, truths)
-                checks += [check for check in result["checks"] if check["name"] != "another engine"]
+                checks += [check for check in result["checks"] if check["name"] not in NOT_ALWAYS]
     return Comparison(
         topology.text,
         kinds,
@@ -81,7 +86,7 @@ def compare(seed: int) -> Comparison:
         refused,
         tuple(differences),
         _named(checks, False),
-        _named(checks, None),
+        _named([check for check in checks if check["name"] not in MAY_NOT_APPLY], None),
         too_large,
     )
 

@@ -19,7 +19,7 @@ LONGEST = 1500
 
 
 def ledger_of(text: str) -> dict[str, Any]:
-    results = derive(parse(text, "stage.toml"), other_engine=False)
+    results = derive(parse(text, "stage.toml"), other_engine=False, explain=False)
     assert results.passed
     return results.ledger()
 
@@ -78,7 +78,7 @@ def size(result: dict[str, Any]) -> int:
 def test_numerator_and_denominator_of_a_random_circuit_share_no_root(seed):
     topology, _ = accepted_circuit(random.Random(seed))
     try:
-        ledger = derive(topology, other_engine=False).ledger()
+        ledger = derive(topology, other_engine=False, explain=False).ledger()
     except SingularError:
         return
     for result in ledger["results"]:

@@ -127,7 +127,7 @@ TRANSFORMER_FINDS = (
 # Z_in = s·L_1 - s²M²/(s·L_2 + R_L): textbook, common practice.
 @pytest.mark.parametrize("k", ["0.5", "-0.5", "1"])
 def test_coupled_coils_follow_the_transformer_equations(k):
-    results = held(stage(TRANSFORMER.format(k=k), *TRANSFORMER_FINDS))
+    results = held(stage(TRANSFORMER.format(k=k), *TRANSFORMER_FINDS), undecided=("estimates",))
     primary = "(s*L_1 - s**2*M**2/(s*L_2 + R_L))"
     gain = f"{primary}/(R_S + {primary})*M*R_L/(L_1*(s*L_2 + R_L) - s*M**2)"
     same(results, "A_v", gain)
@@ -250,7 +250,8 @@ def test_lossless_resonator_has_its_poles_on_the_axis():
         'L_1 = { inductor = "1 mH", between = ["in", "out"] }\n'
         'C_1 = { capacitor = "1n", between = ["out", "gnd"] }'
     )
-    results = held(stage(parts, GAIN))
+    # Without loss the peak is infinite, and so no sensitivity of it can be worked.
+    results = held(stage(parts, GAIN), undecided=("estimates",))
     same(results, "A_v", "1/(1 + s**2*L_1*C_1)")
     for real, imaginary in results["A_v"]["poles"]:
         assert abs(real) < 1e-6

@@ -94,7 +94,7 @@ CIRCUITS = {
 @cache
 def solved(name: str) -> Solution:
     circuit = linearise(parse(CIRCUITS[name], "stage.toml"))
-    return solve(restrict(circuit, "full"), circuit.topology.finds[0])
+    return solve(restrict(circuit, "full"), circuit.topology.finds[0], explain=False)
 
 
 def judged(*solutions: Solution) -> Outcome:
@@ -182,7 +182,7 @@ def test_show_ends_with_status_1_on_a_wrong_solution(index, tmp_path, monkeypatc
     file.write_text(CIRCUITS[name], encoding="utf-8")
     assert main(["show", str(file), "--quiet"]) == 0
     assert "✗" not in capsys.readouterr().out
-    monkeypatch.setattr(derive.pipeline, "solve", lambda circuit, find: mutation.solution)
+    monkeypatch.setattr(derive.pipeline, "solve", lambda circuit, find, **kept: mutation.solution)
     assert main(["show", str(file), "--quiet"]) == 1
     assert "✗" in capsys.readouterr().out
 
@@ -194,7 +194,7 @@ def test_sheet_ends_with_status_1_and_names_the_failed_checks_on_its_first_page(
     name, mutation = picked()[index]
     file = tmp_path / "stage.toml"
     file.write_text(CIRCUITS[name], encoding="utf-8")
-    monkeypatch.setattr(derive.pipeline, "solve", lambda circuit, find: mutation.solution)
+    monkeypatch.setattr(derive.pipeline, "solve", lambda circuit, find, **kept: mutation.solution)
     arguments = ["sheet", str(file), "--out", str(tmp_path), "--only", "html,json", "--quiet"]
     assert main(arguments) == 1
     capsys.readouterr()

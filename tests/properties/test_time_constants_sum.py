@@ -75,9 +75,15 @@ def test_open_circuit_time_constants_add_up_to_b_1_identically(batch):
 
 @pytest.mark.parametrize("batch", range(COUNT // BATCH))
 def test_products_add_up_to_b_2_and_higher_identically(batch):
-    for stage, _, found in stages(batch):
+    for stage, form, found in stages(batch):
         values = drawn(stage)
         own = own_polynomial(stage, values)
+        if found.hidden_says:
+            # The coefficients are those of the response, which has not all modes of the circuit.
+            own = [value(item, values) for item in form.denominator]
+            if not found.hidden_symbols:
+                assert found.coefficients == ()
+                continue
         named = {each.name: each.products for each in found.coefficients}
         for power in range(1, len(own)):
             products = named.get(f"b_{power}", ())

@@ -85,6 +85,9 @@ BIPOLAR = {
     "echo_cascode": cascode,
     "line_receiver": pair,
     "two_stage_preamp": two_stages,
+    "trio_common_emitter": lambda v_be: {"Q1": on_a_divider(12, 82e3, 22e3, 1.8e3, 180, v_be)},
+    "trio_common_base": lambda v_be: {"Q1": on_a_divider(12, 82e3, 22e3, 1.8e3, 180, v_be)},
+    "trio_follower": lambda v_be: {"Q1": on_a_divider(12, 82e3, 22e3, 1.8e3, 180, v_be)},
 }
 # For each square-law stage its current, given the slope; and the slope that its model has.
 FIELD_EFFECT = {

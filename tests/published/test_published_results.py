@@ -48,7 +48,8 @@ def random_values(check: Published, chance: random.Random) -> dict[str, int]:
     """Give a residue for every symbol and for s, with the ties of the source kept."""
     (result,) = ledger_of(check.topology)["results"]
     names = [*ledger_of(check.topology)["symbols"], "s"]
-    assert result["definitions"] == []
+    # Of primitive parts nothing is merged: only the words of a transistor may be defined.
+    assert all(word.startswith(("beta", "r_e", "alpha")) for word, _ in result["definitions"])
     values = {name: chance.randrange(1, PRIME) for name in names}
     for name, tie in check.ties:
         values[name] = calculate(tie, values, RESIDUES)
@@ -79,7 +80,7 @@ def test_every_check_on_a_published_circuit_passes(name):
     outcome = results_of(CHECKS[name].topology).outcome
     assert outcome.passed
     for result in outcome.results:
-        named = {verdict.name: verdict.passed for verdict in result.verdicts}
+        named = {v.name: v.passed for v in result.verdicts if v.applies}
         assert named.pop("another engine") is None
         assert all(named.values())
 

@@ -26,7 +26,7 @@ def judge(solution: Solution) -> Verdict:
     """Judge whether closed forms, estimates, bandwidth, sensitivities and limits are right."""
     said = solution.estimates
     if said is None:
-        return Verdict(NAME, METHOD, None, "not tried: nothing is stated", LIMIT)
+        return Verdict(NAME, METHOD, None, "not tried: nothing is stated", LIMIT, applies=False)
     roads: tuple[Callable[[Solution, Estimates], str], ...] = (
         judge_closed_forms,
         judge_rules,

@@ -22,7 +22,7 @@ from derive.check.stamp import assemble
 from derive.check.verdict import Solution, Verdict
 from derive.check.words import count
 from derive.devices.elements import Capacitor, SmallSignal
-from derive.reactances.miller import MillerView
+from derive.reactances.miller import MillerError, MillerView
 from derive.topology.topology import GROUND
 
 NAME = "Miller's theorem"
@@ -35,7 +35,13 @@ LIMIT = "equal at every point, errors to 9 digits"
 POINTS, TRIES = 2, 12
 TOLERANCE = 1e-9
 # What the sheet promises of an approximation that may be used.
-NEAR_ONE, GAIN_LIMIT, POLE_LIMIT, DECADE = Fraction(1, 2), 0.01, 0.10, 10.0
+NEAR_ONE, GAIN_LIMIT, POLE_LIMIT, DECADE = Fraction(1, 4), 0.01, 0.10, 10.0
+# A pole that moves by less than a hundredth of what the capacitor does is none to judge it by.
+STEP, FOLLOWS = Fraction(1, 10**6), 0.01
+NAMES = tuple(
+    f"{word} pole"
+    for word in ("first", "second", "third", "fourth", "fifth", "sixth", "seventh", "eighth")
+)
 HALVES = ("its half at the near node", "its half at the far node")
 
 
@@ -46,7 +52,8 @@ class WrongError(ValueError):
 def judge(solution: Solution) -> Verdict:
     """Judge whether every view is true of the circuit, in symbols and at the nominal values."""
     if not solution.miller:
-        return Verdict(NAME, METHOD, None, "no view of a bridging capacitor is printed", LIMIT)
+        nothing = "no view of a bridging capacitor is printed"
+        return Verdict(NAME, METHOD, None, nothing, LIMIT, applies=False)
     values = nominal_values(solution.judged)
     compared = 0
     for view in solution.miller:
@@ -152,13 +159,15 @@ def _judge_numbers(solution: Solution, view: MillerView, values: Mapping[str, Fr
         raise WrongError("there is no response to compare with")
     halved, halved_values = _with_halves(circuit, view, known, factors)
     guess = marks_of(halved, excitation, halved_values)
-    _judge_errors(view, exact, guess)
+    moved = marks_of(circuit, excitation, {**known, view.symbol: known[view.symbol] * (1 + STEP)})
+    judged = _judged(exact, moved)
+    _judge_errors(view, exact, guess, judged)
     own = [
         root
         for parts in (view.gain_numerator, view.gain_denominator)
         for root in roots_of([value_exact(part, known) for part in parts])
     ]
-    may_be_used = _may_be_used(view, exact, guess, value_exact(view.gain, known), own)
+    may_be_used = _may_be_used(view, exact, guess, value_exact(view.gain, known), own, judged)
     if may_be_used != view.usable:
         raise WrongError(f"by its numbers it may {'' if may_be_used else 'not '}be used")
     if not view.reasons:
@@ -182,8 +191,24 @@ def _with_halves(
     return replace(circuit, elements=tuple(elements)), values
 
 
-def _judge_errors(view: MillerView, exact: Marks, guess: Marks | None) -> None:
-    expected = _expected(exact, guess) if guess else {}
+def _judged(exact: Marks, moved: Marks | None) -> int:
+    """Give the place of the pole to judge by: the first, or the one that moves most where that one does not."""
+    poles, others = _upper(exact, exact), _upper(exact, moved) if moved else []
+    if not poles or len(poles) != len(others):
+        return 0
+    pairs = zip(poles, others, strict=True)
+    shifts = [abs(other - pole) / (abs(pole) * float(STEP)) for pole, other in pairs]
+    place = max(range(len(shifts)), key=shifts.__getitem__)
+    return 0 if shifts[0] >= FOLLOWS or shifts[place] < FOLLOWS or place >= len(NAMES) else place
+
+
+def _upper(exact: Marks, marks: Marks) -> list[complex]:
+    """Give the poles from the exact response's first on, a pair once."""
+    return [pole for pole in marks.poles[max(exact.power, 0) :] if pole.imag >= 0]
+
+
+def _judge_errors(view: MillerView, exact: Marks, guess: Marks | None, judged: int) -> None:
+    expected = _expected(exact, guess, judged) if guess else {}
     zeros = [error for error in view.errors if error.name.startswith("zero")]
     for error in view.errors:
         given = (error.approximate, error.exact)
@@ -192,8 +217,7 @@ def _judge_errors(view: MillerView, exact: Marks, guess: Marks | None) -> None:
                 raise WrongError(f"the {error.name} is none of the response's")
         elif error.name not in expected or not all(map(_close, given, expected[error.name])):
             raise WrongError(f"the {error.name} is another")
-        if abs(error.error - _relative(*given)) > TOLERANCE * max(1.0, abs(error.error)):
-            raise WrongError(f"the error of the {error.name} is another")
+        _judge_error(error)
     if missing := expected.keys() - {error.name for error in view.errors}:
         raise WrongError(f"the {min(missing)} is not compared")
     shown = [*view.missing_zeros, *(error.exact for error in zeros)]
@@ -201,34 +225,57 @@ def _judge_errors(view: MillerView, exact: Marks, guess: Marks | None) -> None:
         raise WrongError("the zeros shown and missing are not the response's")
 
 
-def _expected(exact: Marks, guess: Marks) -> dict[str, tuple[complex, complex]]:
+def _judge_error(error: MillerError) -> None:
+    """Hold an error against its two values; there is none where these cannot be compared."""
+    true = None if error.exact is None else _relative(error.approximate, error.exact)
+    if error.name == "gain" and error.exact is not None:
+        true = (error.approximate.real - error.exact.real) / error.exact.real
+    if true is None and error.error is None and error.says:
+        return
+    if true is None or error.error is None:
+        raise WrongError(f"the {error.name} has an error, or none, against the rule")
+    if abs(error.error - true) > TOLERANCE * max(1.0, abs(true)):
+        raise WrongError(f"the error of the {error.name} is another")
+
+
+def _expected(exact: Marks, guess: Marks, judged: int) -> dict[str, tuple[complex, complex | None]]:
     """Give the pairs to be compared by name: approximate and exact."""
-    found: dict[str, tuple[complex, complex]] = {}
+    found: dict[str, tuple[complex, complex | None]] = {}
     if exact.power == guess.power:
         found["gain"] = (complex(guess.gain), complex(exact.gain))
-    first = max(exact.power, 0)
-    names = ("first pole", "second pole")
-    found.update(zip(names, zip(guess.poles[first:], exact.poles[first:], strict=False), strict=False))
+    poles: list[complex | None] = [*_upper(exact, exact)]
+    own = _upper(exact, guess)
+    poles += [None] * max(0, len(own) - len(poles))
+    stable = all(pole.real <= 0 for pole in exact.poles)
+    for place, (name, approximate, true) in enumerate(zip(NAMES, own, poles, strict=False)):
+        if (true is not None and place <= max(judged, 1)) or (approximate.real > 0 and stable):
+            found[name] = approximate, true
     return found
 
 
 def _may_be_used(
-    view: MillerView, exact: Marks, guess: Marks | None, gain: Fraction, own: Sequence[complex]
+    view: MillerView,
+    exact: Marks,
+    guess: Marks | None,
+    gain: Fraction,
+    own: Sequence[complex],
+    judged: int,
 ) -> bool:
-    """Say by the numbers alone whether the approximation may be used."""
+    """Say by the numbers alone whether the approximation may be used, if only for the pole that is judged."""
     if guess is None or guess.power != exact.power:
         return False
     if exact.ratio[0] * guess.ratio[1] == guess.ratio[0] * exact.ratio[1]:
         return True
-    upper = exact.poles[max(exact.power, 0) :]
+    upper = _upper(exact, exact)
     if not upper or abs(1 - gain) < NEAR_ONE or abs(guess.gain / exact.gain - 1) > GAIN_LIMIT:
         return False
-    near = DECADE * abs(upper[0])
+    near = DECADE * abs(upper[judged])
     shared = [error.approximate for error in view.errors if error.name.startswith("zero")]
     further = [zero for zero in guess.zeros if not _among(zero, shared)]
     if any(abs(root) < near for root in (*own, *view.missing_zeros, *further)):
         return False
-    if any(pole.real > 0 for pole in guess.poles) and all(pole.real <= 0 for pole in exact.poles):
+    stable = all(pole.real <= 0 for pole in exact.poles)
+    if stable and any(pole.real > 0 and abs(pole) < near for pole in guess.poles):
         return False
     within = [
         sum(abs(pole) < near for pole in poles[max(exact.power, 0) :])
@@ -236,20 +283,27 @@ def _may_be_used(
     ]
     if len(guess.poles) != len(exact.poles) and within[0] != within[1]:
         return False
-    approximate, true = _expected(exact, guess).get("first pole", (upper[0], upper[0]))
-    alike = bool(approximate.imag) == bool(true.imag)
-    return alike and abs(_relative(approximate, true)) <= POLE_LIMIT
+    pair = _expected(exact, guess, judged).get(NAMES[judged])
+    if pair is None or pair[1] is None:
+        return True
+    error = _relative(pair[0], pair[1])
+    return error is not None and abs(error) <= POLE_LIMIT
 
 
-def _relative(approximate: complex, exact: complex) -> float:
-    if approximate.imag or exact.imag:
+def _relative(approximate: complex, exact: complex) -> float | None:
+    """Give the relative error; None between half-planes, and between a real root and a pair."""
+    if approximate.real * exact.real < 0 or bool(approximate.imag) != bool(exact.imag):
+        return None
+    if exact.imag:
         return abs(approximate) / abs(exact) - 1
     return (approximate.real - exact.real) / exact.real
 
 
-def _among(root: complex, roots: Sequence[complex]) -> bool:
-    return any(_close(root, other) for other in roots)
+def _among(root: complex | None, roots: Sequence[complex]) -> bool:
+    return root is not None and any(_close(root, other) for other in roots)
 
 
-def _close(one: complex, other: complex) -> bool:
+def _close(one: complex | None, other: complex | None) -> bool:
+    if one is None or other is None:
+        return one is other
     return abs(one - other) <= TOLERANCE * abs(other)

@@ -6,11 +6,12 @@ from derive.check.degree import chance, degree_of_claim
 from derive.check.excitation import excite
 from derive.check.merged import definitions_of, with_merged_modulo
 from derive.check.points import stream, values_modulo
-from derive.check.reading import form_modulo, value_modulo
+from derive.check.reading import form_modulo, series, value_modulo
 from derive.check.solve import NoSolutionError, solve_modulo
 from derive.check.stamp import assemble
 from derive.check.verdict import Solution, Verdict
 from derive.check.words import at_most, count
+from derive.expressions.tree import Expression
 from derive.normalise.form import NormalForm
 from derive.readable.form import ReadableForm
 
@@ -29,7 +30,7 @@ def judge(solution: Solution) -> Verdict:
     """Judge whether what is written for reading says the same as the circuit, for all values of its parts."""
     readable = solution.readable
     if readable is None:
-        return Verdict(NAME, METHOD, None, "not written", "")
+        return Verdict(NAME, METHOD, None, "not written", "", applies=False)
     if len(readable.numerator) != len(solution.form.numerator) or len(readable.denominator) != len(
         solution.form.denominator
     ):
@@ -86,7 +87,20 @@ def _first_difference(form: NormalForm, readable: ReadableForm, known: dict[str,
         far = value_modulo(form.gain, known, prime) * leading[0] * pow(leading[1], -1, prime) % prime
         if far != value_modulo(readable.far_gain, known, prime):
             return "the gain far above all corners"
+    for letter, whole, factors in (
+        ("numerator", form.numerator, readable.numerator_factors),
+        ("denominator", form.denominator, readable.denominator_factors),
+    ):
+        product = 1
+        for factor in factors:
+            product = product * _polynomial(factor, known, prime) % prime
+        if factors and product != _polynomial(whole, known, prime):
+            return f"the product of the {letter}'s factors"
     return ""
+
+
+def _polynomial(coefficients: tuple[Expression, ...], known: dict[str, int], prime: int) -> int:
+    return series([value_modulo(entry, known, prime) for entry in coefficients], known["s"]) % prime
 
 
 def _as_form(form: NormalForm, readable: ReadableForm) -> NormalForm:

@@ -56,7 +56,7 @@ def judge(solution: Solution) -> Verdict:
     """Judge whether every time constant and every coefficient made of them is true of the circuit."""
     given = solution.time_constants
     if given is None or not (given.open_circuit or given.short_circuit or given.coefficients):
-        return Verdict(NAME, METHOD, None, "none were given", LIMIT)
+        return Verdict(NAME, METHOD, None, "none were given", LIMIT, applies=False)
     numbers = stream(solution, "time constants")
     prime = numbers.prime()
     agreed, why = 0, ""
@@ -77,7 +77,8 @@ def judge(solution: Solution) -> Verdict:
     except (WrongError, DeriveError) as error:
         return Verdict(NAME, METHOD, False, str(error), LIMIT)
     if agreed < POINTS:
-        return Verdict(NAME, METHOD, False, f"no point could be worked: {why}", LIMIT)
+        # A turned circuit of a response without fault may have no unique solution, as coupled coils may leave it.
+        return Verdict(NAME, METHOD, None, f"not decided, no point could be worked: {why}", LIMIT)
     rows = len(given.open_circuit) + len(given.short_circuit)
     products = sum(len(coefficient.products) for coefficient in given.coefficients)
     measured = (
@@ -126,8 +127,9 @@ def _judge_at(point: _Point, derived: Mapping[tuple[str, str], Expression]) -> N
     top, bottom = point.circuit.polynomials(excite(point.solution.derivation.system))
     own = {"a": normalised(top, point.prime), "b": normalised(bottom, point.prime)}
     _judge_hidden(point, own["b"])
+    shown = {letter: _without_hidden(point, found) for letter, found in own.items()}
     for coefficient in point.given.coefficients:
-        _judge_coefficient(point, coefficient, own)
+        _judge_coefficient(point, coefficient, shown)
     _judge_open_sum(point, own["b"])
     if len(bottom) > len(point.circuit.names):
         _judge_short_sum(point, own["b"])
@@ -165,6 +167,25 @@ def _judge_hidden(point: _Point, own: Sequence[int]) -> None:
             found[place + power] = (found[place + power] + value * coefficient) % point.prime
     if normalised(found, point.prime) != own:
         raise WrongError("denominator and hidden factor do not make the circuit's own polynomial")
+    for raw, readable in zip(point.given.hidden, point.given.hidden_readable, strict=False):
+        if point.read(raw) != point.read(readable):
+            raise WrongError("the hidden factor for reading is another")
+    if bool(point.given.hidden_says) != (len(point.given.hidden) > 1):
+        raise WrongError("modes are hidden, or none, and the words say otherwise")
+
+
+def _without_hidden(point: _Point, own: Sequence[int]) -> list[int]:
+    """Divide a polynomial of the circuit by the hidden factor; both begin with 1."""
+    factor = [point.read(item) for item in point.given.hidden] or [1]
+    rest, found = list(own), []
+    for place in range(max(len(own) - len(factor) + 1, 1)):
+        found.append(rest[place])
+        for power, value in enumerate(factor):
+            if place + power < len(rest):
+                rest[place + power] = (rest[place + power] - found[-1] * value) % point.prime
+    if any(rest):
+        raise WrongError("the hidden factor does not divide both polynomials of the circuit")
+    return found
 
 
 def _judge_coefficient(point: _Point, coefficient: Coefficient, own: dict[str, list[int]]) -> None:
@@ -207,13 +228,17 @@ def _by_states(point: _Point, product: Product, *, with_response: bool) -> int |
 
 def _judge_open_sum(point: _Point, own: Sequence[int]) -> None:
     """Hold the sum of the open-circuit time constants against b_1, op amps' own terms added."""
-    first = _coefficient(point.given, "b_1")
-    if first is None:
+    rows, first = point.given.open_circuit, _coefficient(point.given, "b_1")
+    op_amps = point.circuit.op_amp_symbols
+    total = sum(point.read(row.constant) for row in rows if row.constant is not None)
+    if point.given.hidden_says:
+        coupled = any(isinstance(element, Coupling) for element in point.circuit.circuit.elements)
+        if coupled or op_amps or any(row.constant is None for row in rows):
+            return
+    elif first is None:
         return
-    total = sum(point.read(row.constant) for row in point.given.open_circuit if row.constant is not None)
-    total += sum(
-        point.read(p.term) for p in first.products if {*p.symbols} & point.circuit.op_amp_symbols
-    )
+    else:
+        total += sum(point.read(p.term) for p in first.products if {*p.symbols} & op_amps)
     if total % point.prime != (own[1] if len(own) > 1 else 0):
         raise WrongError("the open-circuit time constants do not add up to b_1 of the circuit")
 
@@ -250,7 +275,7 @@ def _trees(given: TimeConstants) -> Iterator[Expression]:
     for coefficient in given.coefficients:
         yield Sum(tuple(product.term for product in coefficient.products) or (ONE,))
         yield from (product.readable for product in coefficient.products)
-    yield Sum(tuple(given.hidden) or (ONE,))
+    yield Sum((*given.hidden, *given.hidden_readable) or (ONE,))
 
 
 def _degree(solution: Solution, given: TimeConstants) -> int:

@@ -16,11 +16,11 @@ ORDER = 10
 def propose(ratio: Ratio, search: Search) -> Iterator[Proposal]:
     """Split off every name that stands above the fraction bar only, to the first power."""
     composer = search.composer
-    splits = list(_splits(ratio, search))
-    for name, rest, slope in splits:
+    found = list(splits(ratio, search))
+    for name, rest, slope in found:
         if slope.top == slope.bottom and not slope.minus:
             yield Proposal((rest,), lambda rest, name=name: composer.sum([Name(name), rest]), CERTAIN)
-    for name, rest, slope in splits:
+    for name, rest, slope in found:
 
         def build(slope: Expression, rest: Expression, name: str = name) -> Expression:
             return composer.sum([composer.product([Name(name), slope]), rest])
@@ -28,7 +28,7 @@ def propose(ratio: Ratio, search: Search) -> Iterator[Proposal]:
         yield Proposal((slope, rest), build, _miller_bonus(slope, search))
 
 
-def _splits(ratio: Ratio, search: Search) -> Iterator[tuple[str, Ratio, Ratio]]:
+def splits(ratio: Ratio, search: Search) -> Iterator[tuple[str, Ratio, Ratio]]:
     """Give (name, rest, slope) with ratio = rest + name·slope; reactances before resistances."""
     space = search.space
     below = set(space.names(ratio.bottom))

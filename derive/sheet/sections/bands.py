@@ -71,9 +71,11 @@ def _capacitors(rows: tuple[CapacitorRow, ...]) -> Table:
 
 
 def _row(row: CapacitorRow, points: Sequence[tuple[str, float]]) -> tuple[Line, ...]:
-    seen = row.says if row.resistance is None else engineering(row.resistance, RESISTANCE, 4)
+    seen = marked(row.says)
+    if row.resistance is not None:
+        seen = (Text(engineering(row.resistance, RESISTANCE, 4)),)
     role = f", {row.role}" if row.role else ""
     ratios: dict[tuple[str, float], float | None] = {(at.where, at.hertz): at.ratio for at in row.at}
     cells = [ratios.get(point) for point in points]
     shown = ((Text("–" if ratio is None else times(ratio)),) for ratio in cells)
-    return (Maths(Name(row.symbol)),), (Text(row.state + role),), (Text(seen),), *shown
+    return (Maths(Name(row.symbol)),), (Text(row.state + role),), seen, *shown

@@ -4,18 +4,18 @@ from __future__ import annotations
 
 from derive.check.verdict import Outcome
 from derive.sheet.document import Block, Column, Line, Mark, Paragraph, Section, Table, Text
+from derive.sheet.tally import kind_of
 from derive.sheet.view import View, views
 
 ORDER = 80
 SCOPE = "sheet"
-WORDS = {True: "pass", False: "fail", None: "open"}
 
 
 def compose(outcome: Outcome) -> tuple[Section, ...]:
     """Give the section, one table a result."""
     lead = (
         "Every check reaches the result by a road that the derivation did not take. A check marked open "
-        "was not finished or does not apply; it is neither a pass nor a failure."
+        "was not finished, one marked n/a has nothing to judge here; neither is a pass or a failure."
     )
     blocks: list[Block] = [Paragraph((Text(lead),))]
     blocks += [_table(view) for view in views(outcome)]
@@ -31,7 +31,7 @@ def _table(view: View) -> Table:
             (Text(verdict.method),),
             (Text(verdict.measured),),
             (Text(verdict.limit),),
-            (Mark(verdict.passed, WORDS[verdict.passed]),),
+            (Mark(verdict.passed, kind_of(verdict)),),
         )
         for verdict in view.result.verdicts
     ]

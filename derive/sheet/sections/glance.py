@@ -8,13 +8,11 @@ from fractions import Fraction
 from derive.check.verdict import Outcome, Result
 from derive.estimates.estimates import Estimate
 from derive.expressions.polynomials import divide, multiply, negate
-from derive.expressions.tree import ONE, ZERO, Equation, Expression, Name, Number
-from derive.normalise import normalise
-from derive.normalise.form import CertifiedRoot, NominalNumbers
-from derive.quantities.dimension import RATIO
+from derive.expressions.tree import ZERO, Equation, Expression, Name, Number
 from derive.readable.form import Definition, ReadableForm
 from derive.readable.measure import leaves
 from derive.sheet.assumed import assumed
+from derive.sheet.at_nominal import at_nominal
 from derive.sheet.bandwidth import pass_band
 from derive.sheet.definitions import known_definitions, used_in, with_words
 from derive.sheet.document import (
@@ -28,11 +26,21 @@ from derive.sheet.document import (
     Section,
     Text,
 )
-from derive.sheet.figures import decibels, figure, root_in_hertz, signed_percent
-from derive.sheet.final import CORNER, PASS_BAND, ZERO_CORNER, Final, Named, final, reading
+from derive.sheet.figures import figure, root_in_hertz, signed_percent
+from derive.sheet.final import (
+    CORNER,
+    ZERO_CORNER,
+    Final,
+    Named,
+    coefficient_of,
+    final,
+    is_long,
+    reading,
+)
 from derive.sheet.nested import where_written, why_nested
 from derive.sheet.resistances import shares_of
-from derive.sheet.view import View, coefficient_value, far_value, gain_dimension, same_poles, views
+from derive.sheet.tally import tally_of
+from derive.sheet.view import View, coefficient_value, same_poles, views
 from derive.sheet.wording import joined
 from derive.topology.topology import GROUND
 
@@ -43,7 +51,6 @@ BAND_ORDER = ("mid", "full", "low", "high")
 WORTH_REFERRING = 6
 # An estimate whose error is below this is the exact value but for rounding.
 EXACT = 1e-9
-FOLD = {1: "", 2: "double ", 3: "triple "}
 
 
 @dataclass(slots=True)
@@ -84,7 +91,7 @@ def _blocks(view: View, told: Told) -> list[Block]:
     blocks += _named(view, found, told)
     blocks += [Paragraph(line) for line in (why_nested(view), where_written(view)) if line]
     blocks += assumed(view)
-    lines = [_words(view, found, told), _numbers(view, found), pass_band(view), _rules(view)]
+    lines = [_words(view, found, told), at_nominal(view, found), pass_band(view), _rules(view)]
     blocks += [Paragraph(joined(line)) for line in (*lines, _checked(view.result)) if line]
     if not found.named and not form.definitions:
         told.values.setdefault(found.equation.right, (view.name, view))
@@ -92,8 +99,9 @@ def _blocks(view: View, told: Told) -> list[Block]:
 
 
 def _named(view: View, found: Final, told: Told) -> list[Block]:
-    """Define the names in the box; those that were defined before are referred to."""
+    """Define the names in the box; those that were defined before, and long ones, are referred to."""
     blocks: list[Block] = []
+    long: list[Named] = []
     again: dict[tuple[int, str], list[str]] = {}
     for entry in found.named:
         known = told.values.get(entry.value)
@@ -102,13 +110,38 @@ def _named(view: View, found: Final, told: Told) -> list[Block]:
             again.setdefault((where.place, "" if name == entry.name else name), []).append(entry.name)
             continue
         told.values.setdefault(entry.value, (entry.name, view))
+        if is_long(view, entry):
+            long.append(entry)
+            continue
         value = view.shown(entry.value, entry.step or 0)
         blocks.append(Display(Equation(Name(entry.name), value), _says(view, entry)))
+    blocks += [Paragraph(_elsewhere(view, long))] if long else []
     every = views(view.outcome)
     blocks += [
         Paragraph(_as_before(view, names, name, every[place])) for (place, name), names in again.items()
     ]
     return blocks
+
+
+def _elsewhere(view: View, long: list[Named]) -> Line:
+    """Give the values of long coefficients, and say where they are written out."""
+    numbers = view.result.solution.numbers
+    line: list[Inline] = []
+    for place, entry in enumerate(long):
+        line += [Text("" if not place else " and " if place == len(long) - 1 else ", ")]
+        line += [Maths(Name(entry.name))]
+        which = coefficient_of(view, entry)
+        if numbers is not None and which is not None:
+            line.append(Text(f" = {figure(*coefficient_value(numbers, *which))}"))
+    found = view.result.solution.time_constants
+    names = {coefficient.name for coefficient in found.coefficients} if found else set()
+    products = any(f"{letter}_{power}" in names for letter, power in filter(None, _which(view, long)))
+    where = ": written out under Normal form"
+    return (*line, Text(f"{where}, taken apart under Time constants." if products else f"{where}."))
+
+
+def _which(view: View, entries: list[Named]) -> list[tuple[str, int] | None]:
+    return [coefficient_of(view, entry) for entry in entries]
 
 
 def _as_before(view: View, names: list[str], name: str, where: View) -> Line:
@@ -152,7 +185,8 @@ def _says(view: View, entry: Named) -> Line:
 
 def _words(view: View, found: Final, told: Told) -> Line:
     """Define β, r_e and the like where they are first used."""
-    shown = [found.equation.right, *(entry.value for entry in found.named)]
+    shown = [found.equation.right]
+    shown += [entry.value for entry in found.named if not is_long(view, entry)]
     new = [entry for entry in used_in(shown, known_definitions(view)) if entry not in told.words]
     told.words.update(new)
     return with_words(new)
@@ -183,9 +217,9 @@ def _asked(view: View) -> Line:
         what: Line = Text("Current through "), Maths(Name(find.part or ""))
     else:
         against = "" if minus == GROUND else f" against {minus}"
-        what = (Text(f"Voltage of {plus}{against}"),)
+        what = (Text(f"Voltage at node {plus}{against}"),)
     common = view.result.solution.derivation.system.input
-    line: list[Inline] = [*what, Text(", per "), Maths(Name(common))]
+    line: list[Inline] = [*what, Text(" per "), Maths(Name(common))]
     others = [(name, weight) for name, weight in find.per if name != common]
     for place, (name, weight) in enumerate(others):
         line.append(Text(", with " if not place else " and " if place == len(others) - 1 else ", "))
@@ -198,62 +232,6 @@ def _share(weight: Fraction, common: str) -> Expression:
     above = multiply([Number(Fraction(abs(weight.numerator))), Name(common)])
     value = divide(above, Number(Fraction(weight.denominator)))
     return negate(value) if weight < 0 else value
-
-
-def _numbers(view: View, found: Final) -> Line:
-    numbers = view.result.solution.numbers
-    if numbers is None:
-        return (Text("A value was left open, so this sheet is symbolic only."),)
-    read = reading(view)
-    names = {entry.name for entry in found.named}
-    far = _far(view, numbers)
-    poles, zeros = _roots("pole", numbers.poles), _zeros(view, numbers)
-    if CORNER in names and far:
-        label = Name(PASS_BAND if PASS_BAND in names else view.name)
-        where = "" if PASS_BAND in names else " far above the corner"
-        return Text("At the nominal values "), Maths(label), Text(f" = {far}{where}; {poles}; {zeros}.")
-    step = view.step(normalise.GAIN)
-    label = Name((step.subject if step else None) or "K")
-    only = read.numerator == read.denominator == (ONE,) and not view.result.solution.form.power_of_s
-    if only and not found.named:
-        # The box shows the quantity itself; there is no K in it.
-        label = Name(view.name)
-    if not only and label.text not in names:
-        # Nor is there one where the coefficients are written out; it is the value at zero frequency.
-        label = Name(view.name)
-    words = f" = {_level(view, numbers.gain)}"
-    if not only and label.text == view.name and not view.result.solution.form.power_of_s:
-        words += " at zero frequency"
-    words += f", far above all corners {far}" if far else ""
-    return Text("At the nominal values "), Maths(label), Text(f"{words}; {poles}; {zeros}.")
-
-
-def _level(view: View, value: Fraction | None, extra: int = 0) -> str:
-    dimension = gain_dimension(view, extra)
-    level = decibels(value) if dimension == RATIO else ""
-    return figure(value, dimension) + (f" ({level})" if level else "")
-
-
-def _far(view: View, numbers: NominalNumbers) -> str:
-    value = far_value(view, numbers)
-    return "" if value is None else _level(view, value, -view.result.solution.form.power_of_s)
-
-
-def _zeros(view: View, numbers: NominalNumbers) -> str:
-    power = view.result.solution.form.power_of_s
-    others = _roots("zero", numbers.zeros)
-    if power <= 0:
-        return others
-    origin = f"{FOLD.get(power, f'{power}-fold ')}zero at the origin"
-    return f"{origin}, {others}" if numbers.zeros else origin
-
-
-def _roots(word: str, roots: tuple[CertifiedRoot, ...]) -> str:
-    shown = [_root(root) for root in roots if root.imaginary >= 0]
-    if not shown:
-        return f"no {word}s"
-    single = len(shown) == 1 and roots[0].multiplicity == 1 and roots[0].imaginary == 0
-    return f"{word if single else word + 's'} at {', '.join(shown)}"
 
 
 def _told_rules(view: View) -> tuple[Estimate, ...]:
@@ -278,23 +256,6 @@ def _rules(view: View) -> Line:
     return (Text(f"Rules of thumb, error here: {words}."),)
 
 
-def _root(root: CertifiedRoot) -> str:
-    words = root_in_hertz(root)
-    if root.imaginary:
-        quality = root.quality
-        words += f" (pair, Q = {quality:.3g})" if quality else " (pair on the imaginary axis)"
-    if root.multiplicity > 1:
-        words += f" ({root.multiplicity}-fold)"
-    return words + (" (right half-plane)" if root.real > 0 else "")
-
-
 def _checked(result: Result) -> Line:
-    passed = sum(verdict.passed is True for verdict in result.verdicts)
-    failed = sum(verdict.passed is False for verdict in result.verdicts)
-    left = len(result.verdicts) - passed - failed
-    words = f"{passed} of {len(result.verdicts)} checks passed"
-    if failed:
-        words += f", {failed} failed"
-    if left:
-        words += f", {left} left open"
-    return (Mark(not failed and not result.broken_steps, words),)
+    tally = tally_of(result.verdicts)
+    return (Mark(not tally.failed and not result.broken_steps, tally.words),)

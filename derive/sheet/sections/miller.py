@@ -11,7 +11,7 @@ from derive.readable.measure import leaves
 from derive.sheet.definitions import used_in, with_words
 from derive.sheet.document import Block, Column, Display, Line, Maths, Paragraph, Section, Table, Text
 from derive.sheet.figures import complex_figure, signed_percent
-from derive.sheet.view import View, gain_dimension, views
+from derive.sheet.view import View, at_zero, gain_dimension, views
 from derive.sheet.wording import joined, marked
 
 ORDER = 68
@@ -136,14 +136,12 @@ def _errors(view: View, miller: MillerView) -> list[Block]:
 
 
 def _error(view: View, error: MillerError) -> tuple[Line, ...]:
-    dimension = gain_dimension(view) if error.name == "gain" else RATIO / TIME
-    cells = (
-        error.name,
-        complex_figure(error.approximate, dimension),
-        complex_figure(error.exact, dimension),
-        signed_percent(error.error),
-    )
-    return tuple((Text(cell),) for cell in cells)
+    of_gain = error.name == "gain"
+    dimension = gain_dimension(view) if of_gain else RATIO / TIME
+    name: Line = at_zero(view) if of_gain else (Text(error.name),)
+    true = "–" if error.exact is None else complex_figure(error.exact, dimension)
+    off = error.says or "–" if error.error is None else signed_percent(error.error)
+    return name, (Text(complex_figure(error.approximate, dimension)),), (Text(true),), (Text(off),)
 
 
 def _verdict(miller: MillerView) -> list[Block]:

@@ -3,16 +3,30 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
-from derive.estimates.estimates import ClosedForm, Estimate, Estimates, RootSensitivity
-from derive.expressions.tree import Equation, Name
+from derive.estimates.estimates import ClosedForm, Estimate, Estimates
+from derive.expressions.polynomials import divide
+from derive.expressions.tree import ONE, Equation, Name
+from derive.expressions.walk import names_of
 from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.dimension import RATIO, TIME
 from derive.quantities.format import engineering
 from derive.readable.measure import leaves
 from derive.sheet.bandwidth import bandwidth_of, edges, lead
 from derive.sheet.definitions import known_definitions, used_in, with_words
-from derive.sheet.document import Block, Column, Display, Line, Maths, Paragraph, Section, Table, Text
+from derive.sheet.document import (
+    Block,
+    Column,
+    Display,
+    Inline,
+    Line,
+    Maths,
+    Paragraph,
+    Section,
+    Table,
+    Text,
+)
 from derive.sheet.figures import (
     error_bound,
     figure,
@@ -36,11 +50,12 @@ def compose(view: View) -> tuple[Section, ...]:
     """Give the section; nothing where the response is a constant."""
     solution = view.result.solution
     numbers, estimates = solution.numbers, solution.estimates
-    blocks: list[Block] = [*_at_the_origin(solution.form.power_of_s)]
+    blocks: list[Block] = []
     if estimates is not None:
         blocks += _closed_forms(view, estimates)
     if numbers is not None:
         blocks += _numeric(numbers)
+    blocks = [*_at_the_origin(view, further=bool(blocks)), *blocks]
     if not blocks:
         return ()
     if estimates is not None:
@@ -50,13 +65,14 @@ def compose(view: View) -> tuple[Section, ...]:
     return (view.section("Poles and zeros", tuple(blocks)),)
 
 
-def _at_the_origin(power: int) -> list[Block]:
+def _at_the_origin(view: View, *, further: bool) -> list[Block]:
+    power = view.result.solution.form.power_of_s
     if not power:
         return []
     kind = "zero" if power > 0 else "pole"
     count = f"a {FOLD.get(abs(power), f'{abs(power)}-fold ')}{kind}"
-    words = f"The factor s to the power {power} is {count} at the origin, besides those below."
-    return [Paragraph((Text(words.replace("-1 is", "−1 is").replace("-2 is", "−2 is")),))]
+    words = f" {'also ' if further else ''}has {count} at the origin."
+    return [Paragraph((Maths(Name(view.name)), Text(words)))]
 
 
 def _closed_forms(view: View, estimates: Estimates) -> list[Block]:
@@ -96,7 +112,7 @@ def _numeric(numbers: NominalNumbers) -> list[Block]:
     rows = [_row("pole", root) for root in numbers.poles if root.imaginary >= 0]
     rows += [_row("zero", root) for root in numbers.zeros if root.imaginary >= 0]
     if rows:
-        headings = ("", "Value", "Distance from the origin", "Q", "Where", "Error bound, relative")
+        headings = ("", "Value", "Frequency |p|/2π", "Q", "Where", "Error bound, relative")
         columns = _columns(headings, (1, 2, 3, 5))
         blocks.append(Table("Poles and zeros at the nominal values", columns, tuple(rows)))
     for root in numbers.coincident:
@@ -138,11 +154,16 @@ def _rules(view: View, estimates: Estimates) -> list[Block]:
     """Hold the rules of thumb against the truth."""
     new = same_poles(view) is None
     shown = [rule for rule in estimates.estimates if new or rule.unit == "Hz"]
+    remark = estimates.rules_remark if new else ""
+    said = (
+        [Paragraph((Text(f"{remark[:1].upper()}{remark[1:].rstrip('.')}."),), "note")] if remark else []
+    )
     if not shown:
-        return []
+        return [*said]
     headings = ("Rule of thumb", "Formula", "Gives", "True value", "Error", "Verdict")
     rows = tuple(_rule(rule) for rule in shown)
-    return [Table("Rules of thumb and their errors at these values", _columns(headings, (2, 3, 4)), rows)]
+    caption = "Rules of thumb and their errors at these values"
+    return [*said, Table(caption, _columns(headings, (2, 3, 4)), rows)]
 
 
 def _rule(rule: Estimate) -> tuple[Line, ...]:
@@ -152,7 +173,7 @@ def _rule(rule: Estimate) -> tuple[Line, ...]:
         value, exact = (engineering(number, RATIO / TIME, 4) for number in (rule.value, rule.exact))
     return (
         (Text(rule.name),),
-        (Maths(rule.formula),),
+        _formula(rule),
         (Text(value),),
         (Text(exact),),
         (Text(signed_percent(rule.error)),),
@@ -160,30 +181,55 @@ def _rule(rule: Estimate) -> tuple[Line, ...]:
     )
 
 
+def _formula(rule: Estimate) -> Line:
+    """Give a rule's formula; one in s is that of a response, whose fall by 3 dB is the estimate."""
+    if "s" not in names_of(rule.formula):
+        return (Maths(rule.formula),)
+    return Text("−3 dB of "), Maths(divide(ONE, rule.formula))
+
+
 def _sensitivities(view: View, estimates: Estimates) -> list[Block]:
-    """Say which parts each root follows, the strongest first."""
+    """Say how each root follows the parts, the strongest first."""
     new = same_poles(view) is None
-    rows = []
+    rows: list[tuple[Line, ...]] = []
     for root in estimates.sensitivities:
         if root.of == "pole" and not new:
             continue
-        strongest = _strongest(root)
+        strongest = _strongest([(symbol, value.real) for symbol, value in root.by_symbol])
         if root.root.imag >= 0 and strongest:
             frequency = hertz(abs(root.root) / (2 * math.pi))
             kind = f"{root.of} pair" if root.root.imag else root.of
             rows.append(((Text(kind),), (Text(frequency),), strongest))
+            of_quality = _strongest(root.quality)
+            rows += [((Text(f"Q of the {kind}"),), (), of_quality)] if of_quality else []
     if not rows:
         return []
-    columns = _columns(("Root", "At", "Parts that it follows, the strongest first"), (1,))
-    caption = "Relative change of a root's distance from the origin per relative change of a part"
-    return [Table(caption, columns, tuple(rows))]
+    columns = _columns(("Root", "At", "Sensitivity to, the strongest first"), (1,))
+    caption = "Sensitivities of poles and zeros"
+    return [Paragraph(_definition(view)), Table(caption, columns, tuple(rows))]
 
 
-def _strongest(root: RootSensitivity) -> Line:
-    ordered = sorted(root.by_symbol, key=lambda entry: -abs(entry[1].real))
-    kept = [entry for entry in ordered if abs(entry[1].real) >= LEAST][:MOST_PARTS]
+def _definition(view: View) -> Line:
+    """Say what a sensitivity is, and that the parameters of a device are taken one by one."""
+    words = "Sensitivity: relative change of a root's frequency per relative change of the part named, all others held"
+    for device in view.outcome.circuit.devices:
+        following = [line.symbol for line in device.lines if line.equation is not None]
+        if len(following) > 1:
+            line: list[Inline] = [Text(f"{words}; ")]
+            for place, symbol in enumerate(following):
+                lead = "" if not place else " and " if place == len(following) - 1 else ", "
+                line += [Text(lead), Maths(Name(symbol))]
+            return joined(
+                (*line, Text(" are varied one by one, although all follow the device's current."))
+            )
+    return (Text(f"{words}."),)
+
+
+def _strongest(by_symbol: Sequence[tuple[str, float]]) -> Line:
+    ordered = sorted(by_symbol, key=lambda entry: -abs(entry[1]))
+    kept = [entry for entry in ordered if abs(entry[1]) >= LEAST][:MOST_PARTS]
     line: list[Text | Maths] = []
     for place, (symbol, value) in enumerate(kept):
-        amount = f" {value.real:+.2f}".replace("-", "−")
+        amount = f" {value:+.2f}".replace("-", "−")
         line += [Text(", " if place else ""), Maths(Name(symbol)), Text(amount)]
     return joined(tuple(line))

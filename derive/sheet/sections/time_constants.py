@@ -26,9 +26,16 @@ from derive.sheet.document import (
 from derive.sheet.figures import figure, percent
 from derive.sheet.final import coefficient_name
 from derive.sheet.replaced import replaced
-from derive.sheet.resistances import Seen, constants_of, derivations, time_constants_of, told_before
+from derive.sheet.resistances import (
+    Seen,
+    constants_of,
+    derivations,
+    name_of,
+    time_constants_of,
+    told_before,
+)
 from derive.sheet.view import View, views
-from derive.sheet.wording import joined
+from derive.sheet.wording import joined, marked
 
 ORDER = 64
 SCOPE = "result"
@@ -49,6 +56,8 @@ def compose(view: View) -> tuple[Section, ...]:
         return ()
     before = told_before(view)
     blocks: list[Block] = []
+    if found.hidden_says:
+        blocks.append(Paragraph(marked(found.hidden_says)))
     if before is None:
         blocks += _tables(view, found)
     else:
@@ -80,6 +89,7 @@ def _tables(view: View, found: TimeConstants) -> list[Block]:
         if whole:
             sums = (Text(" The time constants add up to "), Maths(Name(coefficient_name(view, "b", 1))))
             line = (*line, *sums, Text(" exactly, and the share is each part's in it."))
+        line = (*line, *_meaning(view))
         blocks += [Paragraph(line), _table(view, found.open_circuit, "Open-circuit time constants")]
         blocks += _sum(view, found)
     short = found.short_circuit
@@ -93,6 +103,17 @@ def _tables(view: View, found: TimeConstants) -> list[Block]:
         words = "With no other reactance to short, the short-circuit time constant is the same."
         blocks.append(Paragraph((Text(words),)))
     return blocks
+
+
+def _meaning(view: View) -> Line:
+    """Say what the names of resistances stand for, the first time that one is used."""
+    named = [[row for row in constants_of(other) if name_of(row)] for other in views(view.outcome)]
+    first = next((place for place, rows in enumerate(named) if rows), None)
+    if first != view.place:
+        return ()
+    row = named[view.place][0]
+    says = (Text(" is the resistance that "), Maths(Name(row.symbol)), Text(" sees between its nodes."))
+    return Text(" "), Maths(Name(name_of(row))), *says
 
 
 def is_sum(found: TimeConstants) -> bool:
@@ -110,7 +131,7 @@ def _same_as_open(found: TimeConstants) -> bool:
 
 
 def _table(view: View, constants: tuple[TimeConstant, ...], caption: str) -> Table:
-    headings = ("Part", "Between", "Resistance seen", "Its value", "Time constant", "Share")
+    headings = ("Part", "Between", "Resistance seen", "Resistance", "Time constant", "Share")
     columns = tuple(Column((Text(heading),), place > 2) for place, heading in enumerate(headings))
     # Who owns the bandwidth comes first.
     ordered = sorted(constants, key=lambda constant: -abs(constant.share or 0))
@@ -153,12 +174,6 @@ def _resistance(view: View, constant: TimeConstant) -> Line:
     if not name or not isinstance(printed[0], Maths):
         return printed
     return (Maths(Equation(Name(name), constant.readable)),)
-
-
-def name_of(constant: TimeConstant) -> str:
-    """Give the name of a resistance in its own derivation, "" where it has none."""
-    derivation = constant.derivation
-    return derivation.system.find.name if derivation and constant.kind == "open-circuit" else ""
 
 
 def _ohms(view: View, constant: TimeConstant) -> str:
@@ -259,14 +274,16 @@ def _hidden(found: TimeConstants) -> list[Block]:
         "The circuit by itself has a further factor in its polynomial: modes that this response does not show. "
         "The time constants belong to the circuit, so their sum holds its first coefficient as well."
     )
+    factor = found.hidden_readable or found.hidden
     terms: list[Expression] = []
-    for power, value in enumerate(found.hidden):
+    for power, value in enumerate(factor):
         s: Expression = Name("s") if power == 1 else Power(Name("s"), power)
         terms.append(value if not power else multiply([s, Name(f"{FURTHER[:2]}{power}")]))
-    blocks: list[Block] = [Paragraph((Text(words),)), Display(add(terms), (Text("the further factor"),))]
+    blocks: list[Block] = [] if found.hidden_says else [Paragraph((Text(words),))]
+    blocks.append(Display(add(terms), (Text("the further factor"),)))
     blocks += [
         Display(Equation(Name(f"{FURTHER[:2]}{power}"), value))
-        for power, value in enumerate(found.hidden)
+        for power, value in enumerate(factor)
         if power
     ]
     return blocks
@@ -280,12 +297,13 @@ def _definitions(view: View, found: TimeConstants, *, tables: bool) -> tuple[tup
     for coefficient in found.coefficients:
         if coefficient not in told:
             shown += [product.readable for product in coefficient.products]
+    shown += found.hidden_readable
     return used_in(shown, known_definitions(view))
 
 
 def _derivation(seen: Seen) -> Folded:
     """Give a resistance's own derivation, every step with its reason."""
-    name = seen.derivation.system.find.name
+    name = seen.wording.derivation.system.find.name
     title = (
         Text("Derivation of "),
         Maths(Name(name)),
@@ -300,9 +318,9 @@ def _derivation(seen: Seen) -> Folded:
             seen.wording.label(step.number),
             seen.wording.anchor(step.number),
         )
-        for step in seen.derivation.steps
+        for step in seen.steps
     ]
     read = seen.constant.readable
-    if read is not None and steps and read != seen.derivation.steps[-1].equation.right:
+    if read is not None and steps and read != seen.steps[-1].equation.right:
         steps.append(Display(Equation(Name(name), read), (Text("the same for reading"),)))
     return Folded(title, tuple(steps))

@@ -22,7 +22,7 @@ from band_circuits import (
     with_value,
 )
 
-from derive.devices.elements import CurrentGain, OnePoleGain
+from derive.devices.elements import CurrentDrive, CurrentGain, OnePoleGain
 from derive.normalise.band_edges import BandEdges, band_edges
 from derive.normalise.capacitor_table import capacitor_table
 from derive.quantities.dimension import FREQUENCY, RATIO
@@ -169,7 +169,28 @@ def test_what_a_capacitor_sees_may_be_nothing_or_infinite():
     seen = rows(stage, "full", BandEdges((10.0,), ()))
     assert (seen["C_1"].resistance, seen["C_1"].at[0].ratio) == (0, None)
     assert (seen["C_2"].resistance, seen["C_2"].says) == (None, "infinite")
-    assert seen["C_2"].at[0].ratio == 0
+    # No reactance is small beside an infinite resistance in the sense that the part were a short.
+    assert seen["C_2"].at[0].ratio is None
+
+
+def test_a_capacitor_that_carries_the_current_of_a_drive_is_said_to_do_so():
+    stage = circuit(
+        (C("C_1", "x", "out"), R("R_1", "out", "gnd")),
+        {"C_1": "1/1000", "R_1": "10"},
+        (("C_1", "coupling"),),
+        drives=(CurrentDrive("I_s", ("gnd", "x")),),
+    )
+    row = rows(stage, "mid", BandEdges((10.0,), ()))["C_1"]
+    assert (row.resistance, row.at[0].ratio) == (None, None)
+    assert row.says == "infinite: in series with the current drive I_s"
+    # With a resistor beside the drive the capacitor sees both resistors.
+    shunted = circuit(
+        (C("C_1", "x", "out"), R("R_1", "out", "gnd"), R("R_2", "x", "gnd")),
+        {"C_1": "1/1000", "R_1": "10", "R_2": "30"},
+        (("C_1", "coupling"),),
+        drives=(CurrentDrive("I_s", ("gnd", "x")),),
+    )
+    assert rows(shunted, "mid", BandEdges((10.0,), ()))["C_1"].resistance == 40
 
 
 def test_an_open_value_is_said():

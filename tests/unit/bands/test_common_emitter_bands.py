@@ -137,7 +137,13 @@ def test_symbols_of_what_vanished_are_dropped():
     assert [symbol.name for symbol in narrowed.unmerged.symbols] == [
         "R_S", "R_1", "R_2", "r_pi", "g_m", "r_o", "R_C", "R_L",
     ]  # fmt: skip
-    assert [symbol.name for symbol in narrowed.circuit.symbols] == ["R_S", "R_1_2", "r_pi", "g_m", "R_C_L_o"]
+    assert [symbol.name for symbol in narrowed.circuit.symbols] == [
+        "R_S",
+        "R_1_2",
+        "r_pi",
+        "g_m",
+        "R_C_L_o",
+    ]
     assert narrowed.nodes == (("b", "x"), ("vcc", "gnd"), ("e", "gnd"), ("out", "c"))
 
 

@@ -9,6 +9,7 @@ from road import derivation_of
 from derive.check.roads import estimates as road
 from derive.check.verdict import Solution
 from derive.estimates.estimate import estimate
+from derive.estimates.estimates import Estimate
 from derive.expressions.parse import parse_expression
 from derive.normalise.normalise import normalise
 from derive.normalise.numbers import nominal_numbers
@@ -59,12 +60,12 @@ STAGES = {
 
 
 @cache
-def solution_of(name, find='voltage = "out"\nper = "V_s"', opened=""):
+def solution_of(name, find='voltage = "out"\nper = "V_s"', opened="", band="full"):
     parts = STAGES[name].replace(opened, '"?"') if opened else STAGES[name]
     form, derivation = normalise(derivation_of(parts, find=find))
     numbers = nominal_numbers(derivation)
     vocabulary = vocabulary_of(derivation.system.small_signal, ("H",))
-    said = estimate(derivation, form, numbers, None, vocabulary, "full")
+    said = estimate(derivation, form, numbers, None, vocabulary, band)
     return replace(Solution(derivation, form, numbers), estimates=said)
 
 
@@ -95,7 +96,7 @@ def test_impedances_are_found_right(name):
 
 def test_the_verdict_counts_what_was_judged():
     assert road.judge(solution_of("common emitter")).measured == (
-        "3 closed forms, 4 estimates, 1 crossing, 8 limits, 14 sensitivities"
+        "1 closed form, 4 estimates, 1 crossing, 8 limits, 14 sensitivities"
     )
 
 
@@ -116,12 +117,12 @@ def test_open_values_are_judged_in_symbols():
 @pytest.mark.parametrize(
     ("name", "change", "measured"),
     [
-        ("omega_0", {"expression": expression("1/sqrt(R_L*C_pi*C_mu*R_S)")}, "is no pole of the circuit"),
-        ("omega_0", {"readable": expression("sqrt(g_m)/C_mu")}, "is no pole of the circuit"),
-        ("Q", {"readable": expression("R_S/r_pi")}, "is no pole of the circuit"),
+        ("omega_0", {"expression": expression("1/sqrt(2*L_1*C_1)")}, "is no pole of the circuit"),
+        ("omega_0", {"readable": expression("sqrt(R_1)/C_1")}, "is no pole of the circuit"),
+        ("Q", {"readable": expression("R_1*sqrt(C_1/L_1)")}, "is no pole of the circuit"),
         ("omega_0", {"value": 1.0}, "its value is not what its formula gives"),
         ("omega_0", {"value": None}, "its value is not what its formula gives"),
-        ("Q", {"value": -0.0312}, "its value is not what its formula gives"),
+        ("Q", {"value": -10.0}, "its value is not what its formula gives"),
         ("omega_z1", {"readable": expression("g_m/(C_mu + C_pi)")}, "is no zero of the circuit"),
         ("omega_z1", {"says": "left half-plane zero"}, "is no zero of the circuit"),
         ("omega_z1", {"of": "pole"}, "is no pole of the circuit"),
@@ -129,7 +130,7 @@ def test_open_values_are_judged_in_symbols():
     ],
 )
 def test_a_wrong_closed_form_fails(name, change, measured):
-    solution = solution_of("common emitter")
+    solution = solution_of("common emitter" if name == "omega_z1" else "band-pass")
     forms = solution.estimates.closed_forms
     index = [form.name for form in forms].index(name)
     verdict = judged(solution, closed_forms=changed(forms, index, **change))
@@ -168,6 +169,51 @@ def test_an_estimate_against_the_wrong_pole_fails():
     assert judged(solution, estimates=wrong).measured == (
         "dominant pole: what it is held against is not that pole"
     )
+
+
+def test_a_rule_for_a_real_pole_held_against_a_pair_fails():
+    solution = solution_of("band-pass")
+    assert not any(one.unit == "rad/s" for one in solution.estimates.estimates)
+    # b_1 is R_1·C_1, and the pair lies at 1 Mrad/s.
+    value, exact = -1e7, -1e6
+    wrong = Estimate(
+        "dominant pole", expression("-1/b_1"), "rad/s", value, exact, (value - exact) / exact, False, ""
+    )
+    assert judged(solution, estimates=(wrong,)).measured == (
+        "dominant pole: what it is held against is not that pole"
+    )
+
+
+def test_rules_of_a_low_band_are_about_its_lowest_and_highest_pole():
+    solution = solution_of("high-pass", band="low")
+    lowest, highest = solution.estimates.estimates[:2]
+    assert (lowest.name, highest.name) == ("lowest pole", "highest pole")
+    assert road.judge(solution).passed is True
+    # 1 and 3 µs: b_1 = 4 µs, b_2 = 3 µs².
+    assert (highest.exact, highest.value) == pytest.approx((-1e6, -4e6 / 3))
+    for index, other in ((0, highest), (1, lowest)):
+        one = solution.estimates.estimates[index]
+        error = (one.value - other.exact) / other.exact
+        wrong = changed(solution.estimates.estimates, index, exact=other.exact, error=error, usable=False)
+        assert judged(solution, estimates=wrong).measured == (
+            f"{one.name}: what it is held against is not that pole"
+        )
+
+
+@pytest.mark.parametrize("shift", [1e-3, -1e-3])
+def test_a_wrong_sensitivity_of_q_fails(shift):
+    solution = solution_of("band-pass")
+    roots = solution.estimates.sensitivities
+    symbol, value = roots[0].quality[0]
+    wrong = changed(roots, 0, quality=((symbol, value + shift), *roots[0].quality[1:]))
+    assert judged(solution, sensitivities=wrong).measured == (
+        f"Q of pole 1 follows {symbol} otherwise than stated"
+    )
+    missing = changed(roots, 0, quality=())
+    assert judged(solution, sensitivities=missing).passed is False
+    real = solution_of("common emitter").estimates.sensitivities
+    added = changed(real, 0, quality=(("R_S", 1.0),))
+    assert judged(solution_of("common emitter"), sensitivities=added).passed is False
 
 
 def test_an_estimate_that_errs_too_much_may_not_be_called_usable():

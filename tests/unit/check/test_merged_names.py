@@ -56,7 +56,7 @@ def failed(solution, **more):
 
 def test_a_right_definition_passes_every_road():
     verdicts = check(banded(), lcapy_seconds=60)
-    assert [verdict.name for verdict in verdicts if verdict.passed is not True] == []
+    assert [verdict.name for verdict in verdicts if verdict.applies and not verdict.passed] == []
 
 
 @pytest.mark.parametrize("wrong", ["R_2 + R_3", "R_2", "R_2*R_3/(R_2 + 2*R_3)"])

@@ -158,3 +158,68 @@ def test_views_of_random_circuits_pass():
                 judged += 1
                 assert road.judge(solution).passed is True, seed
     assert judged >= 8
+
+
+@pytest.fixture(scope="module")
+def turned():
+    """Give a view with poles that cannot be compared: with a heavy load the follower has a pair."""
+    loaded = FOLLOWER + 'C_L = { capacitor = "200p", between = ["out", "gnd"] }\n'
+    return solution_of(loaded)
+
+
+def test_percentage_between_a_real_pole_and_a_pair_fails(turned):
+    (view,) = turned.miller
+    assert road.judge(turned).passed is True
+    (place,) = [k for k, error in enumerate(view.errors) if error.name == "first pole"]
+    assert view.errors[place].error is None
+    for change in ({"error": 0.0175, "says": ""}, {"says": ""}):
+        errors = list(view.errors)
+        errors[place] = replace(errors[place], **change)
+        wrong = replace(turned, miller=(replace(view, errors=tuple(errors)),))
+        assert road.judge(wrong).passed is False
+
+
+def test_false_pole_on_the_right_that_is_not_told_fails():
+    # Into a follower's output the halves make a pole in the right half-plane.
+    loaded = (
+        FOLLOWER.replace('"out"', '"e"')
+        + """
+R_iso = { resistor = "47 ohm", between = ["e", "out"] }
+C_cab = { capacitor = "4n7", between = ["out", "gnd"] }
+"""
+    )
+    solution = solution_of(loaded)
+    (view,) = solution.miller
+    assert road.judge(solution).passed is True
+    false = [error for error in view.errors if error.says and error.approximate.real > 0]
+    assert false
+    for error in false:
+        kept = tuple(other for other in view.errors if other is not error)
+        wrong = replace(solution, miller=(replace(view, errors=kept),))
+        assert road.judge(wrong).passed is False
+        exact = error.exact or -1e9
+        moved = tuple(
+            replace(other, exact=2 * exact) if other is error else other for other in view.errors
+        )
+        wrong = replace(solution, miller=(replace(view, errors=moved),))
+        assert road.judge(wrong).passed is False
+
+
+def test_pole_that_does_not_follow_the_capacitor_is_not_judged_by():
+    tuned = (
+        STAGE.replace('"out"', '"c"').replace("C_L", "C_x")
+        + """
+A_1 = { voltage_gain = "1", output = ["m", "gnd"], senses = ["c", "gnd"] }
+R_9 = { resistor = "10 ohm", between = ["m", "n"] }
+L_9 = { inductor = "1m", between = ["n", "out"] }
+C_9 = { capacitor = "1u", between = ["out", "gnd"] }
+"""
+    )
+    solution = solution_of(tuned)
+    (view,) = solution.miller
+    assert road.judge(solution).passed is True
+    assert view.usable is True
+    # Were the second pole not compared, the first, exact as it is, would say nothing of the approximation.
+    kept = tuple(error for error in view.errors if error.name != "second pole")
+    wrong = replace(solution, miller=(replace(view, errors=kept),))
+    assert "second pole" in road.judge(wrong).measured

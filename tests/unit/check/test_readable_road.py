@@ -9,6 +9,7 @@ from derive.bands.restrict import restrict
 from derive.check.roads import readable as road
 from derive.devices.linearise import linearise
 from derive.expressions.parse import parse_expression
+from derive.expressions.text import to_text
 from derive.pipeline import solve
 from derive.readable.form import ReadableForm
 from derive.reading.read import parse
@@ -111,3 +112,33 @@ def test_gain_far_above_all_corners_is_judged_too():
     wrong = far("R_1/(R_1 + R_2)")
     assert wrong.passed is False
     assert "far above" in wrong.measured
+
+
+SECTIONS = """
+[sheet]
+title = "Two sections with a buffer between"
+[drives]
+V_s = { voltage = ["in", "gnd"] }
+[parts]
+R_1 = { resistor = "1k", between = ["in", "a"] }
+C_1 = { capacitor = "1n", between = ["a", "gnd"] }
+A_1 = { voltage_gain = "2", output = ["b", "gnd"], senses = ["a", "gnd"] }
+R_2 = { resistor = "3k3", between = ["b", "out"] }
+C_2 = { capacitor = "1n", between = ["out", "gnd"] }
+[find.A_v]
+voltage = "out"
+per = "V_s"
+"""
+
+
+def test_factors_of_the_denominator_are_found_and_judged():
+    circuit = linearise(parse(SECTIONS, "sections.toml"), {})
+    right = solve(restrict(circuit, "full"), circuit.topology.finds[0])
+    texts = [tuple(map(to_text, factor)) for factor in right.readable.denominator_factors]
+    assert sorted(texts) == [("1", "R_1*C_1"), ("1", "R_2*C_2")]
+    assert road.judge(right).passed is True
+    one = right.readable.denominator_factors[0]
+    wrong = replace(right, readable=replace(right.readable, denominator_factors=(one, one)))
+    verdict = road.judge(wrong)
+    assert verdict.passed is False
+    assert "factors" in verdict.measured

@@ -29,8 +29,8 @@ def test_a_right_answer_passes(road, name):
 def test_another_engine_agrees_on_every_circuit():
     verdicts = check_all([solution_of(name) for name in CIRCUITS], lcapy_seconds=60)
     for name, row in zip(CIRCUITS, verdicts, strict=True):
-        assert row[-1].name == "another engine"
-        assert row[-1].passed is True, (name, row[-1].measured)
+        assert row[6].name == "another engine"
+        assert row[6].passed is True, (name, row[6].measured)
 
 
 def test_verdicts_come_in_one_order_and_are_the_same_each_time():
@@ -44,9 +44,13 @@ def test_verdicts_come_in_one_order_and_are_the_same_each_time():
         "dimensions",
         "every step",
         "another engine",
+        "readable form",
+        "time constants",
+        "Miller's theorem",
+        "estimates",
     ]
-    assert first[-1].passed is None
-    assert first[-1].measured == "not asked for"
+    assert first[6].passed is None
+    assert first[6].measured == "not asked for"
 
 
 def test_asymptotes_are_named_as_they_are():

@@ -257,3 +257,35 @@ def test_definition_that_a_readable_form_uses_is_taken_at_its_word():
     assert with_row(COMMON_EMITTER, 1, **both, definitions=(*kept, *right)).passed is True
     assert with_row(COMMON_EMITTER, 1, **both, definitions=(*kept, *wrong)).passed is False
     assert with_row(COMMON_EMITTER, 1, **both, definitions=kept).passed is False
+
+
+@pytest.mark.parametrize(
+    "changes",
+    [
+        {"hidden_says": ""},
+        {"hidden_readable": (ONE, parse_expression("R_1*C_1"))},
+        {"hidden": (ONE, parse_expression("R_1*C_1")), "hidden_readable": ()},
+    ],
+)
+def test_wrong_word_on_a_hidden_mode_fails(changes):
+    assert verdict_on(HIDDEN, **changes).passed is False
+
+
+def test_coefficient_of_the_whole_circuit_is_none_of_a_response_with_hidden_modes():
+    def with_the_hidden_one(products):
+        other = replace(products[0], symbols=("C_2",), term=parse_expression("R_2*C_2"))
+        return [products[0], replace(other, readable=other.term)]
+
+    verdict = with_products(HIDDEN, "b_1", with_the_hidden_one)
+    assert verdict.passed is False
+    assert "b_1" in verdict.measured
+
+
+def test_open_circuit_constant_of_a_hidden_mode_is_judged():
+    row = solved(HIDDEN).time_constants.open_circuit[1]
+    assert row.symbol == "C_2"
+    assert with_row(HIDDEN, 1, constant=twice(row.constant)).passed is False
+
+
+def test_words_of_hidden_modes_where_there_are_none_fail():
+    assert verdict_on(COIL, hidden_says="C_9 cancels.").passed is False

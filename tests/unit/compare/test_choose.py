@@ -1,7 +1,7 @@
 """What is compared: the first gain or the one named, and only what is of one kind."""
 
 import pytest
-from stages import LOW_PASS, TRANSIMPEDANCE, compared
+from compared_stages import LOW_PASS, TRANSIMPEDANCE, compared
 
 from derive.errors import InputError
 

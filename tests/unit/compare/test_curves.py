@@ -4,7 +4,7 @@ import math
 
 import numpy as np
 import pytest
-from stages import (
+from compared_stages import (
     BANDED,
     HIGH_PASS,
     INTEGRATOR,

@@ -4,7 +4,7 @@ import math
 from fractions import Fraction
 
 import pytest
-from stages import (
+from compared_stages import (
     BANDED,
     HIGH_PASS,
     INTEGRATOR,

@@ -6,7 +6,7 @@ from dataclasses import replace
 from fractions import Fraction
 
 import pytest
-from stages import (
+from compared_stages import (
     BANDED,
     HIGH_PASS,
     INVERTING,

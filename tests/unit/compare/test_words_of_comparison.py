@@ -5,7 +5,17 @@ import math
 from fractions import Fraction
 
 import pytest
-from stages import BANDED, INVERTING, LOW_PASS, NOTCH, OP_AMP, OPEN, TRANSIMPEDANCE, compared, stage
+from compared_stages import (
+    BANDED,
+    INVERTING,
+    LOW_PASS,
+    NOTCH,
+    OP_AMP,
+    OPEN,
+    TRANSIMPEDANCE,
+    compared,
+    stage,
+)
 
 from derive.compare.at_mid_band import real_level
 from derive.compare.comparison import Level
@@ -30,10 +40,11 @@ def cells(comparison):
 
 def test_rows_of_the_table():
     found = cells(compared(BANDED, LOW_PASS))
-    assert found["Quantity"] == ["H, voltage of out per V_s"] * 2
+    assert found["Title"] == ["Coupled", "Low-pass"]
+    assert found["Quantity"] == ["H, voltage at node out per V_s"] * 2
     assert found["Worked in"] == ["low, mid, high", "full"]
-    assert found["Taken as mid-band"] == ["mid band", "zero frequency"]
-    assert found["Gain at mid-band"] == ["0.9", "1"]
+    assert found["Taken as mid band"] == ["mid band", "zero frequency"]
+    assert found["Gain in the mid band"] == ["0.9", "1"]
     assert found["… in decibels"] == ["−0.92 dB", "0.00 dB"]
     assert found["−3 dB frequency, low"] == ["15.92 Hz", "–"]
     assert found["−3 dB frequency, high"] == ["176.8 kHz", "15.92 kHz"]
@@ -47,22 +58,22 @@ def test_rows_of_the_table():
 
 def test_a_band_that_the_topology_leaves_out_is_not_called_open():
     found = cells(compared('bands = ["mid", "high"]\n' + BANDED))
-    assert found["−3 dB frequency, low"] == ["not worked"]
+    assert found["−3 dB frequency, low"] == ["not asked for (no low band in the file)"]
     assert found["−3 dB frequency, high"] == ["176.8 kHz"]
 
 
 def test_rows_that_say_nothing_of_a_quantity_are_left_out():
     found = cells(compared(TRANSIMPEDANCE))
-    assert found["Gain at mid-band"] == ["4 kΩ"]
+    assert found["Gain in the mid band"] == ["4 kΩ"]
     assert "Gain-bandwidth product" not in found
     assert "… in decibels" not in found
     impedance = cells(compared(LOW_PASS + '[find.Z]\nimpedance = "out"\n', find="Z"))
-    assert impedance["Impedance at mid-band"] == ["1 kΩ"]
+    assert impedance["Impedance in the mid band"] == ["1 kΩ"]
     assert "Input impedance" not in impedance
 
 
 def test_open_values_are_named():
-    assert cells(compared(OPEN))["Gain at mid-band"] == ["left open"]
+    assert cells(compared(OPEN))["Gain in the mid band"] == ["left open"]
 
 
 @pytest.mark.parametrize(
@@ -122,7 +133,7 @@ def test_no_line_is_wider_than_the_terminal(width):
     assert max(map(len, text.splitlines())) <= max(width, 44)
     for name in ("coupled", "low-pass", "notch", "op_amp", "inverting"):
         assert name in text
-    assert text.count("Gain at mid-band") == (5 if width == 40 else text.count("Stage "))
+    assert text.count("Gain in the mid band") == (5 if width == 40 else text.count("Stage "))
 
 
 def test_a_terminal_too_narrow_for_one_stage_is_filled_all_the_same():
@@ -143,7 +154,7 @@ def test_the_plot_has_a_curve_a_stage_and_rings_on_the_curves():
     assert magnitude.guides == (0.0,)
     rings = [(spot.curve, round(spot.across), round(spot.up, 1)) for spot in magnitude.spots]
     assert rings == [("coupled", 16, -3.9), ("coupled", 176839, -3.9), ("low-pass", 15915, -3.0)]
-    assert "coupled: −0.92 dB at mid-band, down by 3 dB at 15.92 Hz below it" in plot.words
+    assert "coupled: −0.92 dB in the mid band, down by 3 dB at 15.92 Hz below it" in plot.words
 
 
 def test_without_curves_there_is_no_plot():
@@ -183,7 +194,7 @@ def test_the_sheet_carries_every_topology_and_all_sections():
         "Side by side",
         "Response against frequency",
         "What the figures are",
-        "Expressions at mid-band",
+        "Expressions in the mid band",
         "Scope and cautions",
     ]
     kinds = {type(block) for section in sheet.sections for block in section.blocks}
@@ -196,12 +207,29 @@ def test_a_title_that_would_be_long_counts_the_stages():
 
 
 def test_expressions_at_mid_band_stand_with_their_words():
-    section = next(s for s in compose_comparison(compared(BANDED)).sections if s.title == "coupled")
+    sections = compose_comparison(compared(BANDED)).sections
+    section = next(s for s in sections if s.title == "coupled: Coupled")
     shown = [line_text(block.reason) for block in section.blocks if isinstance(block, Display)]
-    assert shown[0] == "Gain: voltage of out per V_s: 0.9."
-    assert shown[1].startswith("Input impedance between in and gnd with V_s taken out")
-    assert shown[1].endswith(": 10 kΩ.")
-    assert shown[2].endswith(": 900 Ω.")
+    assert shown[0] == "Gain: voltage at node out per V_s: 0.9."
+    # What is in it and what is out is told once, under what the figures are.
+    assert shown[1] == "Input impedance between in and gnd: 10 kΩ."
+    assert shown[2] == "Output impedance between out and gnd: 900 Ω."
+    (told,) = [s for s in sections if s.title == "What the figures are"]
+    words = [line_text(block.line) for block in told.blocks]
+    assert sum("a source resistor and the load included" in line for line in words) == 1
+
+
+def test_a_stage_tuned_to_a_frequency_is_compared_by_its_gain_there():
+    # A series LCR: |V_R/V_s| is 1 at f_0 = 1/(2π·√(L·C)) = 5.0329 kHz, and nothing at zero frequency.
+    tuned = (
+        '[sheet]\ntitle = "Tuned"\n[drives]\nV_s = { voltage = ["in", "gnd"] }\n[parts]\n'
+        'L_1 = { inductor = "1 mH", between = ["in", "a"] }\n'
+        'C_1 = { capacitor = "1u", between = ["a", "out"] }\n'
+        'R_1 = { resistor = "1R", between = ["out", "gnd"] }\n[find.H]\nvoltage = "out"\nper = "V_s"\n'
+    )
+    found = cells(compared(tuned))
+    assert found["Gain in the mid band"] == ["1"]
+    assert found["Taken as mid band"] == ["5.033 kHz"]
 
 
 def test_the_ledger_holds_the_same_figures_and_reads_as_json():

@@ -82,3 +82,19 @@ def test_coupled_coils_are_left_out():
     said = said_of(parts)
     assert said.sensitivities == ()
     assert said.bandwidth is not None
+
+
+def test_q_of_a_series_circuit_follows_its_parts_as_the_textbook_s_does():
+    # Q = (1/R)·√(L/C): −1, +1/2 and −1/2.
+    said = said_of(SERIES_RLC % "500 ohm")
+    for root in said.sensitivities:
+        found = dict(root.quality)
+        assert found["R_1"] == pytest.approx(-1)
+        assert found["L_1"] == pytest.approx(0.5)
+        assert found["C_1"] == pytest.approx(-0.5)
+
+
+def test_real_roots_have_no_sensitivity_of_q():
+    said = said_of(COMMON_EMITTER)
+    assert said.sensitivities
+    assert all(root.quality == () for root in said.sensitivities)

@@ -76,11 +76,10 @@ def test_the_sum_promises_too_much_for_a_complex_pair():
     assert not found.usable
     assert "promises 35 % more bandwidth than there is" in found.says
     assert "a complex pair (Q = 2)" in found.says
-    for name, error in (("dominant pole", q - 1), ("second pole", 1 / q - 1)):
-        pole = rule(said, name)
-        assert pole.error == pytest.approx(error, abs=SIX_DIGITS)
-        assert not pole.usable
-        assert "complex pair (Q = 2)" in pole.says
+    assert [one.name for one in said.estimates] == [SUM]
+    assert said.rules_remark == (
+        "No real pole dominates: the lowest poles are a pair with Q = 2. Rules for real poles do not apply."
+    )
 
 
 def test_an_overdamped_rlc_section_errs_as_scipy_has_it():
@@ -131,6 +130,60 @@ def test_the_low_corner_is_the_sum_of_short_circuit_corners():
     assert found.error == pytest.approx(2 / exact - 1, abs=SIX_DIGITS)
     assert to_text(found.formula) == "b_1/(2*pi*b_2)"
     assert "above the true one, the safe side" in found.says
+
+
+def test_poles_of_a_low_band_are_the_lowest_and_the_highest():
+    # Three sections of 1, 10 and 100 µs: b_1 = 111 µs, b_2/b_3 = (1 + 0.1 + 0.01)·10⁶ rad/s.
+    said = said_of(sections(1, 10, 100), band="low")
+    assert [one.name for one in said.estimates if one.unit == "rad/s"] == ["lowest pole", "highest pole"]
+    lowest, highest = rule(said, "lowest pole"), rule(said, "highest pole")
+    assert to_text(lowest.formula) == "-1/b_1"
+    assert lowest.error == pytest.approx(1e4 / 111e-6 * 1e-8 - 1, abs=SIX_DIGITS)
+    assert to_text(highest.formula) == "-b_2/b_3"
+    assert (highest.value, highest.exact) == pytest.approx((-1.11e6, -1e6))
+    assert highest.error == pytest.approx(0.11, abs=SIX_DIGITS)
+    assert not highest.usable
+    assert said.rules_remark == ""
+    high = said_of(sections(1, 10, 100), band="high")
+    assert [one.name for one in high.estimates if one.unit == "rad/s"] == ["dominant pole", "second pole"]
+
+
+def behind_a_section(parts, size):
+    """Put a section of that many nF behind a buffer behind other parts."""
+    return (
+        parts.replace('"out"', '"m"')
+        + f"""
+A_9 = {{ voltage_gain = "1", output = ["k", "gnd"], senses = ["m", "gnd"] }}
+R_9 = {{ resistor = "1k", between = ["k", "out"] }}
+C_9 = {{ capacitor = "{size} nF", between = ["out", "gnd"] }}
+"""
+    )
+
+
+def test_a_pair_beyond_a_real_pole_leaves_the_rule_for_that_one():
+    # A pair at 1 Mrad/s with Q = 2, and a section at 10 krad/s.
+    parts = behind_a_section(SERIES_RLC % "500 ohm", 100)
+    said = said_of(parts)
+    assert [one.name for one in said.estimates if one.unit == "rad/s"] == ["dominant pole"]
+    assert rule(said, "dominant pole").usable
+    assert said.rules_remark == (
+        "The next poles are a pair with Q = 2: the rule for a second real pole does not apply."
+    )
+    low = said_of(parts, band="low")
+    assert [one.name for one in low.estimates if one.unit == "rad/s"] == ["lowest pole"]
+    assert low.rules_remark == (
+        "The highest poles are a pair with Q = 2: the rule for a highest real pole does not apply."
+    )
+
+
+def test_time_constants_of_hidden_modes_are_not_summed():
+    row = TimeConstant(
+        "C_9", "C_9", "C_9", "capacitor", "open-circuit", ("a", "gnd"),
+        None, None, None, Name("tau"), Fraction("9e-6"), None,
+    )  # fmt: skip
+    given = TimeConstants((row,), (), (), (), hidden_says="C_9 makes a mode of the circuit.")
+    found = rule(said_of(sections(1, 1), time_constants=given), SUM)
+    assert found.value == pytest.approx(1 / (2 * np.pi * 2e-6), rel=1e-12)
 
 
 def test_the_sum_is_taken_from_the_time_constants_where_they_are_given():

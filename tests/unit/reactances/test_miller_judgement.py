@@ -6,7 +6,7 @@ import pytest
 from miller_circuits import FOLLOWER, STAGE, views_of
 
 from derive.reactances.miller import MillerError
-from derive.reactances.miller_errors import Comparison, Landmarks
+from derive.reactances.miller_errors import Comparison, Landmarks, _errors, _errors_of_poles
 from derive.reactances.miller_judgement import EXACT, judge
 
 NODES = ("b", "out")
@@ -45,7 +45,7 @@ def test_close_second_pole_may_be_used_too():
     )
 
 
-@pytest.mark.parametrize("gain", ["1", "0.6", "1.4", "0.99"])
+@pytest.mark.parametrize("gain", ["1", "0.76", "1.24", "0.99"])
 def test_gain_near_plus_one_misleads(gain):
     usable, (reason,) = judged(gain=Fraction(gain))
     assert usable is False
@@ -54,7 +54,25 @@ def test_gain_near_plus_one_misleads(gain):
 
 @pytest.mark.parametrize("gain", ["0.5", "1.5", "-1", "2", "-100"])
 def test_gain_far_from_plus_one_does_not_mislead(gain):
-    assert judged(gain=Fraction(gain))[0] is True
+    usable, reasons = judged(gain=Fraction(gain))
+    assert usable is True
+    assert not any("gain from" in reason for reason in reasons)
+
+
+@pytest.mark.parametrize(
+    ("gain", "words"),
+    [
+        ("0.639", "the gain from b to out is 0.639, positive and above one half"),
+        ("1.27", "the gain from b to out is 1.27: its near half is negative"),
+    ],
+)
+def test_gain_towards_plus_one_leaves_the_first_pole_alone(gain, words):
+    usable, reasons = judged(gain=Fraction(gain))
+    assert usable is True
+    assert reasons == ("for the first pole alone, within 0.01 %", words)
+    usable, reasons = judged(approximate=poles(-2e6, -1e9), gain=Fraction(gain))
+    assert usable is False
+    assert reasons == (words, "the first pole would be 100 % too high")
 
 
 def test_gain_that_changes_within_a_decade_of_the_first_pole_misleads():
@@ -62,8 +80,12 @@ def test_gain_that_changes_within_a_decade_of_the_first_pole_misleads():
     usable, (reason,) = judged(own=[-1.1e7 + 0j, -9e6 + 0j])
     assert usable is False
     assert reason == (
-        "the gain from b to out changes within the band: from 1.43 MHz on, with the first pole at 159 kHz"
+        "the gain from b to out changes from 1.43 MHz on, within a decade of the first pole at 159 kHz"
     )
+    errors = (MillerError("first pole", -1e6, -1e6, 0.0),)
+    comparison = Comparison(TRUE, TRUE, False, errors, (), ())
+    _, (reason,) = judge(comparison, Fraction(-10), [-9e6 + 0j], NODES, cause="C_L")
+    assert reason.startswith("the gain from b to out changes, through C_L, from 1.43 MHz on, within")
 
 
 def test_first_pole_beyond_ten_percent_misleads():
@@ -101,24 +123,84 @@ def test_zero_that_the_circuit_has_not_misleads_within_a_decade():
 def test_further_pole_misleads_within_a_decade_and_is_told_beyond():
     usable, reasons = judged(approximate=poles(-1e6, -3e6, -1e9))
     assert usable is False
-    assert "within a decade of the first pole it has 2 poles, where the circuit has 1" in reasons
+    assert "up to a decade beyond the first pole it has 2 poles, where the circuit has 1" in reasons
     usable, reasons = judged(approximate=poles(-1e6, -1e9, -2e9))
     assert usable is True
     assert "it has 3 poles, where the circuit has 2" in reasons
 
 
-def test_pole_in_the_right_half_plane_misleads():
-    usable, reasons = judged(approximate=poles(-1e6, 1e9))
+def test_pole_in_the_right_half_plane_misleads_near_the_first_and_leaves_that_one_alone_beyond():
+    usable, reasons = judged(approximate=poles(-1e6, 1e9), errors=_errors(poles(-1e6, 1e9), TRUE, (), 0))
+    assert usable is True
+    assert reasons == (
+        "for the first pole alone, within 0.01 %",
+        "it has a pole in the right half-plane, at 159 MHz, where the circuit has none",
+    )
+    usable, reasons = judged(approximate=poles(-1e6, 9e6))
     assert usable is False
-    assert reasons == ("it has a pole in the right half-plane, where the circuit has none",)
-    _, reasons = judged(approximate=poles(1e6, -1e9))
-    assert reasons[-1] == "the first pole would be in the right half-plane"
+    assert reasons == (
+        "it has a pole in the right half-plane, at 1.43 MHz, where the circuit has none, within a decade of "
+        "the first pole",
+    )
+    false = poles(1e6, -1e9)
+    usable, reasons = judged(approximate=false, errors=_errors(false, TRUE, (), 0))
+    assert usable is False
+    assert reasons == ("the first pole would be in the right half-plane",)
+
+
+def test_roots_that_cannot_be_compared_have_no_error():
+    pair = poles(-7e5 - 7e5j, -7e5 + 7e5j)
+    (error,) = _errors_of_poles(pair, TRUE, 0)
+    assert (error.name, error.error, error.says) == ("first pole", None, "a pair, and not real")
+    error, _ = _errors_of_poles(TRUE, poles(-7e5 - 7e5j, -7e5 + 7e5j, -1e9), 0)
+    assert (error.error, error.says) == (None, "real, and no pair")
+    first, second, third = _errors_of_poles(poles(-1e6, -1e8, 3e9), poles(-1e6, -1e9, -2e9), 0)
+    assert (first.error, third.name, third.error, third.says) == (
+        0,
+        "third pole",
+        None,
+        "wrong half-plane",
+    )
+    assert second.error == pytest.approx(-0.9)
+    # One that the circuit has no counterpart of is told as well.
+    *_, last = _errors_of_poles(poles(-1e6, -1e9, 3e9), TRUE, 0)
+    assert (last.approximate, last.exact, last.error) == (3e9, None, None)
+    assert last.says == "the circuit has no such pole"
+    # Two pairs are compared by their size.
+    (error,) = _errors_of_poles(poles(-6 - 8j, -6 + 8j), poles(-3 - 4j, -3 + 4j), 0)
+    assert (error.error, error.approximate) == (1.0, -6 + 8j)
 
 
 def test_complex_pair_in_a_real_poles_place_misleads():
-    usable, reasons = judged(approximate=poles(-7e5 - 7e5j, -7e5 + 7e5j))
+    pair = poles(-7e5 - 7e5j, -7e5 + 7e5j)
+    usable, reasons = judged(approximate=pair, errors=_errors_of_poles(pair, TRUE, 0))
     assert usable is False
-    assert reasons[-1] == "the first pole is real, and the approximation's is not"
+    assert reasons[-1] == "the first pole would be a pair, and not real"
+
+
+def test_pair_that_does_not_follow_the_capacitor_is_not_what_it_is_judged_by():
+    # A tank far below the pole of the stage, behind a buffer: C_mu has no part in it.
+    tuned = (
+        STAGE.replace('"out"', '"c"').replace("C_L", "C_x")
+        + """
+A_1 = { voltage_gain = "1", output = ["m", "gnd"], senses = ["c", "gnd"] }
+R_9 = { resistor = "10 ohm", between = ["m", "n"] }
+L_9 = { inductor = "1m", between = ["n", "out"] }
+C_9 = { capacitor = "1u", between = ["out", "gnd"] }
+"""
+    )
+    plain, view = views_of(STAGE)["C_mu"], views_of(tuned)["C_mu"]
+    errors = {error.name: error for error in view.errors}
+    # √(L/C)/R is 3.16: a pair at 1/√(L·C).
+    assert abs(errors["first pole"].exact) == pytest.approx(1e-9**-0.5)
+    assert errors["first pole"].error == pytest.approx(0, abs=1e-12)
+    first = next(error for error in plain.errors if error.name == "first pole")
+    assert errors["second pole"].error == pytest.approx(first.error)
+    assert view.usable is True
+    assert view.reasons[0].startswith("the second pole, at ")
+    assert view.reasons[0].endswith(" is judged, as the first does not follow C_mu")
+    assert view.reasons[1].startswith("second pole within ")
+    assert "second pole, at" not in " ".join(plain.reasons)
 
 
 def test_poles_at_the_low_end_are_not_the_first_pole():
@@ -161,7 +243,7 @@ def test_stage_with_a_heavy_load_may_not():
     loaded = STAGE.replace('C_L = { capacitor = "5p"', 'C_L = { capacitor = "500p"')
     view = views_of(loaded)["C_mu"]
     assert view.usable is False
-    assert any("changes within the band" in reason for reason in view.reasons)
+    assert any("changes, through C_L, from" in reason for reason in view.reasons)
     # Near and far pole are of one size now: 1/(R·172 pF) and 1/(R_L·502 pF), and the sum counts both.
     first = next(error for error in view.errors if error.name == "first pole")
     assert first.error > 0.10

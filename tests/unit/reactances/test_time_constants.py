@@ -15,6 +15,7 @@ from derive.expressions.text import to_text
 from derive.expressions.tree import ONE, ZERO
 from derive.expressions.walk import substitute
 from derive.normalise.normalise import normalise
+from derive.reactances.cancel import multiplied
 from derive.reactances.find_time_constants import find_time_constants
 from derive.readable.vocabulary import vocabulary_of
 
@@ -167,7 +168,23 @@ C_2 = { capacitor = "1n", between = ["out", "gnd"] }
     assert rows["C_1"].resistance is None
     assert equal(rows["C_2"].resistance, "R_1")
     assert equal(products_of(found, "b_1")["C_2",].term, "R_1*C_2")
-    assert "C_1 sees an open circuit at DC" in found.remark
+    assert found.remark == "C_1 carries the drive's current: it does not act in H"
+
+
+def test_capacitor_that_blocks_dc_is_a_pole_at_the_origin_of_an_impedance():
+    parts = """
+C_1 = { capacitor = "1u", between = ["in", "out"] }
+R_1 = { resistor = "1k", between = ["out", "gnd"] }
+"""
+    found = constants_of(parts, drives='I_s = { current = ["gnd", "in"] }', find='impedance = "in"')
+    assert found.remark == "C_1 blocks DC: a pole at the origin"
+    # Into a capacitor alone, the voltage per ampere grows without end towards DC.
+    found = constants_of(
+        'C_1 = { capacitor = "1u", between = ["in", "gnd"] }',
+        drives='I_s = { current = ["gnd", "in"] }',
+        find='voltage = "in"\nper = "I_s"',
+    )
+    assert found.remark == "C_1 sees an open circuit at DC: a pole at the origin"
 
 
 def test_capacitor_across_a_voltage_drive_sees_nothing():
@@ -190,10 +207,84 @@ C_2 = { capacitor = "1n", between = ["y", "gnd"] }
     )
     assert len(found.hidden) == 2
     assert equal(found.hidden[1], "R_2*C_2")
-    total = [product.term for product in products_of(found, "b_1").values()]
-    assert len(total) == 2
-    assert equal(total[0], "R_1*C_1")
-    assert equal(total[1], "R_2*C_2")
+    assert equal(found.hidden_readable[1], "R_2*C_2")
+    assert found.hidden_symbols == ("C_2",)
+    assert found.hidden_says == (
+        "C_2 with R_2 is a mode of the circuit, 1/(R_2·C_2), that does not show in H: it cancels. The time "
+        "constants in the table are those of the whole circuit, the coefficients those of H."
+    )
+    # The table is the circuit's, with half of its sum each; the coefficient is that of the response.
+    assert [row.share for row in found.open_circuit] == [0.5, 0.5]
+    (own,) = products_of(found, "b_1").values()
+    assert equal(own.term, "R_1*C_1")
+    assert own.share == 1
+
+
+def test_zeros_and_poles_of_a_response_without_the_hidden_mode_are_its_own():
+    # Into a common-base stage, from memory: C_mu at the collector is not seen, r_e ∥ C_pi is.
+    found = constants_of(
+        """
+R_T = { resistor = "50 ohm", between = ["in", "e"] }
+r_e = { resistor = "25 ohm", between = ["e", "gnd"] }
+C_pi = { capacitor = "10p", between = ["e", "gnd"] }
+g_m = { transconductance = "40 mS", flows = ["gnd", "out"], senses = ["e", "gnd"] }
+R_C = { resistor = "1k", between = ["out", "gnd"] }
+C_mu = { capacitor = "2p", between = ["out", "gnd"] }
+""",
+        drives='I_s = { current = ["gnd", "in"] }',
+        find='impedance = "in"',
+    )
+    assert found.hidden_symbols == ("C_mu",)
+    assert {each.name for each in found.coefficients} == {"b_1", "a_1"}
+    assert equal(products_of(found, "b_1")["C_pi",].term, "r_e*C_pi")
+    assert equal(products_of(found, "a_1")["C_pi",].term, "(R_T || r_e)*C_pi")
+
+
+def test_hidden_mode_of_a_response_without_any_has_no_coefficients():
+    # A coupling capacitor to the left of a buffer, and the resistance to the right of it.
+    found = constants_of(
+        """
+C_1 = { capacitor = "1u", between = ["in", "a"] }
+R_1 = { resistor = "1k", between = ["a", "gnd"] }
+A = { voltage_gain = "1", output = ["x", "gnd"], senses = ["a", "gnd"] }
+R_2 = { resistor = "1k", between = ["x", "out"] }
+""",
+        find='impedance = "out"',
+    )
+    assert found.coefficients == ()
+    assert found.hidden_says.endswith(
+        "it cancels. The time constants in the table are those of the whole circuit."
+    )
+
+
+def test_what_cancels_between_time_constants_is_not_written():
+    # A tank behind a source: L/R and R·C make L·C, textbook.
+    found = constants_of(
+        """
+R_t = { resistor = "10k", between = ["in", "gnd"] }
+L_t = { inductor = "1m", between = ["in", "gnd"] }
+C_t = { capacitor = "1n", between = ["in", "gnd"] }
+""",
+        drives='I_s = { current = ["gnd", "in"] }',
+        find='voltage = "in"\nper = "I_s"',
+    )
+    (product,) = products_of(found, "b_2").values()
+    assert to_text(product.readable) == "L_t*C_t"
+
+
+@pytest.mark.parametrize(
+    ("factors", "product", "cancels"),
+    [
+        (("L/R", "R*C"), "L*C", True),
+        (("-R_1*R_4*C_1/R_3", "-R_2*R_3*C_2/R_4"), "R_1*C_1*R_2*C_2", True),
+        (("-R_1/R_3", "R_3"), "-R_1", True),
+        (("R_1/(R_2*R_2)", "R_2*C"), "R_1*C/R_2", True),
+        (("L/R", "C*(R + R_2)"), "L/R*C*(R + R_2)", False),
+    ],
+)
+def test_equal_factors_above_and_below_cancel(factors, product, cancels):
+    found, some = multiplied([parse_expression(factor) for factor in factors])
+    assert (to_text(found), some) == (to_text(parse_expression(product)), cancels)
 
 
 def test_current_sensed_in_a_capacitor_counts_in_what_it_sees():

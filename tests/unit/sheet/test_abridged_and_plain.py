@@ -124,5 +124,5 @@ def test_equations_of_several_results_are_numbered_by_their_place():
         for block in unfolded(section.blocks)
         if isinstance(block, Display) and block.number
     ]
-    assert {number.partition(".")[0] for number in numbers} == {"1", "2", "R1"}
+    assert {number.partition(".")[0] for number in numbers} == {"1", "2"}
     assert len(numbers) == len(set(numbers))

@@ -19,7 +19,7 @@ from sheet_stages import (
     view_of,
 )
 
-from derive.estimates.estimates import Bandwidth, Estimates, Limit
+from derive.estimates.estimates import Bandwidth, Estimate, Estimates, Limit, RootSensitivity
 from derive.expressions.tree import ONE, ZERO, Name, Product, Quotient, Sum
 from derive.reactances.time_constants import Coefficient, TimeConstant, TimeConstants
 from derive.reactances.time_constants import Product as Term
@@ -80,7 +80,7 @@ def test_who_owns_the_bandwidth_comes_first_and_the_sum_is_the_coefficient():
     # R_S' = 1k ∥ 2.5k = 714.29 Ω; R_S'·(1 + 40 mS · 2 kΩ) + 2 kΩ = 59.857 kΩ, by hand.
     assert [row.split(" | ")[0] for row in rows[:3]] == ["C_μ", "C_π", "sum = b_1"]
     assert rows[0].endswith("59.86 kΩ | 119.7 ns | 89 %")
-    assert rows[1].endswith("R_C_π = R_S ∥ r_π | 714.3 Ω | 14.29 ns | 11 %")
+    assert rows[1].endswith("R_seen_C_π = R_S ∥ r_π | 714.3 Ω | 14.29 ns | 11 %")
     assert rows[2].endswith("134 ns | 100 %")
 
 
@@ -136,8 +136,8 @@ def test_the_derivation_of_a_resistance_stands_once_for_all_results_of_a_band():
     ]
     told = [line for lines in titles for line in lines]
     assert told == [
-        "Derivation of R_C_1, which C_1 sees (open-circuit)",
-        "Derivation of R_C_L, which C_L sees (open-circuit)",
+        "Derivation of R_seen_C_1, which C_1 sees (open-circuit)",
+        "Derivation of R_seen_C_L, which C_L sees (open-circuit)",
     ]
 
 
@@ -148,14 +148,16 @@ def test_a_second_result_refers_to_the_table_of_the_first():
 
 def test_resistances_of_the_table_go_by_their_names_in_products():
     text = words(time_constants.compose(view_of(FOLLOWER, band="high")))
-    assert any("R_C_π = r_π ∥ ((R_S + R_E)/(1 + g_m·R_E))" in line for line in text)
+    (lead,) = [line for line in text if line.startswith("All drives at zero, the other capacitors open")]
+    assert lead.endswith("is the resistance that C_π sees between its nodes.")
+    assert any("R_seen_C_π = r_π ∥ ((R_S + R_E)/(1 + g_m·R_E))" in line for line in text)
     (row,) = [line for line in text if line.startswith("b_2 |")]
-    assert "C_π·R_C_π·" in row
+    assert "C_π·R_seen_C_π·" in row
 
 
 def test_derivations_are_shown_with_the_steps_only():
-    assert "Derivation of R_C_1" not in shown(LOW_PASS)
-    assert "Derivation of R_C_1, which C_1 sees (open-circuit)" in shown(LOW_PASS, steps=True)
+    assert "Derivation of R_seen_C_1" not in shown(LOW_PASS)
+    assert "Derivation of R_seen_C_1, which C_1 sees (open-circuit)" in shown(LOW_PASS, steps=True)
     assert "(R1.1)" in shown(LOW_PASS, steps=True)
 
 
@@ -201,17 +203,47 @@ def test_every_crossing_of_the_line_is_said():
 
 
 def test_rules_of_thumb_are_given_with_their_signed_error_and_a_sentence():
-    text = words(poles_and_zeros.compose(view_of(RESONANT)))
-    # Q = 3.162: −1/b_1 = −1/(R·C) = −100 krad/s against ω_0 = 31.62 krad/s.
-    (row,) = [line for line in text if line.startswith("dominant pole")]
-    assert row.startswith(
-        "dominant pole | −1/b_1 | −100 krad/s | −31.62 krad/s | +216 % | not to be used"
+    text = words(poles_and_zeros.compose(view_of(RESONANT.replace("10R", "1k"))))
+    # R·C = 1 ms; the pole itself lies at (R/L − √((R/L)² − 4/(L·C)))/2 = 1.0010 krad/s.
+    (row,) = [line for line in text if " | −1/b_1 | " in line]
+    assert " | −1/b_1 | −1 krad/s | −1.001 krad/s | −0.1 % | may be used" in row
+
+
+def test_why_a_rule_for_real_poles_is_not_there_is_said():
+    found = Estimates((), (), None, (), (), rules_remark="the poles are a pair, for which no rule speaks")
+    text = words(poles_and_zeros.compose(with_solution(view_of(RESONANT), estimates=found)))
+    assert "The poles are a pair, for which no rule speaks." in text
+
+
+def test_the_quality_of_a_pair_has_sensitivities_of_its_own():
+    pair = RootSensitivity("pole", 0, 3 + 4j, (("L_1", -0.5 + 0j),), (("R_1", -1.0), ("L_1", 0.5)))
+    found = Estimates((), (), None, (pair,), ())
+    text = words(poles_and_zeros.compose(with_solution(view_of(RESONANT), estimates=found)))
+    assert any(line.startswith("pole pair | ") and line.endswith(" | L_1 −0.50") for line in text)
+    assert "Q of the pole pair |  | R_1 −1.00, L_1 +0.50" in text
+
+
+def test_a_formula_in_s_is_said_to_be_that_of_a_response():
+    rule = Estimate(
+        "two factors",
+        Product((Sum((ONE, Name("s"))), Sum((ONE, Name("s"))))),
+        "Hz",
+        1.0,
+        1.0,
+        0.0,
+        True,
+        "ok",
     )
+    found = Estimates((), (rule,), None, (), ())
+    text = words(poles_and_zeros.compose(with_solution(view_of(RESONANT), estimates=found)))
+    assert any(line.startswith("two factors | −3 dB of 1/((1 + s)·(1 + s)) | ") for line in text)
 
 
 def test_the_strongest_part_comes_first_among_those_that_a_root_follows():
     text = words(poles_and_zeros.compose(view_of(COMMON_EMITTER, band="high")))
     (row,) = [line for line in text if line.startswith("zero | 3.183 GHz")]
+    (definition,) = [line for line in text if line.startswith("Sensitivity: relative change of a root")]
+    assert definition in shown(COMMON_EMITTER)
     # g_m/C_mu goes up with g_m and down with C_mu, by as much.
     assert row.split(" | ")[2] in ("g_m +1.00, C_μ −1.00", "C_μ −1.00, g_m +1.00")
 
@@ -238,7 +270,7 @@ def test_limits_that_tell_stand_in_a_table_and_the_others_in_a_sentence():
 
 def test_limits_of_a_gain_that_an_earlier_result_has_are_referred_to():
     text = words(limits.compose(view_of(COUPLED, "A_v", "high")))
-    assert text == ["The gain, and so its limits, are as for A_v in the mid band."]
+    assert text == ["A_v at zero frequency, and so its limits, are as for A_v in the mid band."]
 
 
 def test_millers_effect_is_refused_with_its_reason_where_the_gain_is_near_one():
