@@ -32,11 +32,18 @@ CORNERS = 8
 ROOM = 1e-6
 
 
+def _why_none(solution: Solution) -> str:
+    """Say why there is nothing to judge."""
+    if solution.derivation.system.small_signal.topology.assumptions:
+        return "not worked out for this result"
+    return "none are made for this result"
+
+
 def judge(solution: Solution) -> Verdict:
     """Judge the register of assumptions."""
     register = solution.register
     if register is None or not register.entries:
-        return Verdict(NAME, METHOD, None, "none are made for this result", "")
+        return Verdict(NAME, METHOD, None, _why_none(solution), "", applies=False)
     try:
         wrong = _wrong_result(solution, register) or _wrong_errors(solution, register)
     except (DeriveError, ValueError, NoSolutionError, ZeroDivisionError) as error:
