@@ -14,7 +14,7 @@ from assumed_circuits import Stage, draw, polynomials, reduce, removed_response,
 from derive.check.roads import assumptions as road
 from derive.errors import InputError
 
-COUNT, BATCH = 200, 10
+COUNT, BATCH = 100, 10
 LOW, HIGH = 10.0, 1e7
 WORDS = (
     "removes the whole response",
