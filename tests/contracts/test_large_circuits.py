@@ -68,9 +68,9 @@ def test_twenty_transistors_are_shown_with_the_count_and_their_poles(shown):
 
 
 def test_roads_that_do_not_go_say_so(shown):
-    lines = [line.strip() for line in shown.stdout.splitlines() if line.startswith("  –")]
-    assert all(line.partition(": ")[2] for line in lines)
-    assert "– readable form: not written" in lines
+    lines = [line.strip() for line in shown.stdout.splitlines()]
+    (line,) = [line for line in lines if "readable form" in line and "not written" in line]
+    assert line.endswith("not written")
 
 
 @pytest.mark.parametrize("name", ["random8", "ladder14"])

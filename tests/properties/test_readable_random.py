@@ -27,7 +27,7 @@ from derive.readable.vocabulary import vocabulary_of
 from derive.reading.read import parse
 
 # Most circuits are small, so that there can be many; every fiftieth is larger.
-COUNT, BATCH, LARGER = 600, 100, 50
+COUNT, BATCH, LARGER = 300, 100, 50
 SEED = 4_000_000
 POINTS = 2
 
