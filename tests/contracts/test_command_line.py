@@ -25,6 +25,7 @@ from derive.cli import main
 
 ROOT = Path(__file__).parents[2]
 CASE = ROOT / "cases" / "echo_preamp" / "topology.toml"
+SMALLER_CASE = ROOT / "cases" / "level_averager" / "topology.toml"
 ALL_ROWS = (
     *table.ROWS,
     *malformed_devices.READ,
@@ -278,15 +279,15 @@ def test_two_processes_write_the_same_bytes(tmp_path):
     for seed in ("1", "2"):
         place = tmp_path / seed
         place.mkdir()
-        ended = in_a_process("sheet", CASE, "--out", "out", cwd=place, PYTHONHASHSEED=seed)
+        ended = in_a_process("sheet", SMALLER_CASE, "--out", "out", cwd=place, PYTHONHASHSEED=seed)
         assert ended.returncode == 0
         assert b"Traceback" not in ended.stderr
         written.append({path.name: path.read_bytes() for path in (place / "out").iterdir()})
-    assert sorted(written[0]) == ["echo_preamp.html", "echo_preamp.json", "echo_preamp.pdf"]
+    assert sorted(written[0]) == ["level_averager.html", "level_averager.json", "level_averager.pdf"]
     for name, data in written[0].items():
         assert data == written[1][name], name
-    assert json.loads(written[0]["echo_preamp.json"])["ledger"] == 1
-    assert written[0]["echo_preamp.pdf"].startswith(b"%PDF-")
+    assert json.loads(written[0]["level_averager.json"])["ledger"] == 1
+    assert written[0]["level_averager.pdf"].startswith(b"%PDF-")
 
 
 def test_file_where_the_folder_should_be_is_refused_and_left_alone(alone, good, tmp_path, capsys):

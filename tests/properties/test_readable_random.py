@@ -26,8 +26,8 @@ from derive.readable.readable import read_form
 from derive.readable.vocabulary import vocabulary_of
 from derive.reading.read import parse
 
-# Most circuits are small, so that there can be many; every twentieth is larger.
-COUNT, BATCH, LARGER = 2_000, 100, 20
+# Most circuits are small, so that there can be many; every fiftieth is larger.
+COUNT, BATCH, LARGER = 600, 100, 50
 SEED = 4_000_000
 POINTS = 2
 

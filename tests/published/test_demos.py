@@ -47,7 +47,7 @@ def ledger_of(file: Path) -> dict[str, Any]:
 
 
 def checked_ledger(text: str, name: str) -> dict[str, Any]:
-    results = derive(parse(text, name), other_engine=False)
+    results = derive(parse(text, name), other_engine=False, explain=False)
     assert results.passed
     return results.ledger()
 
