@@ -20,7 +20,7 @@ from derive.check.roads import steps
 from derive.check.verdict import Outcome, Result, Solution, Verdict
 from derive.devices.elements import SmallSignal
 from derive.devices.linearise import linearise
-from derive.eliminate.derivation import Derivation
+from derive.eliminate.names import names_used
 from derive.errors import InputError
 from derive.estimates.estimate import estimate
 from derive.nodal.write import write_equations
@@ -149,7 +149,7 @@ def explained(solution: Solution, band: BandCircuit, find: Find) -> Solution:
     for, come with both.
     """
     derivation, form, numbers = solution.derivation, solution.form, solution.numbers
-    vocabulary = vocabulary_of(band.circuit, _names_taken(derivation))
+    vocabulary = vocabulary_of(band.circuit, names_used(derivation))
     said = replace(
         solution,
         register=approximate(band, derivation, form, numbers, vocabulary),
@@ -181,13 +181,3 @@ def _simplified(band: BandCircuit, find: Find, vocabulary: Vocabulary) -> tuple[
     if not budget.simplify:
         return ()
     return simplify_all(band.circuit, find_in(band, find), budget, vocabulary=vocabulary)
-
-
-def _names_taken(derivation: Derivation) -> set[str]:
-    """Give the names that mean something else in a derivation, so that no word such as β takes one."""
-    system = derivation.system
-    topology = system.small_signal.topology
-    taken = {*system.ring.names, system.input, *(name for name, _ in system.weights)}
-    taken |= {unknown.name for unknown in system.unknowns}
-    taken |= {find.name for find in topology.finds} | {drive.name for drive in topology.drives}
-    return taken | {step.defines for step in derivation.steps if step.defines}

@@ -7,11 +7,9 @@ identities, J. ACM 27 (1980) 701-717; Zippel (1979). From memory.
 from __future__ import annotations
 
 import random
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 
 from flint import nmod_mat
-
-from derive.algebra.ring import Polynomial
 
 # The largest prime below 2^61: products of two residues stay within FLINT's single-word arithmetic.
 PRIME = 2**61 - 1
@@ -24,19 +22,6 @@ def residues(count: int, seed: str) -> list[int]:
     while len(found) < count:
         found[source.randrange(2, PRIME - 1)] = None
     return list(found)
-
-
-def evaluate_rows(
-    rows: Sequence[Mapping[int, Polynomial]], columns: int, point: Sequence[int]
-) -> list[list[int]]:
-    """Evaluate a matrix of polynomials at a point, modulo PRIME, as dense rows."""
-    dense = []
-    for row in rows:
-        values = [0] * columns
-        for column, entry in row.items():
-            values[column] = int(entry(*point)) % PRIME
-        dense.append(values)
-    return dense
 
 
 def matrix(rows: Sequence[Sequence[int]]) -> nmod_mat:

@@ -9,6 +9,7 @@ from flint import Ordering, fmpq, fmpq_mpoly_ctx
 
 from derive.algebra.common_factor import remove_common_factor, remove_common_monomial
 from derive.algebra.coprime import coprime
+from derive.algebra.rationals import fraction, rational
 from derive.algebra.ring import Polynomial, Ring
 
 # Below this many terms FLINT's greatest common divisor is quicker than the test for its absence.
@@ -56,17 +57,12 @@ def exact_value(
         value = fmpq(int(coefficient))
         reduced = exponents
         for place, square in places.items():
-            value *= _fmpq(square) ** (exponents[place] // 2)
+            value *= rational(square) ** (exponents[place] // 2)
             reduced = (*reduced[:place], exponents[place] % 2, *reduced[place + 1 :])
         terms[reduced] = terms.get(reduced, fmpq(0)) + value
-    rational = context.from_dict({key: value for key, value in terms.items() if value != 0})
-    result = rational(*_point(ring, values))
-    return Fraction(int(result.p), int(result.q))
+    whole = context.from_dict({key: value for key, value in terms.items() if value != 0})
+    return fraction(whole(*_point(ring, values)))
 
 
 def _point(ring: Ring, values: Mapping[str, Fraction]) -> Sequence[fmpq]:
-    return [_fmpq(values.get(name, Fraction(0))) for name in ring.names] or [fmpq(0)]
-
-
-def _fmpq(value: Fraction) -> fmpq:
-    return fmpq(value.numerator, value.denominator)
+    return [rational(values.get(name, Fraction(0))) for name in ring.names] or [fmpq(0)]

@@ -83,3 +83,17 @@ def negative(polynomial: Polynomial) -> bool:
     """Whether most terms are negative; on a draw, whether the leading one is."""
     signs = [1 if coefficient > 0 else -1 for coefficient in polynomial.coeffs()]
     return sum(signs) < 0 or (sum(signs) == 0 and bool(signs) and signs[0] < 0)
+
+
+def moved(polynomial: Polynomial, source: Ring, target: Ring) -> Polynomial:
+    """Give a polynomial over another ring that has all the names it uses."""
+    places = [target.names.index(name) if name in target.names else -1 for name in source.names]
+    width = max(len(target.names), 1)
+    terms = {}
+    for exponents, coefficient in polynomial.to_dict().items():
+        there = [0] * width
+        for place, power in zip(places, exponents, strict=False):
+            if power:
+                there[place] = int(power)
+        terms[tuple(there)] = int(coefficient)
+    return target.context.from_dict(terms)

@@ -12,7 +12,9 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import Any
 
-from flint import fmpq, fmpq_poly
+from flint import fmpq_poly
+
+from derive.algebra.rationals import fraction, rational
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,7 +29,7 @@ class Root:
 
 def rational_polynomial(coefficients: Sequence[Fraction]) -> fmpq_poly:
     """Make a FLINT polynomial from coefficients by rising power."""
-    return fmpq_poly([fmpq(value.numerator, value.denominator) for value in coefficients])
+    return fmpq_poly([rational(value) for value in coefficients])
 
 
 def roots(coefficients: Sequence[Fraction]) -> tuple[Root, ...]:
@@ -65,7 +67,7 @@ def _pairs_on_axis(polynomial: fmpq_poly) -> int:
 def shared_roots(one: Sequence[Fraction], other: Sequence[Fraction]) -> tuple[Root, ...]:
     """Give the roots that both polynomials have, by their exact greatest common divisor."""
     common = rational_polynomial(one).gcd(rational_polynomial(other))
-    return roots([Fraction(int(c.p), int(c.q)) for c in common.coeffs()])
+    return roots([fraction(value) for value in common.coeffs()])
 
 
 def _root(ball: Any, multiplicity: int) -> Root:

@@ -54,7 +54,7 @@ def approximate(
     exact = None
     range_says = "no range: a value is left open"
     if numbers is not None:
-        exact, range_says = reference(space, exact_ratio, derivation, numbers, form.power_of_s, budget)
+        exact, range_says = reference(space, derivation, numbers, form.power_of_s, budget)
     work = _Work(space, exact_ratio, exact, budget)
     entries, idle, now = [], [], exact_ratio
     where = f"{derivation.system.find.name}, {band.band} band"
@@ -188,19 +188,16 @@ def _errors_of_ratio(space: Space, ratio: Ratio, exact: Exact | None) -> Errors 
 
 
 def reference(
-    space: Space,
-    ratio: Ratio,
-    derivation: Derivation,
-    numbers: NominalNumbers,
-    power: int,
-    budget: Budget,
+    space: Space, derivation: Derivation, numbers: NominalNumbers, power: int, budget: Budget
 ) -> tuple[Exact, str]:
     """Give what errors are counted from, and where its range of frequencies comes from in words."""
     band = space.band.band
     impedance = derivation.system.find.quantity == "impedance"
     edges = edges_of(numbers, power, band, impedance=impedance)
-    own = [(f"{side} −3 dB frequency", edge) for side, edge in _sides(edges) if edge is not None]
-    chosen, says = default_range(numbers, *(edge for _, edge in _sides(edges)))
+    low, high = (edges.low_hz, edges.high_hz) if edges else (None, None)
+    sides = (("lower", low), ("upper", high))
+    own = [(f"{side} −3 dB frequency", edge) for side, edge in sides if edge is not None]
+    chosen, says = default_range(numbers, low, high)
     if budget.range_hz is not None:
         chosen, says = (float(budget.range_hz[0]), float(budget.range_hz[1])), "stated by the user"
     named = [("lower end of the range", chosen[0]), *own, ("upper end of the range", chosen[1])]
@@ -208,10 +205,6 @@ def reference(
     distinct |= {hertz: name for name, hertz in own}
     ordered = tuple((name, hertz) for hertz, name in sorted(distinct.items()))
     return Exact(numbers, power, band, impedance, edges, chosen, ordered), says
-
-
-def _sides(edges: object) -> list[tuple[str, float | None]]:
-    return [("lower", getattr(edges, "low_hz", None)), ("upper", getattr(edges, "high_hz", None))]
 
 
 def default_range(numbers: NominalNumbers, low: float | None, high: float | None) -> tuple[Range, str]:

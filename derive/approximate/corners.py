@@ -183,11 +183,11 @@ def errors_at(
         error: Any = values[0] * values[1] / (values[2] * values[3]) * math.exp(scale)
         magnitude = 20 * np.log10(np.abs(error))
         phase = np.degrees(np.angle(error))
-        gain = _gain(parts, middle, scale)
+        gain = _gain(parts, scale)
     return Found(gain, _worst(magnitude), _worst(phase))
 
 
-def _gain(parts: list[tuple[dict[int, Array], float]], middle: float, scale: float) -> Array | None:
+def _gain(parts: list[tuple[dict[int, Array], float]], scale: float) -> Array | None:
     """Give the relative error of the gain, None where the powers of s in front differ."""
     lowest = [min(found) for found, _ in parts]
     if lowest[0] + lowest[1] != lowest[2] + lowest[3]:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
+from derive.algebra.ratio import coefficients
 from derive.algebra.ring import Polynomial, Ring
 from derive.approximate.space import Ratio, Space
 from derive.expressions.tree import Expression
@@ -51,20 +52,16 @@ def replaced_by(
     place = space.ring.names.index(name)
     degree = max(int(p.degrees()[place]) for p in (ratio.top, ratio.bottom) if p != 0)
     powers = [(above**k) * (below ** (degree - k)) for k in range(degree + 1)]
-    top, bottom = (_composed(space.ring, p, place, powers) for p in (ratio.top, ratio.bottom))
+    top, bottom = (_composed(space.ring, p, name, powers) for p in (ratio.top, ratio.bottom))
     if bottom == 0 or top == 0:
         return None
     return space.ratio(top, bottom)
 
 
-def _composed(ring: Ring, polynomial: Polynomial, place: int, powers: list[Polynomial]) -> Polynomial:
-    grouped: dict[int, dict[tuple[int, ...], int]] = {}
-    for exponents, coefficient in polynomial.to_dict().items():
-        rest = tuple(0 if k == place else int(power) for k, power in enumerate(exponents))
-        grouped.setdefault(int(exponents[place]), {})[rest] = int(coefficient)
+def _composed(ring: Ring, polynomial: Polynomial, name: str, powers: list[Polynomial]) -> Polynomial:
     total = ring.zero
-    for power, terms in grouped.items():
-        total = total + ring.context.from_dict(terms) * powers[power]
+    for power, part in coefficients(ring, polynomial, name).items():
+        total = total + part * powers[power]
     return total
 
 

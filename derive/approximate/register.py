@@ -125,8 +125,8 @@ class Entry:
     """One assumption and its price.
 
     `number` counts the assumptions of the file from 1. `smaller` and `larger` are the two terms compared, and
-    `ratio` the first over the second at the nominal values; for a limit, the most that one struck term is of
-    all terms of its coefficient. `alone` are the errors of the assumption by itself, `together` with those
+    `ratio` the first over the second at the nominal values; for a limit, what it leaves out over what stays, in
+    the coefficient where that is most. `alone` are the errors of the assumption by itself, `together` with those
     before it; None where a value is open. `reason` says why the status is what it is. For a tie `ratio` is by
     how much the two sides differ, relative to the second.
     """

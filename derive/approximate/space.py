@@ -7,24 +7,22 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 
 from derive.algebra.ratio import coefficients, exact_value, lowest_terms
-from derive.algebra.ring import Polynomial, Ring, used_names
+from derive.algebra.ring import Polynomial, Ring, moved, used_names
 from derive.algebra.ring import ring as make_ring
-from derive.algebra.roots import Root, roots, shared_roots
 from derive.bands.band_circuit import BandCircuit, Merged
-from derive.devices.elements import Coupling, Inductor, SmallSignal
+from derive.devices.elements import SmallSignal
 from derive.eliminate.derivation import Derivation
-from derive.eliminate.scribe import RANKS
-from derive.expressions.polynomials import Writer, writing_order
+from derive.eliminate.scribe import rank_of, writer_of
+from derive.expressions.polynomials import Writer
 from derive.expressions.tree import ONE, ZERO, Expression, Name, Parallel, Sum
 from derive.expressions.walk import children_of, evaluate, with_children
-from derive.normalise.form import CertifiedRoot, NominalNumbers, NormalForm
+from derive.normalise import numbers
+from derive.normalise.form import NominalNumbers, NormalForm
 from derive.normalise.numbers import values_of
 from derive.readable.form import ReadableForm
 from derive.readable.prove import expanded, ratio_of
 from derive.readable.readable import read_form, read_ratio
-from derive.readable.vocabulary import RANKS as WORD_RANKS
 from derive.readable.vocabulary import Vocabulary, vocabulary_of
-from derive.readable.workspace import moved
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -44,7 +42,8 @@ class Ratio:
 class Space:
     """The ring of s and every symbol of a band's circuit, merged or not, with what is known of them.
 
-    `values` is None where a value is left open; `squares` holds the exact squares of mutual inductances.
+    `values` is None where a value is left open; `squares` holds the exact squares of mutual inductances,
+    none where one is.
     """
 
     band: BandCircuit
@@ -74,14 +73,6 @@ class Space:
     def polynomials_of(self, expression: Expression) -> tuple[Polynomial, Polynomial]:
         """Give an expression as numerator and denominator, its words such as beta written out."""
         return ratio_of(expanded(expression, self.vocabulary.definitions), self.ring)
-
-    def value_of(self, expression: Expression) -> Fraction | None:
-        """Give an expression's exact nominal value; None where a value is open or a divisor is zero."""
-        if self.values is None:
-            return None
-        top, bottom = self.polynomials_of(expression)
-        below = self.value(bottom)
-        return self.value(top) / below if below else None
 
     def value(self, polynomial: Polynomial) -> Fraction:
         """Give a polynomial's exact nominal value (no value may be open)."""
@@ -116,10 +107,9 @@ def space_of(band: BandCircuit, derivation: Derivation, vocabulary: Vocabulary) 
     more = [symbol.name for symbol in whole.symbols if symbol.name not in source.names]
     ring = make_ring((*source.names, *more))
     vocabulary = _widened(vocabulary, whole)
-    ranks = {name: RANKS.get(vocabulary.dimensions[name], 6) for name in vocabulary.dimensions}
-    mutual = {name: 4 for name in ring.names if name not in ranks}
-    writer = Writer(ring, writing_order(ring, {**mutual, **ranks, "s": 0}))
-    space = Space(band, ring, writer, vocabulary, _values(band), mutual_squares(whole))
+    space = Space(
+        band, ring, writer_of(ring, vocabulary.dimensions), vocabulary, _values(band), _squares(whole)
+    )
     top, bottom = (moved(p, source, ring) for p in (derivation.numerator, derivation.denominator))
     return space, space.ratio(top, bottom)
 
@@ -129,7 +119,7 @@ def _widened(vocabulary: Vocabulary, whole: SmallSignal) -> Vocabulary:
     other = vocabulary_of(whole)
     more = [symbol.name for symbol in whole.symbols if symbol.name not in vocabulary.dimensions]
     dimensions = {**vocabulary.dimensions, **{name: other.dimensions[name] for name in more}}
-    order = sorted([*vocabulary.order, *more], key=lambda name: WORD_RANKS.get(dimensions[name], 6))
+    order = sorted([*vocabulary.order, *more], key=lambda name: rank_of(dimensions[name]))
     values = {**vocabulary.values, **{name: other.values[name] for name in more}}
     return replace(vocabulary, order=tuple(order), dimensions=dimensions, values=values)
 
@@ -143,17 +133,9 @@ def _values(band: BandCircuit) -> dict[str, Fraction] | None:
     return known
 
 
-def mutual_squares(circuit: SmallSignal) -> dict[str, Fraction]:
-    """Give M² = k²·L_1·L_2 of every coupling whose values are known."""
-    values = {symbol.name: symbol.value for symbol in circuit.symbols}
-    coils = {e.name: values[e.inductance] for e in circuit.elements if isinstance(e, Inductor)}
-    found = {}
-    for element in circuit.elements:
-        if isinstance(element, Coupling):
-            k, (one, other) = values[element.coefficient], (coils[coil] for coil in element.coils)
-            if k is not None and one is not None and other is not None:
-                found[element.mutual] = k * k * one * other
-    return found
+def _squares(circuit: SmallSignal) -> dict[str, Fraction]:
+    known = values_of(circuit)
+    return {} if known is None else numbers.mutual_squares(circuit, known)
 
 
 def form_of(space: Space, ratio: Ratio) -> NormalForm:
@@ -189,14 +171,7 @@ def numbers_of(space: Space, ratio: Ratio) -> NominalNumbers | None:
         return None
     if ratio.top == 0:
         return NominalNumbers(Fraction(0), (Fraction(0),), (Fraction(1),), (), (), ())
-    top, bottom = _dense(space, ratio.top), _dense(space, ratio.bottom)
-    gain = top[0] / bottom[0] if bottom[0] else None
-    zeros = _certified(roots(top)) if any(top) else ()
-    poles = _certified(roots(bottom)) if any(bottom) else ()
-    both = any(top) and any(bottom)
-    return NominalNumbers(
-        gain, top, bottom, zeros, poles, _certified(shared_roots(top, bottom)) if both else ()
-    )
+    return numbers.numbers_of(_dense(space, ratio.top), _dense(space, ratio.bottom))
 
 
 def _dense(space: Space, polynomial: Polynomial) -> tuple[Fraction, ...]:
@@ -206,7 +181,3 @@ def _dense(space: Space, polynomial: Polynomial) -> tuple[Fraction, ...]:
     while len(dense) > 1 and not dense[-1]:
         dense.pop()
     return tuple(dense)
-
-
-def _certified(found: Sequence[Root]) -> tuple[CertifiedRoot, ...]:
-    return tuple(CertifiedRoot(r.real, r.imaginary, r.radius, r.multiplicity) for r in found)

@@ -15,8 +15,9 @@ from typing import Any
 
 from flint import fmpq, fmpq_poly
 
+from derive.algebra.rationals import fraction
 from derive.algebra.roots import rational_polynomial
-from derive.estimates.response import Response, fraction, make_response, positive_roots
+from derive.estimates.response import Response, make_response, parts, positive_roots
 from derive.normalise.form import NominalNumbers
 
 LARGEST_DEGREE = 40
@@ -37,8 +38,8 @@ class Difference:
         """Give the error in dB and in degrees at a frequency (±infinite where a response is zero)."""
         omega = fmpq(*(2 * math.pi * hertz).as_integer_ratio())
         square = omega * omega
-        even_top, odd_top = (part(square) for part in _parts(self.response.top))
-        even_bottom, odd_bottom = (part(square) for part in _parts(self.response.bottom))
+        even_top, odd_top = (part(square) for part in parts(self.response.top))
+        even_bottom, odd_bottom = (part(square) for part in parts(self.response.bottom))
         above, below = even_top**2 + square * odd_top**2, even_bottom**2 + square * odd_bottom**2
         if not above or not below:
             return (-math.inf if not above else math.inf), 0.0
@@ -64,10 +65,9 @@ def difference(reduced: NominalNumbers, exact: NominalNumbers, power: int) -> Di
     """
     if not all(any(values) for n in (reduced, exact) for values in (n.top, n.bottom)):
         return None
-    s = fmpq_poly([0, 1])
-    top = rational_polynomial(reduced.top) * rational_polynomial(exact.bottom) * s ** max(power, 0)
-    bottom = rational_polynomial(reduced.bottom) * rational_polynomial(exact.top) * s ** max(-power, 0)
-    response = make_response(top, bottom)
+    top = rational_polynomial(reduced.top) * rational_polynomial(exact.bottom)
+    bottom = rational_polynomial(reduced.bottom) * rational_polynomial(exact.top)
+    response = make_response(top, bottom, power)
     slope = response.slope
     turning = [*_phase_places(response)]
     if max(slope.degree(), *(p.degree() for p in turning), 0) > LARGEST_DEGREE:
@@ -78,8 +78,8 @@ def difference(reduced: NominalNumbers, exact: NominalNumbers, power: int) -> Di
 
 def _phase_places(response: Response) -> tuple[Any, Any]:
     """Give polynomials in x = ω² whose roots hold every extreme of the phase of E."""
-    even_top, odd_top = _parts(response.top)
-    even_bottom, odd_bottom = _parts(response.bottom)
+    even_top, odd_top = parts(response.top)
+    even_bottom, odd_bottom = parts(response.bottom)
     x = fmpq_poly([0, 1])
     # (E_t + jω·O_t)·(E_b − jω·O_b) = A + jω·B
     a = even_top * even_bottom + x * odd_top * odd_bottom
@@ -96,11 +96,3 @@ def _log10(value: fmpq) -> float:
 def _angle(imaginary: fmpq, real: fmpq) -> float:
     size = max(abs(imaginary), abs(real))
     return math.atan2(float(fraction(imaginary / size)), float(fraction(real / size)))
-
-
-def _parts(polynomial: Any) -> tuple[Any, Any]:
-    """Give the even and the odd part with s² = −x, so that p(jω) = even + jω·odd."""
-    values = polynomial.coeffs()
-    even = fmpq_poly([value * (-1) ** k for k, value in enumerate(values[::2])])
-    odd = fmpq_poly([value * (-1) ** k for k, value in enumerate(values[1::2])])
-    return even, odd

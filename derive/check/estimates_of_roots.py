@@ -11,7 +11,6 @@ from flint import acb, ctx, fmpq
 from derive.check.excitation import excite
 from derive.check.merged import with_merged_exact
 from derive.check.points import stream, values_exact
-from derive.check.reading import value_exact
 from derive.check.roads.nominal import nominal_values
 from derive.check.solve import NoSolutionError
 from derive.check.stamp import assemble
@@ -59,10 +58,7 @@ def known_values(
     solution: Solution, said: Estimates, values: Mapping[str, Fraction]
 ) -> dict[str, Fraction]:
     """Give the values with those of merged names and of the names that the formulas define."""
-    known = with_merged_exact(solution, values)
-    for name, definition in said.definitions:
-        known[name] = value_exact(definition, known)
-    return known
+    return with_merged_exact(solution, values, said.definitions)
 
 
 def in_balls(expression: Expression, known: Mapping[str, Fraction]) -> Any:

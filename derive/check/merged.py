@@ -7,7 +7,7 @@ circuit.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from fractions import Fraction
 
 from flint import fmpq
@@ -18,6 +18,7 @@ from derive.check.rounding import definitions_without_rounding
 from derive.check.verdict import Solution
 from derive.devices.elements import Coupling
 from derive.expressions.walk import evaluate, names_of
+from derive.readable.form import Definition
 
 
 def definitions_of(solution: Solution) -> tuple[Merged, ...]:
@@ -25,24 +26,37 @@ def definitions_of(solution: Solution) -> tuple[Merged, ...]:
     return solution.band.definitions if solution.band else ()
 
 
-def with_merged_modulo(solution: Solution, values: Mapping[str, int], prime: int) -> dict[str, int]:
+def with_merged_modulo(
+    solution: Solution, values: Mapping[str, int], prime: int, words: Iterable[Definition] = ()
+) -> dict[str, int]:
     """Give the values with those of the merged names and of a nested form's, modulo the prime.
 
+    Given: `words`, the definitions of further names, such as β, that are to be known.
     Raises: DeriveError for a name that is not known; ZeroDivisionError for a division by zero.
     """
     known = dict(values)
     for merged in definitions_of(solution):
         known[merged.name] = value_modulo(merged.definition, known, prime)
-    for name, meaning in solution.form.definitions:
+    for name, meaning in (*solution.form.definitions, *words):
         known[name] = value_modulo(meaning, known, prime)
     return known
 
 
-def with_merged_exact(solution: Solution, values: Mapping[str, Fraction]) -> dict[str, Fraction]:
+def with_merged_exact(
+    solution: Solution, values: Mapping[str, Fraction], words: Iterable[Definition] = ()
+) -> dict[str, Fraction]:
     """Give the values with those of the merged names and of what a nested form is written with, exactly.
 
+    Given: `words`, the definitions of further names, such as β, that are to be known.
     Raises: DeriveError for a name that is not known; ZeroDivisionError for a division by zero.
     """
+    known = _with_own_names(solution, values)
+    for name, meaning in words:
+        known[name] = value_exact(meaning, known)
+    return known
+
+
+def _with_own_names(solution: Solution, values: Mapping[str, Fraction]) -> dict[str, Fraction]:
     known = dict(values)
     for merged in definitions_of(solution):
         known[merged.name] = value_exact(merged.definition, known)

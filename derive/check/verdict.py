@@ -16,6 +16,7 @@ from derive.normalise.form import NominalNumbers, NormalForm
 from derive.reactances.miller import MillerView
 from derive.reactances.time_constants import TimeConstants
 from derive.readable.form import ReadableForm
+from derive.topology.topology import BandName
 
 # What is measured by a check that the user can do without, and did.
 NOT_ASKED = "not asked for"
@@ -42,6 +43,11 @@ class Solution:
     estimates: Estimates | None = None
     register: Register | None = None
     simplified: tuple[Simplified, ...] = ()
+
+    @property
+    def band_name(self) -> BandName:
+        """The band that it belongs to; "full" for the circuit as it was written."""
+        return self.band.band if self.band else "full"
 
     @property
     def judged(self) -> SmallSignal:

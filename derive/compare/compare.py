@@ -60,7 +60,7 @@ def compare(
 
 def _work(topology: Topology, name: str, find: Find, tell: Callable[[str], None]) -> _Worked:
     outcome = derive(topology, other_engine=False, only=find.name, progress=tell).outcome
-    by_band = {_band(result.solution): result.solution for result in outcome.results}
+    by_band = {result.solution.band_name: result.solution for result in outcome.results}
     main = next(by_band[band] for band in MID if band in by_band)
     at_hertz = mid_frequency(main)
     response = response_of(main)
@@ -68,7 +68,7 @@ def _work(topology: Topology, name: str, find: Find, tell: Callable[[str], None]
     low, high = _edge(by_band, LOW_EDGE, 0), _edge(by_band, HIGH_EDGE, 1)
     dimension = dimension_of(find, topology)
     tell("deriving its impedances")
-    seen, past = input_impedance(outcome.circuit, find, _band(main), at_hertz)
+    seen, past = input_impedance(outcome.circuit, find, main.band_name, at_hertz)
     stage = Stage(
         name,
         topology,
@@ -83,15 +83,11 @@ def _work(topology: Topology, name: str, find: Find, tell: Callable[[str], None]
         _product(gain, high) if dimension == RATIO else None,
         seen,
         past,
-        output_impedance(outcome.circuit, find, _band(main), at_hertz),
+        output_impedance(outcome.circuit, find, main.band_name, at_hertz),
         remarks=_remarks(outcome, gain, by_band),
     )
     whole = response_in(outcome.circuit, "full", find)
     return _Worked(stage, whole or response)
-
-
-def _band(solution: Solution) -> BandName:
-    return solution.band.band if solution.band else "full"
 
 
 def _edge(by_band: dict[BandName, Solution], order: Sequence[BandName], side: int) -> float | None:

@@ -84,12 +84,12 @@ class Stage:
     @property
     def band(self) -> BandName:
         """The band that stands for the mid band."""
-        return self.main.band.band if self.main.band else "full"
+        return self.main.band_name
 
     @property
     def bands(self) -> tuple[BandName, ...]:
         """The bands in which the stage was worked."""
-        return tuple(r.solution.band.band if r.solution.band else "full" for r in self.outcome.results)
+        return tuple(result.solution.band_name for result in self.outcome.results)
 
     @property
     def results(self) -> tuple[tuple[str, Result], ...]:

@@ -12,6 +12,7 @@ from derive.compare.at_mid_band import INFINITE, level_at, reduced, response_of
 from derive.compare.comparison import PastSource, PortImpedance
 from derive.devices.elements import DriveElement, Resistor, SmallSignal, VoltageDrive
 from derive.errors import DeriveError
+from derive.nodal.voltages import fresh
 from derive.normalise.numbers import values_of
 from derive.pipeline import solve
 from derive.topology.topology import GROUND, BandName, Find
@@ -75,7 +76,7 @@ def _impedance(
     hertz: float,
     says: str,
 ) -> PortImpedance:
-    find = Find(_fresh(name, circuit), main.place, "impedance", nodes)
+    find = Find(_unused(name, circuit), main.place, "impedance", nodes)
     asked = replace(circuit, topology=replace(circuit.topology, finds=(find,)))
     try:
         narrowed = restrict(asked, band)
@@ -93,14 +94,12 @@ def _impedance(
     return PortImpedance(says, level, Result(solution, check(solution, lcapy=False)), remark)
 
 
-def _fresh(name: str, circuit: SmallSignal) -> str:
+def _unused(name: str, circuit: SmallSignal) -> str:
     """Give a name that nothing in the circuit bears."""
     topology = circuit.topology
     taken = {symbol.name for symbol in circuit.symbols} | {merge.name for merge in topology.merges}
     taken |= {part.name for part in topology.parts} | {drive.name for drive in topology.drives}
-    while name in taken:
-        name += "_"
-    return name
+    return fresh(taken, name)
 
 
 def _unconnected(circuit: SmallSignal, nodes: tuple[str, str], names: dict[str, str]) -> str:

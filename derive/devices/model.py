@@ -11,7 +11,7 @@ from typing import Protocol
 from derive.devices.elements import DriveElement, Element
 from derive.devices.parameters import DeviceParameters, DevicePoint
 from derive.quantities.dimension import Dimension
-from derive.quantities.symbol import Symbol, Value
+from derive.quantities.symbol import Symbol
 from derive.topology.kind import Kind
 from derive.topology.topology import Part, Topology
 
@@ -172,8 +172,3 @@ def value_symbol(part: Part, dimension: Dimension, *, positive: bool) -> Symbol:
         part.tolerance,
         positive,
     )
-
-
-def parameter_symbol(part: Part, name: str, value: Value, dimension: Dimension) -> Symbol:
-    """Give the symbol of one parameter of a device."""
-    return Symbol(name, dimension, value.exact, f"part {part.name}", value.text)

@@ -11,6 +11,7 @@ from dataclasses import dataclass, replace
 
 from derive.algebra.modular import PRIME
 from derive.eliminate.derivation import Derivation, Nested, Plan, PlanLine
+from derive.eliminate.names import names_taken
 from derive.eliminate.nested_entries import Entry, Naming, combined, fraction, naming, terms_of
 from derive.eliminate.rules import (
     current_law,
@@ -86,15 +87,6 @@ def restricted(system: NodalSystem, plan: Plan) -> NodalSystem:
         unknowns=tuple(unknown for unknown in system.unknowns if unknown.name in kept),
         matrix=None,
     )
-
-
-def names_taken(system: NodalSystem) -> set[str]:
-    """Give every name that has a meaning in the circuit, its equations or the quantities wanted."""
-    topology = system.small_signal.topology
-    taken = {*system.ring.names, system.input, system.wanted, system.find.name}
-    taken |= {unknown.name for unknown in system.unknowns} | {name for name, _ in system.weights}
-    taken |= {find.name for find in topology.finds} | {drive.name for drive in topology.drives}
-    return taken | {part.name for part in topology.parts}
 
 
 def _short(scribe: Scribe, names: Naming, index: int, source: int) -> ShortRow:

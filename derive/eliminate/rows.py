@@ -72,8 +72,7 @@ class RowBook:
         """Order the system's equations and unknowns by the plan."""
         unknowns = tuple(line.unknown for line in plan.lines)
         equations = tuple(line.equation for line in plan.lines)
-        common = reduce(math.lcm, (weight.denominator for _, weight in system.weights), 1)
-        rows = [input_row(system, unknowns, common, index) for index in equations]
+        common, rows = input_rows(system, unknowns, equations)
         refuse_large(rows)
         return RowBook(system, unknowns, equations, common, Minors(system.ring, rows))
 
@@ -118,6 +117,14 @@ class RowBook:
         top = top * pivot.raised * row.raised * after.content
         bottom = bottom * pivot.content * row.content * after.raised
         return remove_common_factor(top, bottom)
+
+
+def input_rows(
+    system: NodalSystem, unknowns: Sequence[str], equations: Sequence[int]
+) -> tuple[int, list[dict[int, Polynomial]]]:
+    """Give the common denominator of the drives' weights, and equations as `input_row` does times it."""
+    common = reduce(math.lcm, (weight.denominator for _, weight in system.weights), 1)
+    return common, [input_row(system, unknowns, common, index) for index in equations]
 
 
 def input_row(

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from fractions import Fraction
 from typing import Any
 
-from derive.algebra.ring import Polynomial
+from derive.algebra.ring import Polynomial, Ring
 from derive.eliminate.derivation import Certificate, Step
 from derive.eliminate.rows import Row
 from derive.expressions.polynomials import Writer, add, divide, multiply, writing_order
@@ -19,6 +19,7 @@ from derive.quantities.dimension import (
     INDUCTANCE,
     RATIO,
     RESISTANCE,
+    Dimension,
 )
 
 # Engineers write g_m R C, and a pure number such as β or A before all.
@@ -27,9 +28,20 @@ RANKS = {RATIO: 1, CONDUCTANCE: 2, RESISTANCE: 3, INDUCTANCE: 4, CAPACITANCE: 5}
 
 def writer_for(system: NodalSystem) -> Writer:
     """Give the writer of polynomials over the system's ring, factors in an engineer's order."""
-    ranks = {symbol.name: RANKS.get(symbol.dimension, 6) for symbol in system.small_signal.symbols}
-    mutual = {name: 4 for name in system.ring.names if name not in ranks}
-    return Writer(system.ring.plain(), writing_order(system.ring, {**mutual, **ranks, "s": 0}))
+    dimensions = {symbol.name: symbol.dimension for symbol in system.small_signal.symbols}
+    return writer_of(system.ring.plain(), dimensions)
+
+
+def writer_of(ring: Ring, dimensions: Mapping[str, Dimension]) -> Writer:
+    """Give the writer of polynomials over a ring without inverted names, of which some have dimensions."""
+    # What has none but s is a mutual inductance.
+    ranks = {name: rank_of(dimensions.get(name, INDUCTANCE)) for name in ring.names}
+    return Writer(ring, writing_order(ring, {**ranks, "s": 0}))
+
+
+def rank_of(dimension: Dimension) -> int:
+    """Give the place in a product of a quantity of this dimension."""
+    return RANKS.get(dimension, len(RANKS) + 1)
 
 
 @dataclass(slots=True)

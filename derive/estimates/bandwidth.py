@@ -11,10 +11,11 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from fractions import Fraction
-from typing import Any, Literal
+from typing import Literal
 
-from flint import arb, ctx, fmpq
+from flint import arb, ctx
 
+from derive.algebra.rationals import rational
 from derive.estimates.estimates import Bandwidth
 from derive.estimates.response import BITS, PositiveRoot, Response, fraction_of, positive_roots
 from derive.estimates.words import decibels, hertz
@@ -75,7 +76,7 @@ def find_bandwidth(
     low, high = _edges(found, reference)
     size = "impedance" if impedance else "gain"
     with ctx.workprec(BITS):
-        magnitude = float(arb(_fmpq(reference.square)).sqrt().mid())
+        magnitude = float(arb(rational(reference.square)).sqrt().mid())
     says = f"{size} {AT[reference.where]}; "
     says += "3 dB stands for 1/√2 or √2 times it" if len(levels) > 1 else "−3 dB stands for 1/√2 of it"
     if band == "low" and reference.where == "infinity":
@@ -88,7 +89,7 @@ def crossings(response: Response, square: Fraction, levels: Sequence[Fraction]) 
     """Give every x at which |H|² passes through one of the levels, rising; touching is no crossing."""
     found: list[PositiveRoot] = []
     for level in levels:
-        gap = response.square_top - _fmpq(square * level) * response.square_bottom
+        gap = response.square_top - rational(square * level) * response.square_bottom
         found += [root for root in positive_roots(gap) if root.multiplicity % 2]
     return sorted(found, key=lambda root: fraction_of(root.ball))
 
@@ -164,7 +165,3 @@ def _remark(
         excess = decibels(float(peak.square / reference.square))
         said.append(f"it peaks {excess} above the reference at {hertz(peak.peak.hertz)}")
     return "; ".join(said)
-
-
-def _fmpq(value: Fraction) -> Any:
-    return fmpq(value.numerator, value.denominator)

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from fractions import Fraction
 from typing import Literal
 
@@ -20,6 +20,7 @@ from derive.estimates.factors import Section, sections_of
 from derive.estimates.pen import Pen, inverse_root, root_of, written_value
 from derive.expressions.polynomials import add, divide, multiply, negate
 from derive.expressions.tree import ONE, ZERO, Expression, Negative, Number, Power
+from derive.nodal.voltages import fresh
 from derive.normalise.numbers import values_of
 from derive.readable.vocabulary import Vocabulary
 
@@ -39,16 +40,12 @@ class Names:
 
     taken: set[str]
     suffix: str
-    counts: dict[str, int] = field(default_factory=dict)
 
     def free(self, name: str) -> str:
         """Give the name, with the wanted quantity's added where it is taken."""
         if name in self.taken:
             name = f"{name}_{self.suffix}"
-        while name in self.taken:
-            name += "_"
-        self.taken.add(name)
-        return name
+        return fresh(self.taken, name)
 
 
 def closed_forms(
@@ -208,14 +205,3 @@ def _pair_said(kind: Kind, square: Fraction | None, quality: float | None, *, un
     if square == Fraction(1, 4):
         return f"two equal real {kind}s in the {side} half-plane: Q is 1/2"
     return f"complex pair of {kind}s in the {side} half-plane: Q is above 1/2"
-
-
-def names_taken(derivation: Derivation, vocabulary: Vocabulary) -> set[str]:
-    """Give every name that already means something beside this result."""
-    system = derivation.system
-    taken = {*system.ring.names, *vocabulary.order, system.input, system.find.name}
-    taken |= {name for name, _ in vocabulary.definitions}
-    taken |= {unknown.name for unknown in system.unknowns} | {name for name, _ in system.weights}
-    taken |= {part.name for part in system.small_signal.topology.parts}
-    taken |= {drive.name for drive in system.small_signal.topology.drives}
-    return taken | {step.defines for step in derivation.steps if step.defines is not None}

@@ -6,13 +6,15 @@ import math
 from dataclasses import replace
 
 from derive.eliminate.derivation import Derivation
+from derive.eliminate.names import names_used
 from derive.estimates.bandwidth import find_bandwidth
-from derive.estimates.closed_forms import closed_forms, names_taken
+from derive.estimates.closed_forms import closed_forms
 from derive.estimates.estimates import ClosedForm, Estimates
 from derive.estimates.limits import limits_of_gain
 from derive.estimates.response import response_of
 from derive.estimates.rules import Given, rules_of_thumb
 from derive.estimates.sensitivities import root_sensitivities
+from derive.nodal.voltages import fresh
 from derive.normalise.form import CertifiedRoot, NominalNumbers, NormalForm
 from derive.normalise.normalise import COEFFICIENT
 from derive.reactances.time_constants import TimeConstants
@@ -43,7 +45,8 @@ def estimate(
     """
     if form.is_zero:
         return Estimates((), (), None, (), (), remark=ZERO_RESPONSE)
-    taken = names_taken(derivation, vocabulary)
+    words = (name for name, _ in vocabulary.definitions)
+    taken = {*names_used(derivation), *vocabulary.order, *words}
     if derivation.nested is not None:
         # Nothing is in symbols where nothing was multiplied out.
         if numbers is None:
@@ -107,18 +110,14 @@ def _in_numbers(
     impedance = derivation.system.find.quantity == "impedance"
     bandwidth, remark = find_bandwidth(response, numbers.poles, band, impedance=impedance)
     names = coefficient_names(derivation, form)
-    pi = "pi"
-    while pi in taken:
-        pi += "_"
     given = Given(
         numbers,
         impedance,
-        response,
         form.power_of_s,
         bandwidth,
         time_constants,
         lambda index: names.get(index, f"b_{index}"),
-        pi,
+        fresh(taken, "pi"),
         band == "low",
     )
     rules, no_rules = rules_of_thumb(given)

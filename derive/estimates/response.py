@@ -6,8 +6,9 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any
 
-from flint import arb, ctx, fmpq, fmpq_poly
+from flint import arb, ctx, fmpq_poly
 
+from derive.algebra.rationals import fraction
 from derive.algebra.roots import rational_polynomial, roots
 from derive.normalise.form import NominalNumbers
 
@@ -83,13 +84,15 @@ def response_of(numbers: NominalNumbers, power_of_s: int) -> Response | None:
     """Give the response at the nominal values; None where it is zero or undefined."""
     if not any(numbers.top) or not any(numbers.bottom):
         return None
-    top, bottom = rational_polynomial(numbers.top), rational_polynomial(numbers.bottom)
+    return make_response(
+        rational_polynomial(numbers.top), rational_polynomial(numbers.bottom), power_of_s
+    )
+
+
+def make_response(top: Any, bottom: Any, power_of_s: int) -> Response:
+    """Bring s to a power times a ratio of polynomials to lowest terms, and give its squared magnitude too."""
     s = fmpq_poly([0, 1])
-    return make_response(top * s ** max(power_of_s, 0), bottom * s ** max(-power_of_s, 0))
-
-
-def make_response(top: Any, bottom: Any) -> Response:
-    """Bring a ratio of polynomials in s to lowest terms, and give it with its squared magnitude."""
+    top, bottom = top * s ** max(power_of_s, 0), bottom * s ** max(-power_of_s, 0)
     shared = top.gcd(bottom)
     top, bottom = top // shared, bottom // shared
     square_top, square_bottom = _square(top), _square(bottom)
@@ -115,22 +118,23 @@ def corners(polynomial: Any) -> list[float]:
     return [size for root in found if (size := abs(complex(root.real, root.imaginary))) > 0]
 
 
-def fraction(value: fmpq) -> Fraction:
-    """Give a FLINT rational as a fraction."""
-    return Fraction(int(value.p), int(value.q))
-
-
 def fraction_of(ball: Any) -> Fraction:
     """Give the middle of a real ball, exactly."""
     mantissa, exponent = ball.mid().man_exp()
     return Fraction(int(mantissa)) * Fraction(2) ** int(exponent)
 
 
-def _square(polynomial: Any) -> Any:
-    """Give |p(jω)|² = E² + x·O² in x = ω², E and O being the even and the odd part with s² = −x."""
+def parts(polynomial: Any) -> tuple[Any, Any]:
+    """Give the even and the odd part with s² = −x, so that p(jω) = even + jω·odd."""
     values = polynomial.coeffs()
     even = fmpq_poly([value * (-1) ** k for k, value in enumerate(values[::2])])
     odd = fmpq_poly([value * (-1) ** k for k, value in enumerate(values[1::2])])
+    return even, odd
+
+
+def _square(polynomial: Any) -> Any:
+    """Give |p(jω)|² = E² + x·O² in x = ω², E and O being the even and the odd part."""
+    even, odd = parts(polynomial)
     return even * even + fmpq_poly([0, 1]) * odd * odd
 
 

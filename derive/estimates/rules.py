@@ -14,12 +14,10 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
 
-from flint import fmpq_poly
-
 from derive.algebra.roots import rational_polynomial
 from derive.estimates.bandwidth import AT, HALF, crossings
 from derive.estimates.estimates import Bandwidth, Estimate
-from derive.estimates.response import Response, make_response
+from derive.estimates.response import make_response
 from derive.estimates.verdicts import Scene, judge_frequency, judge_pole, no_real_pole
 from derive.expressions.polynomials import add, divide, multiply
 from derive.expressions.tree import ONE, Expression, Name, Negative, Number
@@ -45,7 +43,6 @@ class Given:
 
     numbers: NominalNumbers
     impedance: bool
-    response: Response
     power_of_s: int
     bandwidth: Bandwidth | None
     time_constants: TimeConstants | None
@@ -180,9 +177,7 @@ def _factors(given: Given, scene: Scene, exact: float, *, low: bool) -> Estimate
         return None
     bottom = rational_polynomial([Fraction(1), b[1]]) * rational_polynomial([Fraction(1), b[2] / b[1]])
     bottom *= rational_polynomial([given.numbers.bottom[0]])
-    top = rational_polynomial(given.numbers.top)
-    s, power = fmpq_poly([0, 1]), given.power_of_s
-    changed = make_response(top * s ** max(power, 0), bottom * s ** max(-power, 0))
+    changed = make_response(rational_polynomial(given.numbers.top), bottom, given.power_of_s)
     square = changed.square_at_infinity if low else changed.square_at_zero
     found = crossings(changed, square, [HALF]) if square else []
     if not found:

@@ -13,6 +13,7 @@ from typing import Any, Literal
 
 from flint import acb, ctx, fmpq
 
+from derive.algebra.rationals import rational
 from derive.algebra.ring import Polynomial, Ring
 from derive.devices.elements import Coupling
 from derive.eliminate.derivation import Derivation
@@ -76,9 +77,7 @@ def _derivatives(
     """Give P and every x·∂P/∂x as coefficients by rising power of s, at the nominal values."""
     place = ring.names.index("s")
     degree = polynomial.degrees()[place]
-    point = [
-        fmpq(values[n].numerator, values[n].denominator) if n in values else fmpq(1) for n in ring.names
-    ]
+    point = [rational(values[name]) if name in values else fmpq(1) for name in ring.names]
     own = [fmpq(0)] * (degree + 1)
     partial: dict[str, list[Any]] = {}
     for exponents, coefficient in polynomial.to_dict().items():

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from derive.algebra.ring import Polynomial
 from derive.expressions.polynomials import divide, multiply, negate, subtract
-from derive.expressions.tree import ZERO, Expression, Name
+from derive.expressions.tree import Expression, Name
 
 Row = tuple[tuple[str, Polynomial], ...]
 
@@ -42,9 +42,6 @@ class LinearForm:
         """Give the form divided by a name whose reciprocal is `generator`."""
         shown = divide(self.shown, Name(name))
         return LinearForm(shown, tuple((key, value * generator) for key, value in self.row))
-
-
-NOTHING = LinearForm(ZERO, ())
 
 
 def combine(rows: Iterable[Row]) -> Row:

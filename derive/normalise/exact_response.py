@@ -14,6 +14,7 @@ from fractions import Fraction
 from flint import acb, acb_poly, ctx, fmpq, fmpq_mat, fmpq_poly
 
 from derive.algebra.ratio import coefficients, exact_value
+from derive.algebra.rationals import fraction, rational
 from derive.algebra.roots import rational_polynomial, roots
 from derive.devices.elements import SmallSignal
 from derive.nodal.system import NodalSystem
@@ -119,7 +120,7 @@ def driving_point(circuit: SmallSignal, find: Find) -> Fraction | None:
         if pivot == size:
             return None
         if pivot == size - 1:
-            return Fraction(int(row[size].p), int(row[size].q))
+            return fraction(row[size])
     return None
 
 
@@ -137,13 +138,13 @@ def _rows(
         driven: Entry = {}
         for name, polynomial in equation.row:
             entry = {
-                power: _fmpq(exact_value(system.ring, part, point, {}))
+                power: rational(exact_value(system.ring, part, point, {}))
                 for power, part in coefficients(system.ring, polynomial, "s").items()
             }
             if name in names:
                 row[names.index(name)] = entry
                 continue
-            weight = _fmpq(weights.get(name, Fraction(name == system.input)))
+            weight = rational(weights.get(name, Fraction(name == system.input)))
             for power, value in entry.items():
                 driven[power] = driven.get(power, fmpq(0)) - weight * value
         matrix.append(row)
@@ -194,8 +195,4 @@ def _value(polynomial: Sequence[Fraction], s: acb) -> acb:
 
 
 def _fractions(polynomial: fmpq_poly) -> tuple[Fraction, ...]:
-    return tuple(Fraction(int(value.p), int(value.q)) for value in polynomial.coeffs())
-
-
-def _fmpq(value: Fraction) -> fmpq:
-    return fmpq(value.numerator, value.denominator)
+    return tuple(fraction(value) for value in polynomial.coeffs())

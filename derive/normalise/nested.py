@@ -7,14 +7,16 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 from typing import Any
 
-from flint import Ordering, fmpq, fmpq_mpoly_ctx, nmod_poly
+from flint import Ordering, fmpq_mpoly_ctx, nmod_poly
 
 from derive.algebra import modular
 from derive.algebra.diagram_definitions import Sum as Products
 from derive.algebra.diagram_definitions import definitions
 from derive.algebra.modular import PRIME
+from derive.algebra.rationals import fraction, rational
 from derive.eliminate.derivation import Derivation
-from derive.eliminate.nested import names_taken, restricted
+from derive.eliminate.names import names_used
+from derive.eliminate.nested import restricted
 from derive.eliminate.scribe import Scribe, positive_first, writer_for
 from derive.expressions.polynomials import add, divide, multiply, negate
 from derive.expressions.tree import ONE, ZERO, Expression, Name
@@ -82,7 +84,7 @@ def _normalised(found: Mapping[int, Name]) -> tuple[Expression, ...]:
 def _named(derivation: Derivation, found: Determinants) -> Coefficients:
     """Define every coefficient by names; those that are zero for all values get none."""
     system = derivation.system
-    taken = _taken(derivation) | {name for name, _ in found.meanings}
+    taken = names_used(derivation) | {name for name, _ in found.meanings}
     prefix = "c_"
     while any(name.startswith(prefix) for name in taken):
         prefix = "c" + prefix
@@ -104,7 +106,7 @@ def _named(derivation: Derivation, found: Determinants) -> Coefficients:
 
 def _at_points(derivation: Derivation) -> Coefficients:
     """Define every coefficient by the derivation's lines at whole values of s."""
-    taken = _taken(derivation)
+    taken = names_used(derivation)
     found = at_points(derivation, taken)
     written = list(found.definitions)
     sides = []
@@ -116,10 +118,6 @@ def _at_points(derivation: Derivation) -> Coefficients:
         sides.append(_coefficients(letter, meanings, residues, written, taken))
     shared = _shared_degree(found.bottom_residues, found.top_residues)
     return Coefficients(tuple(written), sides[1], sides[0], shared)
-
-
-def _taken(derivation: Derivation) -> set[str]:
-    return names_taken(derivation.system) | {step.defines for step in derivation.steps if step.defines}
 
 
 def _coefficients(
@@ -186,7 +184,7 @@ def _coefficients_at(
     if not squares:
         return found.diagram.coefficients(known)
     context = fmpq_mpoly_ctx.get(["s", *squares], Ordering.lex)
-    lookup = {name: context.constant(fmpq(v.numerator, v.denominator)) for name, v in known.items()}
+    lookup = {name: context.constant(rational(value)) for name, value in known.items()}
     for place, name in enumerate(squares, 1):
         lookup[name] = context.gen(place)
     sides = found.diagram.values(lookup, context.gen(0), context.constant(1))
@@ -200,7 +198,7 @@ def _without_roots(
     # Each power of s apart by what is left of the roots, so that what cancels does so exactly.
     parts: dict[tuple[int, ...], Fraction] = {}
     for powers, value in side.to_dict().items():
-        amount = Fraction(int(value.p), int(value.q))
+        amount = fraction(value)
         for power, square in zip(powers[1:], squares.values(), strict=True):
             amount *= square ** (int(power) // 2)
         key = (int(powers[0]), *(int(power) % 2 for power in powers[1:]))

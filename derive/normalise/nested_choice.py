@@ -11,7 +11,8 @@ from math import prod
 from derive.eliminate.derivation import Derivation, Nested, Plan
 from derive.eliminate.eliminate import eliminate
 from derive.eliminate.limited import eliminate_within_limits
-from derive.eliminate.nested import eliminate_nested, names_taken, needed
+from derive.eliminate.names import names_taken
+from derive.eliminate.nested import eliminate_nested, needed
 from derive.eliminate.plan import plan
 from derive.errors import TooLargeError
 from derive.nodal.system import NodalSystem

@@ -10,7 +10,6 @@ transfer-constant circuit analysis, IEEE Trans. Circuits Syst. I 57 (June 2010) 
 
 from __future__ import annotations
 
-import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import reduce
@@ -21,7 +20,7 @@ from derive.algebra.ratio import coefficients, lowest_terms
 from derive.algebra.ring import Polynomial, Ring
 from derive.devices.elements import Coupling
 from derive.eliminate.derivation import Derivation, Plan
-from derive.eliminate.rows import input_row
+from derive.eliminate.rows import input_rows
 from derive.errors import TooLargeError
 from derive.nodal.system import NodalSystem
 from derive.reactances.states import State, states_of
@@ -66,8 +65,7 @@ class Expansion:
 def determinants(system: NodalSystem, order: Plan, limit: int = TERM_LIMIT) -> Ratio | None:
     """Give numerator and denominator of Cramer's rule, nothing cancelled; None where they are too long."""
     unknowns = [line.unknown for line in order.lines]
-    common = reduce(math.lcm, (weight.denominator for _, weight in system.weights), 1)
-    rows = [input_row(system, unknowns, common, line.equation) for line in order.lines]
+    _, rows = input_rows(system, unknowns, [line.equation for line in order.lines])
     minors = Minors(system.ring, rows, limit)
     every = (1 << len(rows)) - 1
     last = 1 << len(rows) - 1

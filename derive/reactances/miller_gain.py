@@ -6,15 +6,13 @@ two determinants, whatever drives the circuit. Both come from one memo of minors
 
 from __future__ import annotations
 
-import math
 from dataclasses import dataclass
-from functools import reduce
 
 from derive.algebra.exchange import exchange
 from derive.algebra.minors import Minors, refuse_large
 from derive.algebra.ratio import coefficients, lowest_terms
 from derive.algebra.ring import Polynomial, Ring
-from derive.eliminate.rows import input_row
+from derive.eliminate.rows import input_rows
 from derive.nodal.system import NodalSystem
 
 # A gain of more terms than this is read by nobody.
@@ -54,8 +52,7 @@ class NodeGains:
         Raises: TooLargeError where its determinant would be too long to be worked here.
         """
         names = [unknown.name for unknown in system.unknowns]
-        common = reduce(math.lcm, (weight.denominator for _, weight in system.weights), 1)
-        rows = [input_row(system, names, common, index) for index in range(len(names))]
+        _, rows = input_rows(system, names, range(len(names)))
         refuse_large(rows, TERM_LIMIT)
         return NodeGains(system, Minors(system.ring, rows, TERM_LIMIT))
 

@@ -1,11 +1,10 @@
-"""Writes resistances and time constants, each once, for the circuit's own symbols."""
+"""Writes resistances and time constants in the circuit's own symbols."""
 
 from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
 from fractions import Fraction
-from functools import lru_cache
 
 from derive.algebra.ring import Polynomial
 from derive.eliminate.derivation import Derivation
@@ -17,12 +16,8 @@ from derive.expressions.walk import evaluate
 from derive.normalise.numbers import values_of
 from derive.reactances.expansion import Expansion
 from derive.reactances.states import State
-from derive.readable.form import Definition
 from derive.readable.readable import read_ratio
 from derive.readable.vocabulary import Vocabulary
-
-Terms = tuple[tuple[tuple[int, ...], int], ...]
-Key = tuple[Terms, Terms]
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,18 +27,12 @@ class Reader:
     writer: Writer
     vocabulary: Vocabulary
     values: Mapping[str, Fraction] | None
-    known: dict[Key, Expression]
 
     @staticmethod
     def of(derivation: Derivation, vocabulary: Vocabulary) -> Reader:
         """Give the reader for a derivation's circuit."""
         values = values_of(derivation.system.small_signal)
-        known = _shared(
-            (*derivation.system.ring.names, "", *vocabulary.order),
-            tuple(vocabulary.values.items()),
-            vocabulary.definitions,
-        )
-        return Reader(writer_for(derivation.system), vocabulary, values, known)
+        return Reader(writer_for(derivation.system), vocabulary, values)
 
     def raw(self, numerator: Polynomial, denominator: Polynomial) -> Expression:
         """Write a ratio multiplied out."""
@@ -51,12 +40,7 @@ class Reader:
 
     def readable(self, numerator: Polynomial, denominator: Polynomial) -> Expression:
         """Write a ratio in the fewest signs."""
-        # Reading is by far the dearest thing here, and the same ratio is met as a resistance, in products
-        # and for every quantity of the circuit. FLINT's polynomials cannot be hashed: their terms can.
-        key = _terms(numerator), _terms(denominator)
-        if key not in self.known:
-            self.known[key] = read_ratio(self.writer.ring, numerator, denominator, self.vocabulary)
-        return self.known[key]
+        return read_ratio(self.writer.ring, numerator, denominator, self.vocabulary)
 
     def time_constant(self, expansion: Expansion, before: int, place: int) -> Expression:
         """Write a state's time constant with the states of `before` turned; none of it may vanish."""
@@ -100,17 +84,3 @@ def shares(values: list[Fraction | None]) -> list[float | None]:
     if len(known) < len(values) or not total:
         return [None] * len(values)
     return [float(value / total) for value in known]
-
-
-@lru_cache(maxsize=8)
-def _shared(
-    names: tuple[str, ...],
-    values: tuple[tuple[str, Fraction | None], ...],
-    definitions: tuple[Definition, ...],
-) -> dict[Key, Expression]:
-    """Give what was read already for these names, values and definitions: one dictionary for equals."""
-    return {}
-
-
-def _terms(polynomial: Polynomial) -> Terms:
-    return tuple((tuple(map(int, powers)), int(value)) for powers, value in polynomial.to_dict().items())

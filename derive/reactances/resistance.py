@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from functools import lru_cache
 
-from derive.algebra.ring import Polynomial, Ring
+from derive.algebra.ring import Polynomial, moved
 from derive.devices.elements import Capacitor, Inductor, SmallSignal
 from derive.eliminate.derivation import Derivation
 from derive.eliminate.eliminate import eliminate
@@ -56,22 +56,8 @@ def resistance_seen(
         return Resistance(None, None, None, TOO_LONG)
     own = derivation.system.ring
     return Resistance(
-        derivation, moved(own, ring, derivation.numerator), moved(own, ring, derivation.denominator)
+        derivation, moved(derivation.numerator, own, ring), moved(derivation.denominator, own, ring)
     )
-
-
-def moved(own: Ring, other: Ring, polynomial: Polynomial) -> Polynomial:
-    """Write a polynomial over a ring that has all of its names."""
-    if own.names == other.names:
-        return polynomial
-    places = [other.names.index(name) for name in own.names]
-    terms = {}
-    for exponents, coefficient in polynomial.to_dict().items():
-        spread = [0] * len(other.names)
-        for place, power in zip(places, exponents, strict=True):
-            spread[place] = power
-        terms[tuple(spread)] = coefficient
-    return other.context.from_dict(terms)
 
 
 def _derive(circuit: SmallSignal, port: tuple[str, str], name: str) -> Derivation | None:

@@ -24,7 +24,7 @@ from derive.devices.elements import (
     VirtualShort,
     VoltageDrive,
 )
-from derive.nodal.voltages import groups
+from derive.nodal.voltages import fresh, groups
 from derive.nodal.write import element_nodes, nodes_of
 from derive.topology.topology import GROUND, Find, Place
 
@@ -94,7 +94,7 @@ def seen_from(circuit: SmallSignal, subject: Capacitor | Inductor, turned: Set[s
             continue
         plus, minus = element.between
         if element.name == subject.name or not short:
-            minus = _open_end(taken, plus, element.name)
+            minus = fresh(taken, f"{plus}_{element.name}")
         if element.name == subject.name:
             port = (minus, element.between[1])
         meters.append(VoltageDrive(element.name, (plus, minus)))
@@ -120,14 +120,6 @@ def port_find(circuit: SmallSignal, port: Pair, name: str) -> Find:
     """Give the wish for the resistance between two nodes."""
     # No line of the file asks for it, so no message can name one.
     return Find(name, Place(circuit.topology.file, 1), "impedance", nodes=port)
-
-
-def _open_end(taken: set[str], node: str, element: str) -> str:
-    name = f"{node}_{element}"
-    while name in taken:
-        name += "_"
-    taken.add(name)
-    return name
 
 
 def _not_redundant(

@@ -6,8 +6,9 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from derive.algebra.ring import Polynomial
+from derive.eliminate.scribe import positive_first
 from derive.expressions.polynomials import add
-from derive.expressions.tree import ONE, Expression, Name, Negative, Product
+from derive.expressions.tree import ONE, Expression, Name, Product
 from derive.expressions.walk import children_of, names_of, substitute, with_children
 from derive.quantities.dimension import (
     CAPACITANCE,
@@ -116,7 +117,7 @@ class _Desk:
         if None not in sizes:
             order = sorted(range(len(terms)), key=lambda k: (-(sizes[k] or 0.0), k))
             terms = [terms[k] for k in order]
-        return _added(terms)
+        return add(positive_first(terms))
 
     def _plain(self, ratio: Ratio, deep: bool) -> Expression:
         """Give the shortest form in the ratio's own names."""
@@ -167,11 +168,6 @@ def _with_words(expression: Expression, junctions: Sequence[Junction]) -> Expres
     return with_children(
         expression, tuple(_with_words(child, junctions) for child in children_of(expression))
     )
-
-
-def _added(terms: Sequence[Expression]) -> Expression:
-    first = next((k for k, term in enumerate(terms) if not isinstance(term, Negative)), 0)
-    return add([terms[first], *terms[:first], *terms[first + 1 :]])
 
 
 def _composer(vocabulary: Vocabulary) -> Composer:

@@ -2,11 +2,24 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 from derive.expressions.tree import Expression
+from derive.expressions.walk import names_of
 
 Definition = tuple[str, Expression]
+
+
+def used_in(expressions: Iterable[Expression], known: Iterable[Definition]) -> tuple[Definition, ...]:
+    """Give the definitions that expressions need, those of the names within definitions included."""
+    used = {name for expression in expressions for name in names_of(expression)}
+    kept: list[Definition] = []
+    for name, value in reversed(tuple(known)):
+        if name in used:
+            used |= set(names_of(value))
+            kept.insert(0, (name, value))
+    return tuple(kept)
 
 
 @dataclass(frozen=True, slots=True)

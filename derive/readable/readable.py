@@ -5,18 +5,17 @@ from __future__ import annotations
 from collections.abc import Sequence
 from functools import lru_cache
 
-from derive.algebra.ring import Polynomial, Ring, used_names
+from derive.algebra.ring import Polynomial, Ring, moved, used_names
 from derive.expressions.polynomials import Writer
 from derive.expressions.text import to_text
 from derive.expressions.tree import Expression
-from derive.expressions.walk import names_of
 from derive.normalise.form import NormalForm
 from derive.readable.candidates import candidates
-from derive.readable.form import Definition, ReadableForm
+from derive.readable.form import Definition, ReadableForm, used_in
 from derive.readable.measure import leaves, measure
 from derive.readable.prove import ratio_of, same_ratio
 from derive.readable.vocabulary import Vocabulary
-from derive.readable.workspace import moved, workspace_of
+from derive.readable.workspace import workspace_of
 
 # Ratios of more terms are written as they are: nobody reads them, and the search would be slow.
 LONGEST = 400
@@ -110,10 +109,4 @@ def read_form(form: NormalForm, ring: Ring, vocabulary: Vocabulary) -> ReadableF
 
 def definitions_used(expressions: Sequence[Expression], vocabulary: Vocabulary) -> tuple[Definition, ...]:
     """Give the definitions of the names beyond the circuit's symbols that the expressions use."""
-    used = {name for expression in expressions for name in names_of(expression)}
-    kept: list[Definition] = []
-    for name, value in reversed(vocabulary.definitions):
-        if name in used:
-            used |= set(names_of(value))
-            kept.insert(0, (name, value))
-    return tuple(kept)
+    return used_in(expressions, vocabulary.definitions)

@@ -14,20 +14,11 @@ from derive.devices.elements import (
     Transconductance,
     VoltageGain,
 )
+from derive.eliminate.scribe import rank_of
 from derive.expressions.tree import ONE, Expression, Name, Product, Quotient, Sum
-from derive.quantities.dimension import (
-    CAPACITANCE,
-    CONDUCTANCE,
-    INDUCTANCE,
-    RATIO,
-    RESISTANCE,
-    Dimension,
-)
+from derive.quantities.dimension import RATIO, RESISTANCE, Dimension
 from derive.readable.form import Definition
 from derive.topology.topology import GROUND
-
-# Engineers write β before g_m, g_m before R, and s behind all.
-RANKS = {RATIO: 1, CONDUCTANCE: 2, RESISTANCE: 3, INDUCTANCE: 4, CAPACITANCE: 5}
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,7 +73,7 @@ def vocabulary_of(circuit: SmallSignal, taken: Iterable[str] = ()) -> Vocabulary
         values |= _values(junction, values)
     words = [name for junction in junctions for name in (junction.beta, junction.alpha)]
     names = [*words, *symbols, *(junction.r_e for junction in junctions)]
-    order = sorted(names, key=lambda name: RANKS.get(dimensions[name], 6))
+    order = sorted(names, key=lambda name: rank_of(dimensions[name]))
     return Vocabulary(
         tuple(order),
         dimensions,

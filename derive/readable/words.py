@@ -10,6 +10,7 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import dataclass
 
+from derive.algebra.ratio import coefficients
 from derive.algebra.ring import Polynomial
 from derive.readable.vocabulary import Junction
 from derive.readable.workspace import Ratio, Workspace
@@ -21,7 +22,6 @@ Exchange = Callable[[Workspace, Ratio, Junction], Ratio]
 class Way:
     """One way to write a transistor; `corner` says whether it is for corner frequencies, None for both."""
 
-    name: str
     exchange: Exchange
     corner: bool | None
 
@@ -57,12 +57,11 @@ def with_r_e(space: Workspace, ratio: Ratio, junction: Junction) -> Ratio:
 def with_g_m(space: Workspace, ratio: Ratio, junction: Junction) -> Ratio:
     """Write β/g_m for r_π."""
     beta, g_m = space.ring.generator(junction.beta), space.ring.generator(junction.g_m)
-    place = space.ring.names.index(junction.r_pi)
-    highest = max(int(p.degrees()[place]) for p in (ratio.top, ratio.bottom))
+    highest = max(space.degree(p, junction.r_pi) for p in (ratio.top, ratio.bottom))
 
     def turned(polynomial: Polynomial) -> Polynomial:
         total = space.ring.zero
-        for power, part in _by_powers(polynomial, place, space).items():
+        for power, part in coefficients(space.ring, polynomial, junction.r_pi).items():
             total += part * beta**power * g_m ** (highest - power)
         return total
 
@@ -70,10 +69,10 @@ def with_g_m(space: Workspace, ratio: Ratio, junction: Junction) -> Ratio:
 
 
 WAYS = (
-    Way("beta", with_beta, None),
-    Way("r_e", with_r_e, False),
+    Way(with_beta, None),
+    Way(with_r_e, False),
     # A corner is read as g_m/C: the transit frequency of a part of the transistor.
-    Way("g_m", with_g_m, True),
+    Way(with_g_m, True),
 )
 
 
@@ -86,23 +85,13 @@ def _exchanged(
     below: Polynomial,
 ) -> Ratio:
     """Put r_pi and above/below in the place of r_π and g_m."""
-    g_place = space.ring.names.index(junction.g_m)
-    r_place = space.ring.names.index(junction.r_pi)
-    highest = max(int(p.degrees()[g_place]) for p in (ratio.top, ratio.bottom))
+    highest = max(space.degree(p, junction.g_m) for p in (ratio.top, ratio.bottom))
 
     def turned(polynomial: Polynomial) -> Polynomial:
         total = space.ring.zero
-        for power, part in _by_powers(polynomial, g_place, space).items():
-            for times, rest in _by_powers(part, r_place, space).items():
+        for power, part in coefficients(space.ring, polynomial, junction.g_m).items():
+            for times, rest in coefficients(space.ring, part, junction.r_pi).items():
                 total += rest * r_pi**times * above**power * below ** (highest - power)
         return total
 
     return space.ratio(turned(ratio.top), turned(ratio.bottom), ratio.minus)
-
-
-def _by_powers(polynomial: Polynomial, place: int, space: Workspace) -> dict[int, Polynomial]:
-    grouped: dict[int, dict[tuple[int, ...], int]] = {}
-    for exponents, coefficient in polynomial.to_dict().items():
-        rest = (*exponents[:place], 0, *exponents[place + 1 :])
-        grouped.setdefault(int(exponents[place]), {})[rest] = int(coefficient)
-    return {power: space.ring.context.from_dict(terms) for power, terms in grouped.items()}

@@ -95,17 +95,3 @@ class Workspace:
 def workspace_of(names: tuple[str, ...]) -> Workspace:
     """Make a workspace over these names."""
     return Workspace(make_ring(names))
-
-
-def moved(polynomial: Polynomial, source: Ring, target: Ring) -> Polynomial:
-    """Give a polynomial over another ring that has all the names it uses."""
-    places = [target.names.index(name) if name in target.names else -1 for name in source.names]
-    width = max(len(target.names), 1)
-    terms = {}
-    for exponents, coefficient in polynomial.to_dict().items():
-        there = [0] * width
-        for place, power in zip(places, exponents, strict=False):
-            if power:
-                there[place] = int(power)
-        terms[tuple(there)] = int(coefficient)
-    return target.context.from_dict(terms)

@@ -54,6 +54,8 @@ _KINDS: dict[type, str] = {
 _LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
 _SHORT_TABLE = 8  # rows: a longer one may begin at the foot of a page and go on
 _FEW_COLUMNS = 2  # spread over the whole page, the eye would lose the row
+# Cells of more letters than this want the whole width, however few the columns.
+_SENTENCE = 60
 _MANY_COLUMNS = 8
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
 
@@ -184,7 +186,9 @@ class Page:
     def breadth(self, block: Table) -> str:
         """Return the class of a table that has fewer or more columns than the page's width suits."""
         columns = len(block.columns)
-        return " many" if columns > _MANY_COLUMNS else " few" if columns <= _FEW_COLUMNS else ""
+        if columns > _MANY_COLUMNS:
+            return " many"
+        return " few" if columns <= _FEW_COLUMNS and not _has_sentences(block) else ""
 
     def breaks_words(self, line: Line) -> bool:
         """Say whether a cell holds a word too long to be kept whole in a narrow column."""
@@ -206,6 +210,12 @@ class Page:
 
     def _run(self, content: Expression | Equation, limit: float) -> Markup:
         return Markup(" ").join(self._set(p) for p in self._maths.inline(content, limit))
+
+
+def _has_sentences(table: Table) -> bool:
+    """Say whether a cell holds so many words that it wants the page's width."""
+    lines = (cell for row in table.rows for cell in row)
+    return any(isinstance(part, Text) and len(part.text) > _SENTENCE for line in lines for part in line)
 
 
 def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) -> str:

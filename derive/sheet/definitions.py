@@ -5,9 +5,9 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from derive.check.verdict import Solution
-from derive.expressions.tree import Equation, Expression, Name
-from derive.expressions.walk import names_of
+from derive.expressions.tree import Equation, Name
 from derive.readable.form import Definition
+from derive.readable.form import used_in as used_in
 from derive.sheet.document import Inline, Line, Maths, Text
 from derive.sheet.view import View
 
@@ -32,17 +32,6 @@ def definitions_of(solution: Solution) -> tuple[Definition, ...]:
     if solution.register:
         sources.append(solution.register.definitions)
     return tuple(dict.fromkeys(entry for source in sources for entry in source))
-
-
-def used_in(expressions: Iterable[Expression], known: Iterable[Definition]) -> tuple[Definition, ...]:
-    """Give the definitions that expressions need, those of the names within definitions included."""
-    used = {name for expression in expressions for name in names_of(expression)}
-    kept: list[Definition] = []
-    for name, value in reversed(tuple(known)):
-        if name in used:
-            used |= set(names_of(value))
-            kept.insert(0, (name, value))
-    return tuple(kept)
 
 
 def with_words(definitions: Iterable[Definition]) -> Line:

@@ -9,7 +9,6 @@ from derive.bias.operating_point import NewtonCheck
 from derive.normalise.form import CertifiedRoot
 from derive.quantities.dimension import FREQUENCY, RATIO, TIME, Dimension
 from derive.quantities.format import engineering
-from derive.quantities.units import unit_of
 
 
 def figure(value: Fraction | float | None, dimension: Dimension, digits: int = 5) -> str:
@@ -115,8 +114,3 @@ def side(root: CertifiedRoot) -> str:
     if root.real == 0:
         return "on the imaginary axis" if root.imaginary else "at the origin"
     return "left half-plane" if root.real < 0 else "right half-plane"
-
-
-def unit_words(dimension: Dimension) -> str:
-    """Name a dimension's unit, "pure ratio" where it has none."""
-    return unit_of(dimension) or "pure ratio"

@@ -27,7 +27,7 @@ from derive.readable.measure import leaves
 from derive.sheet.document import Line, Text
 from derive.sheet.figures import root_in_hertz
 from derive.sheet.nested import is_nested, short_equation
-from derive.sheet.view import View
+from derive.sheet.view import View, power_of_s
 
 # Up to so many names and numbers a final equation is shown whole, without names for its coefficients.
 EXPLICIT_LEAVES = 14
@@ -268,7 +268,7 @@ def _named_polynomial(
             step = steps.get((letter, power))
             name = coefficient_name(view, letter, power)
             named.append(Named(name, value, (), step.number if step else None))
-            terms.append(multiply([Name(name), _power_of_s(power)]))
+            terms.append(multiply([Name(name), power_of_s(power)]))
     return add(terms)
 
 
@@ -276,7 +276,7 @@ def _response(
     gain: Expression, power: int, above: Expression, below: Expression, *, draw_in: bool = True
 ) -> Expression:
     """Write gain · s^power · above/below, with the gain drawn into the fraction where that is shorter."""
-    s = _power_of_s(abs(power))
+    s = power_of_s(abs(power))
     below = multiply([s, below]) if power < 0 else below
     before = [s] if power > 0 else []
     if below == ONE or not draw_in:
@@ -310,9 +310,5 @@ def _polynomial(found: tuple[Expression, ...]) -> Expression:
     terms: list[Expression] = []
     for power, value in enumerate(found):
         if value != ZERO:
-            terms.append(value if power == 0 else multiply([_power_of_s(power), value]))
+            terms.append(value if power == 0 else multiply([power_of_s(power), value]))
     return add(terms)
-
-
-def _power_of_s(power: int) -> Expression:
-    return Name("s") if power == 1 else Power(Name("s"), power)

@@ -108,7 +108,7 @@ def _result(result: Result) -> dict[str, Any]:
     numbers = solution.numbers
     return {
         "find": system.find.name,
-        "band": solution.band.band if solution.band else "full",
+        "band": solution.band_name,
         "per": _per(system.find),
         "gain": {"exact": to_ledger(solution.form.gain), "value": gain_value(numbers)},
         "power_of_s": solution.form.power_of_s,

@@ -4,15 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from derive.expressions.tree import (
-    Expression,
-    Negative,
-    Parallel,
-    Power,
-    Product,
-    Quotient,
-    Sum,
-)
+from derive.expressions.tree import Expression
+from derive.expressions.walk import children_of, with_children
 
 
 def replaced(expression: Expression, names: Mapping[Expression, Expression]) -> Expression:
@@ -20,16 +13,4 @@ def replaced(expression: Expression, names: Mapping[Expression, Expression]) -> 
     known = names.get(expression)
     if known is not None:
         return known
-    if isinstance(expression, Sum):
-        return Sum(tuple(replaced(term, names) for term in expression.terms))
-    if isinstance(expression, Product):
-        return Product(tuple(replaced(factor, names) for factor in expression.factors))
-    if isinstance(expression, Parallel):
-        return Parallel(tuple(replaced(branch, names) for branch in expression.branches))
-    if isinstance(expression, Quotient):
-        return Quotient(replaced(expression.numerator, names), replaced(expression.denominator, names))
-    if isinstance(expression, Negative):
-        return Negative(replaced(expression.operand, names))
-    if isinstance(expression, Power):
-        return Power(replaced(expression.base, names), expression.exponent)
-    return expression
+    return with_children(expression, tuple(replaced(part, names) for part in children_of(expression)))

@@ -60,8 +60,7 @@ class View:
     @property
     def band(self) -> BandName:
         """The band of the result."""
-        band = self.result.solution.band
-        return band.band if band else "full"
+        return self.result.solution.band_name
 
     @property
     def banded(self) -> bool:

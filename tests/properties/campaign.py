@@ -1,6 +1,7 @@
 """Compares many random circuits and prints the totals.
 
-Run as `python tests/properties/campaign.py --count 1000 --seed 1`.
+Run as `python tests/properties/campaign.py --count 1000 --seed 1`: results against the independent solver;
+with `--of readable`, readable forms against the expanded ones.
 """
 
 from __future__ import annotations
@@ -16,17 +17,51 @@ HERE = Path(__file__).resolve().parent
 sys.path[:0] = [str(HERE), str(HERE.parent / "support"), str(HERE.parents[1])]
 
 from comparison import compare  # noqa: E402 - the folders above must be known first
+from readable_stages import stages  # noqa: E402 - as above
 
 SHOWN = 10
 
 
+LARGER = 20
+
+
 def main() -> int:
-    """Run the campaign; the exit status is 1 where product and solver differ."""
+    """Run the campaign; the exit status is 1 where something differs."""
     parser = argparse.ArgumentParser(description=__doc__)
+    parser.add_argument("--of", choices=("results", "readable"), default="results")
     parser.add_argument("--count", type=int, default=1000)
     parser.add_argument("--seed", type=int, default=1)
     options = parser.parse_args()
     begun = time.perf_counter()
+    failed = readable(options) if options.of == "readable" else results(options)
+    print(f"{time.perf_counter() - begun:8.0f}  seconds")  # noqa: T201 - its job
+    return 1 if failed else 0
+
+
+def readable(options: argparse.Namespace) -> bool:
+    """Compare readable forms with expanded ones; whether any is wrong or longer."""
+    totals: Counter[str] = Counter()
+    with suppress(KeyboardInterrupt):
+        for found, wrong in stages(options.seed, options.count, LARGER):
+            totals["circuits"] += 1
+            totals["entries"] += len(found.raw)
+            totals["entries made shorter"] += sum(after < before for before, after in found.leaves)
+            totals["WRONG OR LONGER"] += bool(wrong)
+            if wrong and totals["WRONG OR LONGER"] <= SHOWN:
+                print(f"{wrong}\n{found.text}")  # noqa: T201 - its job
+    show(totals)
+    return bool(totals["WRONG OR LONGER"])
+
+
+def show(*tables: Counter[str]) -> None:
+    """Print totals."""
+    for table in tables:
+        for name, count in sorted(table.items()):
+            print(f"{count:8d}  {name}")  # noqa: T201 - its job
+
+
+def results(options: argparse.Namespace) -> bool:
+    """Compare results with the independent solver; whether product and solver differ, or a check failed."""
     totals: Counter[str] = Counter()
     kinds: Counter[str] = Counter()
     opened: Counter[str] = Counter()
@@ -48,11 +83,8 @@ def main() -> int:
             if (outcome.differences or outcome.failed) and shown < SHOWN:
                 shown += 1
                 print(f"seed {seed}: {outcome.differences} {outcome.failed}\n{outcome.text}")  # noqa: T201 - its job
-    for table in (totals, kinds, opened):
-        for name, count in sorted(table.items()):
-            print(f"{count:8d}  {name}")  # noqa: T201 - its job
-    print(f"{time.perf_counter() - begun:8.0f}  seconds")  # noqa: T201 - its job
-    return 1 if totals["DIFFERENT"] or totals["CHECKS FAILED"] else 0
+    show(totals, kinds, opened)
+    return bool(totals["DIFFERENT"] or totals["CHECKS FAILED"])
 
 
 if __name__ == "__main__":

@@ -15,7 +15,8 @@ import pytest
 import scipy.linalg
 
 from derive.devices.linearise import linearise
-from derive.eliminate.nested import names_taken, needed
+from derive.eliminate.names import names_taken
+from derive.eliminate.nested import needed
 from derive.eliminate.plan import plan
 from derive.nodal.write import write_equations
 from derive.normalise.nested_response import nested_response

@@ -225,3 +225,10 @@ def test_every_case_has_a_topology_and_passes_its_own_checks(folder):
 def test_a_form_that_is_no_expression_is_refused():
     with pytest.raises(InputError):
         parse_expression("__import__('os').getcwd()")
+
+
+def test_no_two_cases_bear_one_number():
+    files = sorted(CASES.glob("*/topology.toml"))
+    numbers = [tomllib.loads(file.read_text(encoding="utf-8"))["sheet"]["number"] for file in files]
+    assert len(files) > 10
+    assert len(set(numbers)) == len(numbers)

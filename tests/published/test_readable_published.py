@@ -10,9 +10,12 @@ from __future__ import annotations
 
 from functools import cache
 
+import pytest
+
 import derive
 from derive.expressions.text import to_text
 from derive.reading.read import parse
+from derive.sheet.plain import plain_outcome
 
 STAGE = """
 [sheet]
@@ -62,11 +65,21 @@ R_C = { resistor = "4k7", between = ["vcc", "out"] }
 
 
 @cache
-def high_band(parts):
+def outcome_of(parts):
     topology = parse(STAGE.format(title="Stage", parts=parts), "stage.toml")
     results = derive.derive(topology, other_engine=False)
     assert results.passed
-    return next(r.solution for r in results.outcome.results if r.solution.band.band == "high")
+    return results.outcome
+
+
+def high_band(parts):
+    results = outcome_of(parts).results
+    return next(result.solution for result in results if result.solution.band.band == "high")
+
+
+def sheet_of(parts):
+    """Give every line of the sheet as plain text."""
+    return plain_outcome(outcome_of(parts), steps=True)
 
 
 def resistance_seen_by(parts, symbol):
@@ -124,3 +137,29 @@ def test_cascode_has_no_miller_factor_of_the_full_gain():
 def test_degenerated_stage_shows_what_the_emitter_resistance_does():
     gain = to_text(high_band(DEGENERATED).readable.gain)
     assert gain == "-beta*R_C/(R_S + r_pi + (1 + beta)*R_E)"
+
+
+# The same, as the sheet prints it.
+PRINTED = {
+    FOLLOWER: (
+        "R_S ∥ (r_π + (1 + β)·R_E)",
+        "r_π ∥ ((R_S + R_E)/(1 + g_m·R_E))",
+        "(1 + 1/β)·g_m/C_π",
+        "A_v = 1/(1 + (R_S + r_π)/((1 + β)·R_E))",
+    ),
+    COMMON_EMITTER: (
+        "C_μ·((R_S ∥ r_π)·(1 + g_m·R_L) + R_L) + C_π·(R_S ∥ r_π)",
+        "ω_z1 = g_m/C_μ",
+        "right half-plane",
+        "A_v = −r_π/(R_S + r_π)·g_m·R_L",
+    ),
+    COMMON_BASE: ("R_S ∥ r_e", "A_v = α·R_C/(R_S + r_e)", "r_e = r_π/(1 + β)"),
+    CASCODE: ("(R_S ∥ r_π1)·(1 + g_m1·r_e2) + r_e2",),
+}
+
+
+@pytest.mark.parametrize("parts", PRINTED, ids=("follower", "common emitter", "common base", "cascode"))
+def test_sheet_prints_the_textbook_forms(parts):
+    sheet = sheet_of(parts)
+    for words in PRINTED[parts]:
+        assert words in sheet

@@ -129,7 +129,7 @@ def _wrong_errors(solution: Solution, register: Register) -> str:
         if wrong := differs(entry.together, pair):
             return f"{where}{wrong}, with those before it, differs from what the circuit gives"
         wrong = _wrong_alone(solution, entry, values) or _wrong_ratio(solution, entry, values)
-        wrong = wrong or _wrong_status(solution, entry, register, values, pair)
+        wrong = wrong or _wrong_status(solution, entry, register, values)
         if wrong:
             return f"{where}{wrong}"
     return ""
@@ -137,33 +137,21 @@ def _wrong_errors(solution: Solution, register: Register) -> str:
 
 def _wrong_alone(solution: Solution, entry: Entry, values: Mapping[str, Fraction]) -> str:
     """Judge the errors of an assumption by itself, where it takes parts out of the circuit."""
-    if entry.alone is None or entry.reduced.how != "circuit":
-        return ""
-    left = without(solution.judged, Anew(solution, 2).weights(entry.assumption))
-    if left is None:
-        return ""
-    pair = Pair(tableau_of(left, solution, values), tableau_of(solution.judged, solution, values))
-    wrong = differs(entry.alone, pair)
+    pair = None if entry.alone is None else _alone_at(solution, entry, values)
+    wrong = "" if entry.alone is None or pair is None else differs(entry.alone, pair)
     return f"{wrong}, by itself, differs from what the circuit gives" if wrong else ""
 
 
 def _wrong_ratio(solution: Solution, entry: Entry, values: Mapping[str, Fraction]) -> str:
-    if entry.smaller is None or entry.larger is None or entry.ratio is None:
+    ratio = None if entry.ratio is None else _ratio_at(solution, entry, values)
+    if ratio is None or entry.ratio is None:
         return ""
-    known = with_merged_exact(solution, dict(values))
-    for name, definition in Anew(solution, 2).words.definitions:
-        known[name] = value_exact(definition, known)
-    ratio = abs(float(value_exact(entry.smaller, known) / value_exact(entry.larger, known)))
     agrees = math.isclose(ratio, entry.ratio, rel_tol=1e-9, abs_tol=1e-12)
     return "" if agrees else f"the ratio of its terms is {ratio:.4g}"
 
 
 def _wrong_status(
-    solution: Solution,
-    entry: Entry,
-    register: Register,
-    values: Mapping[str, Fraction],
-    pair: Pair,
+    solution: Solution, entry: Entry, register: Register, values: Mapping[str, Fraction]
 ) -> str:
     errors = entry.together
     if errors is None:
@@ -180,7 +168,7 @@ def _wrong_status(
         return f'its status is "{entry.status}", which its errors at the nominal values contradict'
     if entry.status == "fails":
         return ""
-    return _wrong_at_corners(solution, entry, register, values, pair)
+    return _wrong_at_corners(solution, entry, register, values)
 
 
 def breaks(worst: Worst, budget: Budget, *, sized: bool) -> bool:
@@ -192,11 +180,7 @@ def breaks(worst: Worst, budget: Budget, *, sized: bool) -> bool:
 
 
 def _wrong_at_corners(
-    solution: Solution,
-    entry: Entry,
-    register: Register,
-    values: Mapping[str, Fraction],
-    pair: Pair,
+    solution: Solution, entry: Entry, register: Register, values: Mapping[str, Fraction]
 ) -> str:
     """Look at the corner that breaks a limit, or at some of those of which none is to break one."""
     if entry.worst is None:
@@ -233,22 +217,32 @@ def _broken_at(
     """Whether a limit is broken at some values, with the assumptions before it or by itself."""
     sized = entry.assumption.form in ("much_greater", "much_less")
     found = worst_of(pair_at(solution, entry.reduced.form, values), register.range_hz, frequencies)
-    known = with_merged_exact(solution, dict(values))
-    for name, definition in Anew(solution, 2).words.definitions:
-        known[name] = value_exact(definition, known)
-    ratio = None
-    if sized and entry.smaller is not None and entry.larger is not None:
-        ratio = abs(float(value_exact(entry.smaller, known) / value_exact(entry.larger, known)))
+    ratio = _ratio_at(solution, entry, values) if sized else None
     found = Worst(ratio, found.gain, found.magnitude_db, found.phase_deg)
     if breaks(found, register.budget, sized=sized):
         return True
-    left = None
-    if entry.reduced.how == "circuit":
-        left = without(solution.judged, Anew(solution, 2).weights(entry.assumption))
-    if left is None:
+    alone = _alone_at(solution, entry, values)
+    if alone is None:
         return False
-    alone = Pair(tableau_of(left, solution, values), tableau_of(solution.judged, solution, values))
     return breaks(worst_of(alone, register.range_hz, frequencies), register.budget, sized=False)
+
+
+def _ratio_at(solution: Solution, entry: Entry, values: Mapping[str, Fraction]) -> float | None:
+    """Give the ratio of the smaller term to the larger; None where there are no two."""
+    if entry.smaller is None or entry.larger is None:
+        return None
+    known = with_merged_exact(solution, values, Anew(solution, 2).words.definitions)
+    return abs(float(value_exact(entry.smaller, known) / value_exact(entry.larger, known)))
+
+
+def _alone_at(solution: Solution, entry: Entry, values: Mapping[str, Fraction]) -> Pair | None:
+    """Give the response under an assumption by itself and that of the circuit; None where no part goes."""
+    if entry.reduced.how != "circuit":
+        return None
+    left = without(solution.judged, Anew(solution, 2).weights(entry.assumption))
+    if left is None:
+        return None
+    return Pair(tableau_of(left, solution, values), tableau_of(solution.judged, solution, values))
 
 
 def _frequencies(range_hz: tuple[float, float]) -> list[float]:

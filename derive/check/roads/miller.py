@@ -95,9 +95,7 @@ def _judge_point(solution: Solution, view: MillerView, numbers: Stream, prime: i
     state = solve_modulo(
         assemble(circuit, excite(solution.derivation.system), symbols.__getitem__), s, prime
     )
-    known = with_merged_modulo(solution, symbols, prime)
-    for name, definition in view.definitions:
-        known[name] = value_modulo(definition, known, prime)
+    known = with_merged_modulo(solution, symbols, prime, view.definitions)
     try:
         near, far = state.nodes[view.near], state.nodes[view.far]
     except KeyError as error:
@@ -144,9 +142,7 @@ def _judge_numbers(solution: Solution, view: MillerView, values: Mapping[str, Fr
         if view.errors or view.usable is not None:
             raise WrongError("it has errors without halves or judgement")
         return 0
-    known = with_merged_exact(solution, values)
-    for name, definition in view.definitions:
-        known[name] = value_exact(definition, known)
+    known = with_merged_exact(solution, values, view.definitions)
     factors = (value_exact(view.input_factor, known), value_exact(view.output_factor, known))
     for words, factor, half in zip(HALVES, factors, view.halves, strict=True):
         if abs(half - known[view.symbol] * factor) > abs(half) * Fraction(TOLERANCE):

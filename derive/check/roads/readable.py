@@ -44,9 +44,7 @@ def judge(solution: Solution) -> Verdict:
         values["s"] = numbers.below(prime)
         try:
             state = solve_modulo(assemble(circuit, excitation, values.__getitem__), values["s"], prime)
-            known = with_merged_modulo(solution, values, prime)
-            for name, value in readable.definitions:
-                known[name] = value_modulo(value, known, prime)
+            known = with_merged_modulo(solution, values, prime, readable.definitions)
             wrong = _first_difference(solution.form, readable, known, prime)
             printed = form_modulo(_as_form(solution.form, readable), known, prime)
         except (NoSolutionError, ZeroDivisionError) as error:

@@ -180,6 +180,8 @@ def _ohms(view: View, constant: TimeConstant) -> str:
     """Word the resistance in ohms, from the time constant and the part's value."""
     symbols = view.result.solution.derivation.system.small_signal.symbols
     value = next((symbol.value for symbol in symbols if symbol.name == constant.symbol), None)
+    if constant.resistance == ZERO:
+        return engineering(0, RESISTANCE, 4)
     if constant.resistance is None or not value or not constant.seconds:
         return "–"
     ohms = value / constant.seconds if constant.reactance == "inductor" else constant.seconds / value

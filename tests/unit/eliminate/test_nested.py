@@ -11,7 +11,8 @@ from derive.bands.restrict import restrict
 from derive.check.roads.steps import broken_steps
 from derive.check.verdict import Solution
 from derive.eliminate.derivation import Nested
-from derive.eliminate.nested import eliminate_nested, names_taken, needed
+from derive.eliminate.names import names_taken
+from derive.eliminate.nested import eliminate_nested, needed
 from derive.eliminate.plan import plan
 from derive.eliminate.rules import name_entry, name_ratio, take_off, write_short
 from derive.expressions.tree import Equation, Negative

@@ -9,7 +9,8 @@ from road import system_of
 from derive.algebra.modular import PRIME, residues
 from derive.eliminate.derivation import Nested
 from derive.eliminate.eliminate import eliminate
-from derive.eliminate.nested import eliminate_nested, names_taken
+from derive.eliminate.names import names_taken
+from derive.eliminate.nested import eliminate_nested
 from derive.eliminate.plan import plan
 from derive.errors import InputError
 from derive.expressions.walk import evaluate, evaluate_modulo
