@@ -174,7 +174,7 @@ def differs(errors: Errors, pair: Pair) -> str:
         return f"the worst error of the {wrong}"
     for each in errors.at:
         there = pair.at(each.hertz)
-        if not (_close(there[0], each.magnitude_db) and _close(there[1], each.phase_deg)):
+        if not (_close(there[0], each.magnitude_db) and _same_angle(there[1], each.phase_deg)):
             return f"the errors at the {each.name}"
     for kind, place, roots, lost in (
         ("pole", 1, errors.poles, errors.lost_poles),
@@ -189,6 +189,11 @@ def _close(one: float, other: float) -> bool:
     if not (math.isfinite(one) and math.isfinite(other)):
         return True
     return abs(one - other) <= FLOOR + SLACK * max(abs(one), abs(other))
+
+
+def _same_angle(one: float, other: float) -> bool:
+    """Whether two angles in degrees agree; +180 and −180 are one."""
+    return _close(one, other) or (min(abs(one), abs(other)) > HALF_TURN and _close(abs(one), abs(other)))
 
 
 def _roots_agree(pair: Pair, place: int, roots: Sequence[RootError], lost: Sequence[complex]) -> bool:

@@ -1,7 +1,8 @@
 """Compares many random circuits and prints the totals.
 
 Run as `python tests/properties/campaign.py --count 1000 --seed 1`: results against the independent solver;
-with `--of readable`, readable forms against the expanded ones.
+with `--of readable`, readable forms against the expanded ones; with `--of assumptions`, registers of random
+assumptions against matrices stamped for the purpose.
 """
 
 from __future__ import annotations
@@ -11,29 +12,29 @@ import sys
 import time
 from collections import Counter
 from contextlib import suppress
+from itertools import islice
 from pathlib import Path
 
 HERE = Path(__file__).resolve().parent
 sys.path[:0] = [str(HERE), str(HERE.parent / "support"), str(HERE.parents[1])]
 
+from assumed_comparison import differences, disputed, drawn_stages  # noqa: E402 - as below
 from comparison import compare  # noqa: E402 - the folders above must be known first
 from readable_stages import stages  # noqa: E402 - as above
 
 SHOWN = 10
-
-
 LARGER = 20
 
 
 def main() -> int:
     """Run the campaign; the exit status is 1 where something differs."""
     parser = argparse.ArgumentParser(description=__doc__)
-    parser.add_argument("--of", choices=("results", "readable"), default="results")
+    parser.add_argument("--of", choices=tuple(CAMPAIGNS), default="results")
     parser.add_argument("--count", type=int, default=1000)
     parser.add_argument("--seed", type=int, default=1)
     options = parser.parse_args()
     begun = time.perf_counter()
-    failed = readable(options) if options.of == "readable" else results(options)
+    failed = CAMPAIGNS[options.of](options)
     print(f"{time.perf_counter() - begun:8.0f}  seconds")  # noqa: T201 - its job
     return 1 if failed else 0
 
@@ -51,6 +52,23 @@ def readable(options: argparse.Namespace) -> bool:
                 print(f"{wrong}\n{found.text}")  # noqa: T201 - its job
     show(totals)
     return bool(totals["WRONG OR LONGER"])
+
+
+def assumptions(options: argparse.Namespace) -> bool:
+    """Compare registers of assumptions with matrices stamped anew; whether any differs."""
+    totals: Counter[str] = Counter()
+    with suppress(KeyboardInterrupt):
+        for stage, solution in islice(drawn_stages(f"campaign {options.seed}"), options.count):
+            entries = solution.register.entries
+            totals["circuits"] += 1
+            totals["assumptions"] += len(entries)
+            totals.update(f"  that {entry.status}" for entry in entries)
+            wrong = [*differences(stage, solution), *filter(None, [disputed(solution)])]
+            totals["DIFFERENT"] += bool(wrong)
+            if wrong and totals["DIFFERENT"] <= SHOWN:
+                print(f"{wrong}\n{stage.text}")  # noqa: T201 - its job
+    show(totals)
+    return bool(totals["DIFFERENT"])
 
 
 def show(*tables: Counter[str]) -> None:
@@ -85,6 +103,9 @@ def results(options: argparse.Namespace) -> bool:
                 print(f"seed {seed}: {outcome.differences} {outcome.failed}\n{outcome.text}")  # noqa: T201 - its job
     show(totals, kinds, opened)
     return bool(totals["DIFFERENT"] or totals["CHECKS FAILED"])
+
+
+CAMPAIGNS = {"results": results, "readable": readable, "assumptions": assumptions}
 
 
 if __name__ == "__main__":
