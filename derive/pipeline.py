@@ -153,7 +153,7 @@ def explained(solution: Solution, band: BandCircuit, find: Find) -> Solution:
     said = replace(
         solution,
         register=approximate(band, derivation, form, numbers, vocabulary),
-        simplified=_simplified(band, find, vocabulary),
+        simplified=_simplified(band, find, vocabulary, names_used(derivation)),
     )
     if derivation.nested is not None:
         return replace(said, estimates=estimate(derivation, form, numbers, None, vocabulary, band.band))
@@ -175,9 +175,11 @@ def explained(solution: Solution, band: BandCircuit, find: Find) -> Solution:
     )
 
 
-def _simplified(band: BandCircuit, find: Find, vocabulary: Vocabulary) -> tuple[Simplified, ...]:
+def _simplified(
+    band: BandCircuit, find: Find, vocabulary: Vocabulary, taken: set[str]
+) -> tuple[Simplified, ...]:
     """Give the short forms that the tool finds, where the budget asks for them."""
     budget = band.circuit.topology.budget
     if not budget.simplify:
         return ()
-    return simplify_all(band.circuit, find_in(band, find), budget, vocabulary=vocabulary)
+    return simplify_all(band.circuit, find_in(band, find), budget, vocabulary=vocabulary, taken=taken)

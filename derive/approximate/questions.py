@@ -80,6 +80,8 @@ class Simplified:
     or "refused", with no form and the reason. `left` of the equation is p_1, ω_u and the like;
     `form` is exact in the symbols that are left, and readable. top/bottom are its polynomials over `ring`: the
     response itself, or the two coefficients whose ratio, or the root of it (`root` = 2), is the answer.
+    A form of several lines has no such polynomials: its lines stand among `definitions`, each after what it needs, and
+    `says` tells what they mean; `terms` is then that of the longest.
     `beyond` is a form of one line that goes beyond the budget, where there is none of one line within it.
     `idle` are elements that the response no longer depends on once the assumptions are made; `kept` those that
     are left. `value` and `original` are those of the short form and of the whole circuit: the gain, or rad/s.
@@ -91,6 +93,7 @@ class Simplified:
     left: str
     form: Expression | None = None
     definitions: tuple[Definition, ...] = ()
+    says: tuple[tuple[str, str], ...] = ()
     assumptions: tuple[Without, ...] = ()
     unlisted: int = 0
     idle: tuple[str, ...] = ()

@@ -6,8 +6,8 @@ the circuit is expanded, matched parts tied, and small terms dropped within what
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
-from dataclasses import replace
+from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass, replace
 from fractions import Fraction
 
 import numpy as np
@@ -16,10 +16,12 @@ from derive.approximate.questions import FOUR_QUESTIONS, ONE_LINE, Question, Sim
 from derive.approximate.simplify_answers import Answer, Draft, band_answer, value_answer
 from derive.approximate.simplify_expand import Expanded, expand
 from derive.approximate.simplify_form import found_form, refused
-from derive.approximate.simplify_greedy import reduce_elements
+from derive.approximate.simplify_greedy import Reduction
 from derive.approximate.simplify_original import Original
 from derive.approximate.simplify_price import frequencies, price_in_band
+from derive.approximate.simplify_rooted import rooted_form
 from derive.approximate.simplify_setups import Setup, at_pole, in_band, low_frequency, pole_asked, unity
+from derive.approximate.simplify_staged import staged_form
 from derive.approximate.simplify_trials import Change
 from derive.devices.elements import SmallSignal, VoltageDrive
 from derive.errors import InputError, SingularError, TooLargeError
@@ -38,6 +40,14 @@ UNTIED_TERMS = 200
 LONGEST = 60
 # Where no form of one line is within the budget, these limits are tried for one beyond it.
 WIDER = (Fraction(1, 10), Fraction(1, 5), Fraction(3, 10), Fraction(1, 2))
+
+
+@dataclass(frozen=True, slots=True)
+class _Way:
+    """A question made ready, and the one way down that serves all its limits."""
+
+    setup: Setup
+    reduction: Reduction
 
 
 def simplify(
@@ -68,19 +78,23 @@ def _simplified(question: Question, budget: Budget, whole: Original, *, readable
     unanswerable = _unanswerable(question, whole)
     if unanswerable:
         return refused(question, unanswerable)
-    draft, reason = _shortest(question, budget, whole)
+    setup = _setup(question, budget, whole)
+    way = _Way(setup, Reduction(setup.bench, setup.measure))
+    draft, reason = _shortest(question, budget, whole, way)
+    # A response in a band is written coefficient by coefficient: of more than one line, but still to be read.
+    band = question.kind == "response in a band"
     if draft is not None and draft.answer.terms > LONGEST:
         reason = f"the shortest form found within the budget has {draft.answer.terms:,} terms"
         draft = None
-    if draft is None:
-        found = refused(question, reason)
-    else:
+    long = draft is None or draft.answer.terms > ONE_LINE
+    found = _in_lines(question, budget, whole, way) if long and not band else None
+    if found is None and draft is not None:
         found = found_form(draft, question, budget, whole, readable=readable)
-        # A response in a band is written coefficient by coefficient: of more than one line, but still to be read.
-        if draft.answer.terms <= ONE_LINE or question.kind == "response in a band":
-            return found
-    for wider_question, wider_budget in _wider(question, budget):
-        other, _ = _shortest(wider_question, wider_budget, whole)
+    found = found or refused(question, reason)
+    if draft is not None and (band or not long):
+        return found
+    for wider_question, wider_budget, scale in _wider(question, budget):
+        other, _ = _shortest(wider_question, wider_budget, whole, way, scale)
         if other is not None and other.answer.terms <= ONE_LINE:
             beyond = found_form(other, question, budget, whole, readable=readable)
             # With more room for the way, the end may yet lie within the budget.
@@ -88,26 +102,47 @@ def _simplified(question: Question, budget: Budget, whole: Original, *, readable
     return found
 
 
-def _wider(question: Question, budget: Budget) -> Iterator[tuple[Question, Budget]]:
-    """Give the question with wider and wider limits, up to the widest that is worth a look."""
+def _in_lines(question: Question, budget: Budget, original: Original, way: _Way) -> Simplified | None:
+    """Give an answer in several short lines, where one does not do; None where there is none."""
+    if question.kind not in ("low-frequency gain", "dominant pole", "second pole"):
+        return None
+    try:
+        found = staged_form(question, budget, original)
+        if found is not None or question.kind == "low-frequency gain":
+            return found
+        for part in ELEMENT_PARTS:
+            bench, changes = way.reduction.to(part)
+            found = rooted_form(question, budget, original, bench, changes)
+            if found is not None:
+                return found
+    except np.linalg.LinAlgError:
+        return None
+    return None
+
+
+def _wider(question: Question, budget: Budget) -> Iterator[tuple[Question, Budget, float]]:
+    """Give the question with wider and wider limits, up to the widest that is worth a look, and how much wider."""
     for limit in WIDER:
         if question.kind == "low-frequency gain" and limit > budget.gain:
-            yield question, replace(budget, gain=limit)
+            yield question, replace(budget, gain=limit), float(limit / budget.gain)
         elif question.kind == "response in a band":
             decibels, degrees = budget.magnitude_db, budget.phase_deg
             times = 10 * limit
-            yield question, replace(budget, magnitude_db=decibels * times, phase_deg=degrees * times)
+            wider = replace(budget, magnitude_db=decibels * times, phase_deg=degrees * times)
+            yield question, wider, float(times)
         elif question.kind != "low-frequency gain" and limit > question.corner_limit:
-            yield replace(question, corner_limit=limit), budget
+            yield replace(question, corner_limit=limit), budget, float(limit / question.corner_limit)
 
 
-def _shortest(question: Question, budget: Budget, original: Original) -> tuple[Draft | None, str]:
+def _shortest(
+    question: Question, budget: Budget, original: Original, way: _Way, scale: float = 1.0
+) -> tuple[Draft | None, str]:
     """Give the shortest answer, or None and the reason why there is none."""
     reason = ""
     for part in ELEMENT_PARTS:
-        setup = _setup(question, budget, original)
-        changes = reduce_elements(setup.bench, setup.measure, part)
-        draft, why = _drafted(setup, changes, question, budget, original)
+        bench, made = way.reduction.to(part * scale)
+        changes = tuple(replace(change, error=change.error / scale) for change in made)
+        draft, why = _drafted(replace(way.setup, bench=bench), changes, question, budget, original)
         if draft is not None:
             return draft, ""
         reason = reason or why
@@ -122,12 +157,14 @@ def simplify_all(
     *,
     readable: bool = True,
     vocabulary: Vocabulary | None = None,
+    taken: Iterable[str] = (),
 ) -> tuple[Simplified, ...]:
     """Answer several questions on one circuit; where the budget states a range, the response over it as well.
 
+    Given: `taken`, names that have a meaning already.
     Gives a refusal to each where nothing can be judged small: a value is open, or a resistance zero.
     """
-    original = Original(circuit, find, vocabulary)
+    original = Original(circuit, find, vocabulary, frozenset(taken))
     asked = list(questions)
     if budget.range_hz is not None:
         low, high = budget.range_hz

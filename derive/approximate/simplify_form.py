@@ -8,8 +8,10 @@ from derive.algebra.ratio import coefficients, lowest_terms
 from derive.algebra.ring import Polynomial, Ring
 from derive.approximate.questions import ONE_LINE, Question, Simplified, Without
 from derive.approximate.simplify_answers import Answer, Draft
+from derive.approximate.simplify_desk import Desk, desk_of
 from derive.approximate.simplify_original import Original
 from derive.approximate.simplify_price import (
+    form_value,
     frequencies,
     price_in_band,
     price_of_value,
@@ -32,6 +34,8 @@ LEFT = {
 }
 # Among more factors than this in all its terms, the words of transistors (β, r_e) take too long to find.
 MOST_FACTORS = 60
+# A form of up to so many terms is written for reading, in several lines where need be.
+READ = 16
 
 
 def refused(question: Question, reason: str) -> Simplified:
@@ -46,8 +50,14 @@ def found_form(
     answer = draft.answer
     network = original.network
     vocabulary = original.vocabulary
-    # Longer forms are read by nobody, and the search for their shortest writing takes long.
-    form = _written(answer, vocabulary, readable=readable and answer.terms <= ONE_LINE)
+    # The search for the shortest writing of a long form takes long, and nobody reads it then.
+    band = question.kind == "response in a band"
+    form = _written(
+        answer, vocabulary, readable=readable and answer.terms <= (ONE_LINE if band else READ)
+    )
+    lines = desk_of(original, network).lines
+    if answer.terms > ONE_LINE and not band:
+        form = lines.fitted(form, "")
     made: list[Without] = [element_assumption(network, c) for c in draft.changes if not c.idle]
     used = {name for name in answer.ring.names if name != "s"}
     made += [tie_assumption(name, leader) for name, leader in draft.ties if leader in used]
@@ -64,7 +74,7 @@ def found_form(
         price = price_in_band(answer, original, budget, points)
         sampling = sampling_words(points)
     else:
-        value, whole = value_of(answer, network.values), _original_value(question, original)
+        value, whole = value_of(answer, network.values), original_value(question, original)
         limit = budget.gain if question.kind == "low-frequency gain" else question.corner_limit
         price = price_of_value(value, whole, float(limit))
     return Simplified(
@@ -73,7 +83,8 @@ def found_form(
         "" if made or more else "nothing may be dropped within the budget",
         _left_side(question, answer, original),
         form,
-        definitions_used((form,), vocabulary),
+        (*definitions_used((form, *(value for _, value in lines.lines)), vocabulary), *lines.lines),
+        tuple((name, "") for name, _ in lines.lines),
         tuple(made),
         more,
         idle,
@@ -100,7 +111,8 @@ def _left_side(question: Question, answer: Answer, original: Original) -> str:
     return LEFT[question.kind]
 
 
-def _original_value(question: Question, original: Original) -> float:
+def original_value(question: Question, original: Original) -> float:
+    """Give what the whole circuit has of what a question asks for."""
     if question.kind == "low-frequency gain":
         return (original.low_gain or (0.0, 0))[0]
     if question.kind == "unity-gain frequency":
@@ -146,3 +158,34 @@ def _polynomial(ring: Ring, found: dict[int, Polynomial], vocabulary: Vocabulary
             ratio = read_ratio(ring, *lowest_terms(ring, value, found[lowest]), vocabulary)
             terms.append(multiply([*_power(power - lowest), ratio]) if ratio != ZERO else ZERO)
     return add(terms)
+
+
+def lined(
+    question: Question, budget: Budget, original: Original, left: str, form: Expression, desk: Desk
+) -> Simplified:
+    """Give the answer that a form in the lines of a desk is, with its value and price as they are read off it."""
+    form = desk.lines.fitted(form, "")
+    lines = desk.lines.lines
+    words = definitions_used([form, *(value for _, value in lines)], original.vocabulary)
+    definitions = (*words, *lines)
+    value, whole = (
+        form_value(form, definitions, original.network.values),
+        original_value(question, original),
+    )
+    limit = budget.gain if question.kind == "low-frequency gain" else question.corner_limit
+    return Simplified(
+        question,
+        "found",
+        "",
+        left,
+        form,
+        definitions,
+        tuple((name, desk.lines.words.get(name, "")) for name, _ in lines),
+        desk.assumptions,
+        desk.unlisted,
+        terms=desk.longest,
+        value=value,
+        original=whole,
+        price=price_of_value(value, whole, float(limit)),
+        remarks=tuple(f"{name} is not tried: {why}" for name, why in original.network.kept),
+    )

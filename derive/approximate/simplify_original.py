@@ -6,6 +6,7 @@ import math
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Any, TypeVar
 
 import numpy as np
 
@@ -15,7 +16,9 @@ from derive.approximate.simplify_trials import Complex, matrices, responses
 from derive.devices.elements import SmallSignal
 from derive.normalise.exact_response import ExactResponse, exact_response
 from derive.readable.vocabulary import Vocabulary, vocabulary_of
-from derive.topology.topology import Find
+from derive.topology.topology import GROUND, Find
+
+T = TypeVar("T")
 
 # A crossing of a gain of one is sought on so many points, from far below to far above all corners.
 SWEEP = 400
@@ -28,17 +31,42 @@ ROUNDING = 1e-13
 class Original:
     """A circuit and one wanted quantity, with what is known of its response; each worked when asked for.
 
-    `words` is the vocabulary of the result that the short forms stand beside; None where there is none.
+    `words` is the vocabulary of the result that the short forms stand beside, None where there is none; `names` are
+    those that the result has given a meaning.
     """
 
     circuit: SmallSignal
     find: Find
     words: Vocabulary | None = None
+    names: frozenset[str] = frozenset()
 
     @cached_property
     def vocabulary(self) -> Vocabulary:
         """The words in which forms are written."""
         return self.words or vocabulary_of(self.circuit)
+
+    @cached_property
+    def taken(self) -> frozenset[str]:
+        """The names that have a meaning already."""
+        topology = self.circuit.topology
+        found = {"s", GROUND, "K", "H", "p_1", "p_2", "omega_u", "omega_1", "omega_2", *self.names}
+        found |= {symbol.name for symbol in self.circuit.symbols} | {
+            e.name for e in self.circuit.elements
+        }
+        found |= {part.name for part in topology.parts} | {drive.name for drive in topology.drives}
+        found |= {find.name for find in topology.finds} | {merge.name for merge in topology.merges}
+        return frozenset(found | {name for name, _ in self.vocabulary.definitions})
+
+    @cached_property
+    def _kept(self) -> dict[float, Any]:
+        return {}
+
+    def kept_stages(self, limit: float, work: Callable[[], T]) -> T:
+        """Give the stages of the circuit within a limit, worked once: two questions are answered by them."""
+        if limit not in self._kept:
+            self._kept[limit] = work()
+        found: T = self._kept[limit]
+        return found
 
     @cached_property
     def network(self) -> Network:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from fractions import Fraction
 
 import numpy as np
@@ -14,6 +14,9 @@ from derive.approximate.questions import Price
 from derive.approximate.simplify_answers import Answer
 from derive.approximate.simplify_original import Original
 from derive.approximate.simplify_trials import Complex, Floats
+from derive.expressions.tree import Expression
+from derive.expressions.walk import evaluate
+from derive.readable.form import Definition
 from derive.topology.topology import Budget
 
 # At least so many frequencies over the range, and so many to a decade.
@@ -35,6 +38,16 @@ def value_of(answer: Answer, values: Mapping[str, Fraction]) -> float:
     )
     ratio = above / below
     return float(ratio) if answer.root == 1 else math.sqrt(abs(ratio))
+
+
+def form_value(
+    form: Expression, definitions: Sequence[Definition], values: Mapping[str, Fraction]
+) -> float:
+    """Give the value of a form as it is written, its definitions worked one after the other."""
+    known = {name: float(value) for name, value in values.items()}
+    for name, value in definitions:
+        known[name] = evaluate(value, known, float)
+    return float(evaluate(form, known, float))
 
 
 def price_of_value(value: float, original: float, limit: float) -> Price:

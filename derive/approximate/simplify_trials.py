@@ -75,6 +75,7 @@ class Bench:
             self.right[row] = float(value)
         self.wanted = tuple(size if place == NOWHERE else place for place in network.wanted)
         self.changes = 0
+        self.refresh_after = REFRESH
         self.refresh()
 
     def refresh(self) -> None:
@@ -131,13 +132,17 @@ class Bench:
         return Trials(responses, factors)
 
     def apply(self, place: int, *, shorted: bool) -> None:
-        """Carry out one change; what a short leaves between two joined nodes goes with it."""
+        """Carry out one change; what a short leaves between two joined nodes goes with it.
+
+        Raises: LinAlgError where what is left turns out to be singular; the bench is then as it was.
+        """
         (a, b), (c, d) = self.rows[:, place], self.columns[:, place]
         driven = self.inverse[:, :, a] - self.inverse[:, :, b]
         sensed = self.inverse[:, c, :] - self.inverse[:, d, :]
         loop = driven[:, c] - driven[:, d]
         x = self.at_samples[:, place]
         factor = -1 / loop if shorted else x / (1 - x * loop)
+        before = self.there.copy(), self.group.copy()
         self.there[place] = False
         if shorted:
             joined = sorted((int(self.group[c]), int(self.group[d])))
@@ -146,11 +151,19 @@ class Bench:
             self.group[(self.group == joined[0]) | (self.group == joined[1])] = leader
             self._leave_out_the_dead()
         self.changes += 1
-        if self.changes % REFRESH == 0:
-            self.refresh()
+        if self.changes % self.refresh_after == 0:
+            try:
+                self.refresh()
+            except np.linalg.LinAlgError:
+                self.there, self.group = before
+                raise
             return
         self.inverse = self.inverse + factor[:, None, None] * driven[:, :, None] * sensed[:, None, :]
         self._read()
+
+    def keep(self, place: int) -> None:
+        """Try no more changes of a stamp."""
+        self.removable[place] = self.shortable[place] = False
 
     def _leave_out_the_dead(self) -> None:
         rows, columns = self.group[self.rows], self.group[self.columns]

@@ -30,6 +30,7 @@ def _answer(found: Simplified) -> dict[str, Any]:
         "name": found.left,
         "form": None if found.form is None else to_text(found.form),
         "definitions": [[name, to_ledger(value)] for name, value in found.definitions],
+        "meanings": {name: words for name, words in found.says if words},
         "value": rounded(found.value),
         "original": rounded(found.original),
         "errors": _price(found.price),

@@ -28,6 +28,7 @@ import numpy as np  # noqa: E402 - the checkout's own package comes first
 from derive.approximate.questions import FOUR_QUESTIONS, ONE_LINE, Question, Simplified  # noqa: E402
 from derive.approximate.simplify import simplify  # noqa: E402
 from derive.approximate.simplify_network import network_of  # noqa: E402
+from derive.approximate.simplify_original import Original  # noqa: E402
 from derive.approximate.simplify_trials import responses  # noqa: E402
 from derive.devices.elements import SmallSignal  # noqa: E402
 from derive.devices.linearise import linearise  # noqa: E402
@@ -105,29 +106,24 @@ def main() -> int:
 
 
 def four_questions(circuit: SmallSignal, one: float) -> int:
-    """Print a large circuit's four answers; gives how many have no form of one line."""
+    """Print a large circuit's four answers; gives how many are not within the budget."""
     missed = 0
+    whole = Original(circuit, circuit.topology.finds[0])
+    _ = whole.poles, whole.unity_rad_per_s
     for question in FOUR_QUESTIONS:
         begun = time.process_time()
-        found = simplify(circuit, circuit.topology.finds[0], question, Budget())
+        found = simplify(circuit, circuit.topology.finds[0], question, Budget(), whole)
         took = time.process_time() - begun
-        line = next(
-            (
-                f
-                for f in (found, found.beyond)
-                if f is not None and f.form is not None and f.terms <= ONE_LINE
-            ),
-            None,
-        )
-        missed += line is None
+        missed += not found.within
         sys.stdout.write(f"  {question.kind}, {took / one:.0f} solves: ")
-        if line is None or line.form is None or line.price is None or line.price.relative is None:
-            sys.stdout.write(f"no form of one line: {found.reason}\n")
+        if found.form is None or found.price is None or found.price.relative is None:
+            sys.stdout.write(f"no short form: {found.reason}\n")
             continue
-        inside = "within" if line.within else "beyond"
-        sys.stdout.write(
-            f"{line.left} = {to_text(line.form)}, off by {100 * line.price.relative:+.2g} % ({inside} the budget)\n"
-        )
+        inside = "within" if found.within else "beyond"
+        off = f"off by {100 * found.price.relative:+.2g} % ({inside} the budget)"
+        sys.stdout.write(f"{found.left} = {to_text(found.form)}, {off}\n")
+        for name, value in found.definitions:
+            sys.stdout.write(f"    {name} = {to_text(value)}\n")
     return missed
 
 

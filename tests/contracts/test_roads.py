@@ -34,7 +34,7 @@ ROADS = find_roads()
 
 
 # These judge what is said of a result beyond the result itself; each is made to fail in its own tests.
-WORDS = ("readable", "time_constants", "miller", "estimates", "assumptions")
+WORDS = ("readable", "time_constants", "miller", "estimates", "assumptions", "short_forms")
 AMPLIFIER = """
 [sheet]
 title = "Common-emitter stage"
@@ -52,6 +52,8 @@ voltage = "out"
 per = "V_s"
 [[assume]]
 that = "g_m*R_L >> 1"
+[budget]
+simplify = true
 """
 
 

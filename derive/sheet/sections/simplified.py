@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from derive.approximate.questions import CORNER_LIMIT, Simplified
-from derive.expressions.tree import Name
+from derive.expressions.tree import Equation, Name
 from derive.quantities.dimension import RATIO, TIME
+from derive.readable.form import Definition
 from derive.readable.measure import leaves
-from derive.sheet.definitions import used_in, with_words
+from derive.sheet.definitions import with_words
 from derive.sheet.document import (
     Block,
     Column,
@@ -42,12 +45,13 @@ def compose(view: View) -> tuple[Section, ...]:
         "Errors are counted against the whole circuit, signed: (short − whole)/whole."
     )
     blocks: list[Block] = [Paragraph((Text(words),))]
+    shown: set[Definition] = set()
     for answer in found:
-        blocks += _answer(view, answer)
+        blocks += _answer(view, answer, shown)
     return (view.section("Short forms", tuple(blocks)),)
 
 
-def _answer(view: View, found: Simplified) -> list[Block]:
+def _answer(view: View, found: Simplified, shown: set[Definition]) -> list[Block]:
     title = title_of(found.question)
     title = title[:1].upper() + title[1:]
     if found.form is None:
@@ -56,16 +60,16 @@ def _answer(view: View, found: Simplified) -> list[Block]:
         blocks = [
             Paragraph((Text(f"{title}{': nothing may be dropped' if found.status == 'exact' else ''}:"),))
         ]
-        blocks += _form(view, found, "")
+        blocks += _form(view, found, "", shown)
     if found.beyond is not None:
         blocks.append(
             Paragraph((Text("One line that goes beyond the budget, for orientation only:"),), "note")
         )
-        blocks += _form(view, found.beyond, "beyond the budget: ")
+        blocks += _form(view, found.beyond, "beyond the budget: ", shown)
     return blocks
 
 
-def _form(view: View, found: Simplified, mark: str) -> list[Block]:
+def _form(view: View, found: Simplified, mark: str, shown: set[Definition]) -> list[Block]:
     if found.form is None or found.price is None:
         return []
     reason: list[Inline] = [Maths(Name(found.left)), Text(f", {mark}{price_words(found.price)}")]
@@ -77,8 +81,7 @@ def _form(view: View, found: Simplified, mark: str) -> list[Block]:
     blocks: list[Block] = []
     if leaves(found.form) <= 2 * MOST_LEAVES:
         blocks.append(Display(found.form, tuple(reason)))
-        words = with_words(used_in([found.form], found.definitions))
-        blocks += [Paragraph(words)] if words else []
+        blocks += _lines(found, shown)
     else:
         words_of_size = f" is too long to print: {leaves(found.form):,} names and numbers"
         blocks.append(Paragraph((*reason, Text(words_of_size))))
@@ -87,6 +90,36 @@ def _form(view: View, found: Simplified, mark: str) -> list[Block]:
     if found.assumptions:
         blocks.append(_assumptions(found))
     return blocks
+
+
+def _lines(found: Simplified, shown: set[Definition]) -> list[Block]:
+    """Give the lines that the form needs, each with what it is, and what β and its like stand for.
+
+    Given: what was shown with another answer of the sheet, and is only named again.
+    """
+    says = dict(found.says)
+    lines = [entry for entry in found.definitions if entry[0] in says]
+    blocks: list[Block] = [
+        Display(Equation(Name(name), value), (Text(says[name]),) if says[name] else ())
+        for name, value in lines
+        if (name, value) not in shown
+    ]
+    again = [Name(name) for name, value in lines if (name, value) in shown]
+    if again:
+        blocks.append(Paragraph((*_listed(again), Text(" as above."))))
+    shown.update(lines)
+    words = with_words([entry for entry in found.definitions if entry not in lines])
+    if words and not (again and len(again) == len(lines)):
+        blocks.append(Paragraph(words))
+    return blocks
+
+
+def _listed(names: Sequence[Name]) -> Line:
+    """Write names in a row: R_I, R_II and R_III."""
+    line: list[Inline] = []
+    for place, name in enumerate(names):
+        line += [Text("" if not place else " and " if place == len(names) - 1 else ", "), Maths(name)]
+    return tuple(line)
 
 
 def _assumptions(found: Simplified) -> Folded:

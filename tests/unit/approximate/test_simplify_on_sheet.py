@@ -69,6 +69,11 @@ def test_the_budget_asks_for_short_forms_and_the_ledger_holds_them():
 def test_the_exact_result_is_the_same_with_and_without_short_forms():
     one, other = (results_of(text).ledger()["results"][0] for text in (STAGE, STAGE + BUDGET))
     other.pop("simplified")
+    # The road that judges the short forms is the one that differs.
+    for entry in (one, other):
+        judged = [check for check in entry["checks"] if check["name"] == "short forms"]
+        assert [check["passed"] for check in judged] == [None if entry is one else True]
+        entry["checks"] = [check for check in entry["checks"] if check not in judged]
     assert one == other
 
 
