@@ -16,6 +16,7 @@ from derive.errors import InputError
 from derive.pipeline import Results, derive
 from derive.reading.read import read
 from derive.render.files import prepare, write_sheet
+from derive.render.look import OURS, Look
 from derive.render.maths import SheetMaths
 from derive.sheet.compose import compose
 from derive.topology.topology import Topology
@@ -33,13 +34,19 @@ class Made:
 
 
 def make_sheets(
-    files: Sequence[str], folder: Path, kinds: Sequence[str], tell: Tell, *, simplify: bool = False
+    files: Sequence[str],
+    folder: Path,
+    kinds: Sequence[str],
+    tell: Tell,
+    *,
+    simplify: bool = False,
+    look: Look = OURS,
 ) -> tuple[Made, ...]:
     """Derive, check and write the sheet of each topology file.
 
     Given: `tell`, which is told the sheet's name and each stage that begins; whether short forms are wanted
-    of those too that do not ask for them.
-    Raises: InputError before anything is written; OutputError.
+    of those too that do not ask for them; the user's own `look`.
+    Raises: InputError before anything is written, but for templates that go wrong on a sheet; OutputError.
     """
     names = sheet_names(files)
     topologies = [with_short_forms(read(file)) if simplify else read(file) for file in files]
@@ -50,7 +57,9 @@ def make_sheets(
     made = []
     for name, results, maths in worked:
         sheet = compose(results.outcome, name)
-        written = write_sheet(sheet, folder, name, kinds, maths=maths, progress=partial(tell, name))
+        written = write_sheet(
+            sheet, folder, name, kinds, maths=maths, look=look, progress=partial(tell, name)
+        )
         made.append(Made(name, results, written))
     return tuple(made)
 

@@ -90,6 +90,7 @@ def _parser() -> argparse.ArgumentParser:
     )
     sheet.add_argument("--only", default=",".join(KINDS), metavar="KINDS", help="of html,pdf,json")
     sheet.add_argument("--simplify", action="store_true", help=SHORT_FORMS)
+    sheet.add_argument("--templates", metavar="DIR", help="your own logo, style and templates")
     sheet.add_argument("--quiet", action="store_true", help="no progress on standard error")
     sheet.set_defaults(run=_sheet)
     show = commands.add_parser("show", help="print a topology's results in the terminal")
@@ -102,6 +103,8 @@ def _parser() -> argparse.ArgumentParser:
     show.add_argument("--quiet", action="store_true", help="no progress on standard error")
     show.set_defaults(run=_show)
     _add_compare(commands)
+    _add_review(commands)
+    _add_at_the_desk(commands)
     return parser
 
 
@@ -117,15 +120,47 @@ def _add_compare(commands: argparse._SubParsersAction[argparse.ArgumentParser]) 
     compare.set_defaults(run=_compare)
 
 
+def _add_review(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    recheck = commands.add_parser("recheck", help="derive an issued sheet anew from what it carries")
+    recheck.add_argument("file", metavar="SHEET", help="issued sheet: .pdf, .html or .json")
+    recheck.add_argument("--templates", metavar="DIR", help="the folder that it was issued with")
+    recheck.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    recheck.set_defaults(run=_recheck)
+    redline = commands.add_parser("redline", help="say what changed between two revisions")
+    redline.add_argument("old", metavar="OLD", help="topology file or issued sheet")
+    redline.add_argument("new", metavar="NEW", help="topology file or issued sheet")
+    redline.add_argument("--out", metavar="DIR", help="folder to write the redline's sheet to")
+    redline.add_argument("--only", metavar="KINDS", help="of html,pdf,json")
+    redline.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    redline.set_defaults(run=_redline)
+
+
+def _add_at_the_desk(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    start = commands.add_parser("start", help="write a commented topology file to begin from")
+    start.add_argument("name", metavar="NAME", help="name of the stage; NAME.toml is written")
+    start.add_argument("--like", metavar="CASE", help="begin from a case instead of a small amplifier")
+    start.set_defaults(run=_start)
+    watch = commands.add_parser("watch", help="show a topology's sheet in the browser, anew on each save")
+    watch.add_argument("file", metavar="FILE", help="topology file")
+    watch.add_argument(
+        "--port", type=int, default=8642, help="port on 127.0.0.1 (default 8642; 0: any that is free)"
+    )
+    watch.set_defaults(run=_watch)
+
+
 def _sheet(options: argparse.Namespace) -> int:
     # Imported here so that `show` does not pay for typesetting.
     from derive.batch import make_sheets
     from derive.progress import Progress
+    from derive.render.look import look_of
 
     kinds = _kinds(options.only)
+    look = look_of(options.templates)
     with Progress(len(options.files), 2 + len(kinds), quiet=options.quiet) as progress:
         made = make_sheets(
-            options.files, Path(options.out), kinds, progress.tell, simplify=options.simplify
+            *(options.files, Path(options.out), kinds, progress.tell),
+            simplify=options.simplify,
+            look=look,
         )
     _summary(made)
     return WELL if all(sheet.results.passed for sheet in made) else FAILED
@@ -165,20 +200,79 @@ def _compare(options: argparse.Namespace) -> int:
     from derive.compare.plain import plain_comparison
     from derive.progress import Progress
 
+    folder, kinds = _folder_and_kinds(options)
+    with Progress(len(options.files), 4, quiet=options.quiet) as progress:
+        comparison, written = make_comparison(options.files, options.find, folder, kinds, progress.tell)
+    sys.stdout.write(plain_comparison(comparison, _width()))
+    _tell_written(written)
+    return WELL if comparison.passed else FAILED
+
+
+def _recheck(options: argparse.Namespace) -> int:
+    from derive.progress import Progress
+    from derive.render.look import look_of
+    from derive.review.open import open_sheet
+    from derive.review.recheck import recheck
+    from derive.review.report import plain_recheck
+
+    look = look_of(options.templates)
+    issued = open_sheet(options.file)
+    stages = 5 + len(issued.ledger.get("results", ()))
+    with Progress(1, stages, quiet=options.quiet) as progress:
+        found = recheck(issued, partial(progress.tell, Path(options.file).name), look)
+    sys.stdout.write(plain_recheck(found))
+    return WELL if found.holds else FAILED
+
+
+def _redline(options: argparse.Namespace) -> int:
+    from derive.progress import Progress
+    from derive.review.redline.make import make_redline
+    from derive.review.redline.plain import plain_redline
+
+    folder, kinds = _folder_and_kinds(options)
+    with Progress(2, 4, quiet=options.quiet) as progress:
+        found, written = make_redline(options.old, options.new, folder, kinds, progress.tell)
+    sys.stdout.write(plain_redline(found, _width()))
+    _tell_written(written)
+    return WELL
+
+
+def _start(options: argparse.Namespace) -> int:
+    from derive.start.start import start
+
+    path = start(options.name, options.like)
+    print(f"{path} is written; next: nodeledger sheet {path}")
+    return WELL
+
+
+def _watch(options: argparse.Namespace) -> int:
+    from derive.watch.watch import watch
+
+    def say(words: str) -> None:
+        print(words, flush=True)
+
+    watch(options.file, options.port, say)
+    return WELL
+
+
+def _folder_and_kinds(options: argparse.Namespace) -> tuple[Path | None, tuple[str, ...]]:
+    """Give where a sheet is wanted and of which kinds; None and none where no folder is named."""
     if options.only is not None and options.out is None:
         raise InputError(
             "--only says which files to write, and none are written", cure="name a folder with --out"
         )
-    only = ",".join(KINDS) if options.only is None else options.only
-    kinds = () if options.out is None else _kinds(only)
-    folder = None if options.out is None else Path(options.out)
-    with Progress(len(options.files), 4, quiet=options.quiet) as progress:
-        comparison, written = make_comparison(options.files, options.find, folder, kinds, progress.tell)
-    width = shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
-    sys.stdout.write(plain_comparison(comparison, width))
+    if options.out is None:
+        return None, ()
+    return Path(options.out), _kinds(",".join(KINDS) if options.only is None else options.only)
+
+
+def _width() -> int:
+    return shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
+
+
+def _tell_written(written: Sequence[Path]) -> None:
     if written:
         sys.stdout.write(f"\n{', '.join(str(path) for path in written)}\n")
-    return WELL if comparison.passed else FAILED
 
 
 def _kinds(text: str) -> tuple[str, ...]:

@@ -11,12 +11,12 @@ from derive.check.verdict import Outcome, Solution
 from derive.compare.at_mid_band import bandwidth_of, level_at, mid_frequency, response_of
 from derive.compare.choose import choose, dimension_of
 from derive.compare.comparison import Comparison, Level, Stage
-from derive.compare.curves import curve_of, range_of
 from derive.compare.ports import input_impedance, output_impedance
 from derive.normalise.band_edges import response_in
 from derive.normalise.exact_response import ExactResponse
 from derive.pipeline import derive
 from derive.quantities.dimension import RATIO
+from derive.response.curves import curve_of, range_of
 from derive.topology.topology import BandName, Find, Topology
 
 # The band that stands for the mid band, and those that know the edges: the first that a stage has.

@@ -7,6 +7,7 @@ from fractions import Fraction
 
 from derive.check.verdict import Outcome, Result, Solution
 from derive.quantities.dimension import Dimension
+from derive.response.traces import Point
 from derive.topology.topology import BandName, Find, Topology
 
 
@@ -44,15 +45,6 @@ class PastSource:
 
     resistor: str
     level: Level
-
-
-@dataclass(frozen=True, slots=True)
-class Point:
-    """One point of a frequency response."""
-
-    hertz: float
-    decibels: float
-    degrees: float
 
 
 @dataclass(frozen=True, slots=True)

@@ -8,25 +8,24 @@ from pathlib import PurePath
 from derive.reading.assumptions import read_assumptions, read_budget
 from derive.reading.circuit import check_circuit
 from derive.reading.document import Document, load
+from derive.reading.drawing import read_drawing
 from derive.reading.drives import read_drives, read_node_words
-from derive.reading.fields import known_keys, not_yet
+from derive.reading.fields import known_keys
 from derive.reading.files import check_text, read_text
 from derive.reading.finds import read_finds
 from derive.reading.merges import read_merges
 from derive.reading.models import check_models_used, read_models
 from derive.reading.parts import read_parts
 from derive.reading.roles import read_bands
+from derive.reading.sign_off import read_reviews, read_revisions
 from derive.reading.supplies import read_supplies, read_temperature
-from derive.reading.title_block import read_form, read_title_block
+from derive.reading.title_block import read_form, read_plots, read_title_block
 from derive.topology.topology import Topology
 
 _TABLES = (
     *("bands", "sheet", "nodes", "supplies", "drives", "parts", "models", "conditions", "merge"),
-    *("find", "assume", "budget"),
+    *("find", "assume", "budget", "revision", "review", "drawing"),
 )
-_LATER = {
-    "drawing": "take the table out",
-}
 
 
 def read(path: str | os.PathLike[str]) -> Topology:
@@ -66,13 +65,14 @@ def parse(text: str, file: str) -> Topology:
         assumptions=read_assumptions(document, [find.name for find in finds]),
         budget=read_budget(document),
         form=read_form(document),
+        revisions=read_revisions(document, title_block),
+        reviews=read_reviews(document),
+        plots=read_plots(document),
+        drawing=read_drawing(document, parts, drives),
     )
     check_circuit(topology, document)
     return topology
 
 
 def _check_tables(document: Document) -> None:
-    for name, cure in _LATER.items():
-        if name in document.data:
-            raise not_yet(document, f"{name} is", name, cure=cure)
     known_keys(document, document.data, _TABLES, "the file")

@@ -5,9 +5,10 @@ from __future__ import annotations
 import datetime
 from typing import Any
 
+from derive.quantities.words import did_you_mean, listed, quoted
 from derive.reading.document import Document
-from derive.reading.fields import known_keys, not_yet, table, text
-from derive.topology.topology import SheetForm, TitleBlock
+from derive.reading.fields import described, known_keys, not_yet, table, text
+from derive.topology.topology import PLOTS, PlotKind, SheetForm, TitleBlock
 
 _KEYS = (
     "title",
@@ -20,6 +21,8 @@ _KEYS = (
     "project",
     "notes",
 )
+_OTHER_KEYS = ("form", "plots")
+_PLOTS: tuple[PlotKind, ...] = ("response", "poles", "step", "delay")
 _FORMS: tuple[SheetForm, ...] = ("nested", "expanded")
 _LONGEST_NOTES = 4000
 _TITLE_CURE = 'write [sheet] with title = "..." at the top'
@@ -35,10 +38,10 @@ def read_title_block(document: Document) -> TitleBlock:
     sheet = table(document, document.data["sheet"], "sheet", "sheet", cure=_TITLE_CURE)
     if "hand" in sheet:
         raise not_yet(document, "sheet: the key hand is", "sheet", "hand", cure="take the line out")
-    known_keys(document, sheet, (*_KEYS, "form"), "sheet", "sheet")
+    known_keys(document, sheet, (*_KEYS, *_OTHER_KEYS), "sheet", "sheet")
     if "title" not in sheet:
         raise document.error("sheet: the title is missing", "sheet", cure='write title = "..."')
-    entries = {key: _entry(document, raw, key) for key, raw in sheet.items() if key != "form"}
+    entries = {key: _entry(document, raw, key) for key, raw in sheet.items() if key in _KEYS}
     if not entries["title"].strip():
         raise document.error("sheet: the title is empty", "sheet", "title", cure="say what the stage is")
     return TitleBlock(**entries)
@@ -62,6 +65,32 @@ def read_form(document: Document) -> SheetForm:
         "form",
         cure='write form = "nested" or form = "expanded", or leave it out',
     )
+
+
+def read_plots(document: Document) -> tuple[PlotKind, ...]:
+    """Give what the sheet is to plot, in the sheet's own order.
+
+    Raises: InputError for a plot that there is not.
+    """
+    raw = document.data.get("sheet", {}).get("plots", list(PLOTS))
+    if not isinstance(raw, list):
+        raise document.error(
+            f"sheet: plots wants a list, not {described(raw)}",
+            "sheet",
+            "plots",
+            cure='write plots = ["response", "step"], or plots = [] for none',
+        )
+    for place, name in enumerate(raw):
+        written = text(document, name, "sheet: plots", "sheet", "plots", place)
+        if written not in _PLOTS:
+            raise document.error(
+                f"sheet: there is no plot {quoted(written)}",
+                "sheet",
+                "plots",
+                place,
+                cure=did_you_mean(written, _PLOTS, f"there is {listed(_PLOTS)}"),
+            )
+    return tuple(kind for kind in _PLOTS if kind in raw)
 
 
 def _entry(document: Document, raw: Any, key: str) -> str:

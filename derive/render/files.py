@@ -7,6 +7,7 @@ from pathlib import Path
 
 from derive.errors import OutputError
 from derive.render.html import to_html
+from derive.render.look import OURS, Look
 from derive.render.maths import SheetMaths
 from derive.render.write import write_all
 from derive.sheet.document import Sheet
@@ -36,12 +37,14 @@ def write_sheet(
     kinds: Sequence[str] = KINDS,
     *,
     maths: SheetMaths | None = None,
+    look: Look = OURS,
     progress: Callable[[str], None] = lambda stage: None,
 ) -> tuple[Path, ...]:
     """Write NAME.html, NAME.pdf and NAME.json, or those asked for, into a folder.
 
-    Given: the `maths` prepared for this sheet, where they were.
-    Raises: OutputError; where only the PDF cannot be made, the other files are written first.
+    Given: the `maths` prepared for this sheet, where they were; the user's own `look`.
+    Raises: InputError where a template of the user's goes wrong; OutputError;
+    where only the PDF cannot be made, the other files are written first.
     """
     if {"html", "pdf"} & set(kinds) and (maths is None or not maths.covers(sheet)):
         maths = SheetMaths(sheet)
@@ -49,13 +52,13 @@ def write_sheet(
     failure: OutputError | None = None
     if "html" in kinds:
         progress("writing HTML")
-        made[folder / f"{name}.html"] = to_html(sheet, maths)
+        made[folder / f"{name}.html"] = to_html(sheet, maths, look)
     if "pdf" in kinds:
         progress("writing PDF")
         from derive.render.pdf import to_pdf
 
         try:
-            made[folder / f"{name}.pdf"] = to_pdf(sheet, maths)
+            made[folder / f"{name}.pdf"] = to_pdf(sheet, maths, look)
         except OutputError as error:
             failure = error
     if "json" in kinds:

@@ -17,13 +17,13 @@ class HiddenText:
     def __init__(self) -> None:
         self._codes: dict[str, int] = {}
 
-    def operators(self, text: str, width: float, height: float) -> bytes:
-        """Return the operators that lay the text across a box, y downwards, without ink."""
+    def operators(self, text: str, width: float, height: float, top: float = 0.0) -> bytes:
+        """Return the operators that lay the text across a box that begins at `top`, y downwards, without ink."""
         codes = bytes(self._code(letter) for letter in text)
         size = max(1.0, min(height, 10.0))
         natural = len(codes) * size * _ADVANCE / 1000
         stretch = 100 * width / natural if natural else 100
-        below = height / 2 + size / 3
+        below = top + height / 2 + size / 3
         return (
             f"BT 3 Tr /{FONT} {size:.2f} Tf {stretch:.2f} Tz "
             f"1 0 0 -1 0 {below:.2f} Tm <{codes.hex()}> Tj 0 Tr 100 Tz ET"

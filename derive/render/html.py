@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import base64
+import hashlib
 import json
 import re
 from xml.etree import ElementTree
@@ -10,24 +11,28 @@ from xml.etree import ElementTree
 from markupsafe import Markup
 
 from derive.render import templates
+from derive.render.look import OURS, Look
 from derive.render.maths import Piece, SheetMaths
-from derive.render.page import compose, digest, digest_of
+from derive.render.page import compose
+from derive.render.title_block import digest, digest_of
 from derive.render.typesetter import Formula
 from derive.sheet.document import Sheet
 
+PRINTED = ("maths.css", "print.css", "print.browser.css")
 _FONT_MARK = re.compile(r'url\("fonts/([\w.-]+)"\)')
 # What makes a pair of parentheses grow; round anything else they keep the size of the letters.
 _TALL = frozenset({"mfrac", "mtable", "msqrt", "munderover"})
 _FENCES = frozenset("()[]")
 
 
-def to_html(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
+def to_html(sheet: Sheet, maths: SheetMaths | None = None, look: Look = OURS) -> bytes:
     """Return the sheet as one self-contained HTML file.
 
-    Given: the sheet's `maths`, where it has been set already.
-    Raises: OutputError if the maths cannot be typeset.
+    Given: the sheet's `maths`, where it has been set already; the user's own `look`.
+    Raises: OutputError if the maths cannot be typeset; InputError where a user's template goes wrong.
     """
     maths = maths or SheetMaths(sheet)
+    script = Markup(templates.read_text("sheet.js"))
     formulas = maths.formulas()
     elements = dict(zip(formulas, map(tidy, maths.marked_up), strict=True))
     page = compose(
@@ -35,8 +40,13 @@ def to_html(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
         maths,
         lambda piece: _marked_up(piece, elements),
         paper=False,
+        look=look,
         digest=digest(sheet),
-        style=Markup(_style()),
+        fonts=Markup(_fonts()),
+        style=Markup("\n".join(map(templates.read_text, ("maths.css", "style.css")))),
+        print_style=Markup("\n".join(map(templates.read_text, PRINTED))),
+        script=script,
+        policy=_policy(script),
         topology=in_script(json.dumps(_topology(sheet), ensure_ascii=False)),
         ledger=in_script(sheet.ledger_text),
     )
@@ -88,14 +98,31 @@ def _topology(sheet: Sheet) -> dict[str, str] | list[dict[str, str]]:
             {"stage": s.stage, "file": s.file, "sha256": digest_of(s.text), "text": s.text}
             for s in sheet.sources
         ]
-    return {"file": sheet.topology_name, "sha256": digest(sheet), "text": sheet.topology_text}
+    return {
+        "file": sheet.topology_name,
+        "sha256": digest(sheet),
+        # The page may be renamed, and is still to be made anew under its own name.
+        "ledger": sheet.ledger_name,
+        "text": sheet.topology_text,
+    }
 
 
-def _style() -> str:
-    """Return the style sheet with its fonts inside."""
+def _fonts() -> str:
+    """Return the style of the fonts, with the fonts inside."""
 
     def embedded(found: re.Match[str]) -> str:
         data = base64.b64encode((templates.fonts() / found.group(1)).read_bytes())
         return f'url("data:font/woff2;base64,{data.decode("ascii")}")'
 
-    return _FONT_MARK.sub(embedded, templates.read_text("style.css"))
+    return _FONT_MARK.sub(embedded, templates.read_text("fonts.screen.css"))
+
+
+def _policy(script: str) -> str:
+    """Return what the page may do, for browsers to enforce: run its own script, and fetch nothing."""
+    # The template writes the script between two line ends.
+    data = hashlib.sha256(f"\n{script}\n".encode()).digest()
+    allowed = f"'sha256-{base64.b64encode(data).decode('ascii')}'"
+    return (
+        "default-src 'none'; style-src 'unsafe-inline'; font-src data:; img-src data:; "
+        f"script-src {allowed}; base-uri 'none'; form-action 'none'"
+    )

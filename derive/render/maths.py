@@ -10,7 +10,8 @@ from derive.expressions.speech import to_speech
 from derive.expressions.tree import ZERO, Equation, Expression, Name, Negative, Product, Sum
 from derive.expressions.typst_maths import to_typst
 from derive.expressions.unicode_text import to_unicode
-from derive.render.breaking import Breaker, displayed
+from derive.render.breaking import Breaker, Row, displayed
+from derive.render.text_lines import TextLine, spread, whole
 from derive.render.typesetter import Formula, Measurer, Size, draw, mathml
 from derive.render.within_words import run_on, slashed
 from derive.sheet.document import (
@@ -20,6 +21,8 @@ from derive.sheet.document import (
     Maths,
     Matrix,
     Paragraph,
+    Plot,
+    RootMaps,
     Sheet,
     Table,
     Text,
@@ -51,11 +54,11 @@ _Content = Expression | Equation
 
 @dataclass(frozen=True, slots=True)
 class Piece:
-    """One picture of maths: what is drawn, how large it is, and the same as text and as speech."""
+    """One picture of maths: what is drawn, how large it is, and the same as lines of text and as speech."""
 
     formula: Formula
     size: Size
-    text: str
+    lines: tuple[TextLine, ...]
     speech: str
     label: str = ""
 
@@ -80,6 +83,7 @@ class SheetMaths:
         self._measurer = Measurer()
         self._breaker = Breaker(self._measurer)
         self._broken: dict[tuple[_Content, float], list[Formula]] = {}
+        self._rows: dict[tuple[_Content, float], list[list[Row]]] = {}
         inlines, displays = _gather(sheet)
         self._break_all(self._too_wide(inlines, displays))
         self._inline = {key: self._set_inline(*key) for key in inlines}
@@ -139,9 +143,12 @@ class SheetMaths:
         self._breaker.prepare([content for content, _ in jobs])
         for tighter in (1.0, 0.94, 0.88, 0.8, 0.7):
             for content, limit in jobs:
-                rows = [row.source for row in self._breaker.rows(content, limit * tighter)]
+                rows = self._breaker.rows(content, limit * tighter)
                 chunks = [rows[i : i + MOST_LINES] for i in range(0, len(rows), MOST_LINES)]
-                self._broken[content, limit] = [displayed(" \\ ".join(chunk)) for chunk in chunks]
+                self._rows[content, limit] = chunks
+                self._broken[content, limit] = [
+                    displayed(" \\ ".join(row.source for row in chunk)) for chunk in chunks
+                ]
             self._measurer.measure(formula for job in jobs for formula in self._broken[job])
             jobs = [job for job in jobs if any(self._width(f) > job[1] for f in self._broken[job])]
             if not jobs:
@@ -149,46 +156,67 @@ class SheetMaths:
 
     def _set_inline(self, content: _Content, limit: float) -> tuple[Piece, ...]:
         if (content, limit) in self._broken:
-            return self._pieces(self._broken[content, limit], content)
-        whole = Formula(slashed(content), display=False)
-        if self._width(whole) <= min(limit, RUN_ON_EM):
-            return self._pieces([whole], content)
-        return self._pieces(_pieces(content), content)
+            return self._in_rows(content, limit)
+        single = Formula(slashed(content), display=False)
+        if self._width(single) <= min(limit, RUN_ON_EM):
+            return self._pieces([single], content)
+        cut = _pieces(content)
+        rows = [[Row("", self._width(piece), 1.0)] for piece in cut]
+        return self._pieces(cut, content, lines=spread(to_unicode(content), rows))
 
     def _set_display(self, block: Display) -> Shown:
         content = block.content
-        whole = displayed(_whole(content))
-        width, room, most = self._width(whole), _room(block), _most(block)
+        single = displayed(_whole(content))
+        width, room, most = self._width(single), _room(block), _most(block)
         wide = room == most
         if isinstance(content, Matrix):
             if width > most:
                 return Shown(self._matrix_rows(content, most - LABEL_EM), wide=True)
             text = "; ".join(to_unicode(equation) for equation in _row_equations(content))
             speech = "; ".join(to_speech(equation) for equation in _row_equations(content))
-            piece = Piece(whole, self._measurer[whole], text, speech)
+            piece = Piece(single, self._measurer[single], whole(text), speech)
             return Shown((piece,), wide=wide or width > room)
         if width <= room:
-            return Shown(self._pieces([whole], content), wide)
-        narrow = self._pieces(self._broken[content, room], content)
+            return Shown(self._pieces([single], content), wide)
+        narrow = self._in_rows(content, room)
         if wide or _height(narrow) <= TALL_EM:
             return Shown(narrow, wide)
         if width <= most:
-            return Shown(self._pieces([whole], content), wide=True)
-        broad = self._pieces(self._broken[content, most], content)
+            return Shown(self._pieces([single], content), wide=True)
+        broad = self._in_rows(content, most)
         return Shown(broad, wide=True) if _height(broad) < 0.85 * _height(narrow) else Shown(narrow)
 
     def _matrix_rows(self, matrix: Matrix, limit: float) -> tuple[Piece, ...]:
         """Write a matrix that is wider than the page row by row, as the equation of each row."""
         made: list[Piece] = []
         for i, equation in enumerate(_row_equations(matrix), start=1):
-            made += self._pieces(self._broken[equation, limit], equation, f"row {i}:")
+            made += self._in_rows(equation, limit, f"row {i}:")
         return tuple(made)
 
-    def _pieces(self, formulas: list[Formula], content: _Content, label: str = "") -> tuple[Piece, ...]:
+    def _in_rows(self, content: _Content, limit: float, label: str = "") -> tuple[Piece, ...]:
+        """Give the pictures of a formula that was broken to a width."""
+        lines = spread(to_unicode(content), self._rows[content, limit])
+        return self._pieces(self._broken[content, limit], content, label, lines)
+
+    def _pieces(
+        self,
+        formulas: list[Formula],
+        content: _Content,
+        label: str = "",
+        lines: list[tuple[TextLine, ...]] | None = None,
+    ) -> tuple[Piece, ...]:
         # The first piece speaks for the whole: half a formula is not worth hearing.
-        text, speech = to_unicode(content), to_speech(content)
-        first = Piece(formulas[0], self._measurer[formulas[0]], text, speech, label)
-        return (first, *(Piece(f, self._measurer[f], "", "") for f in formulas[1:]))
+        lines = lines or [whole(to_unicode(content)), *(() for _ in formulas[1:])]
+        return tuple(
+            Piece(
+                formula,
+                self._measurer[formula],
+                lines[place],
+                "" if place else to_speech(content),
+                "" if place else label,
+            )
+            for place, formula in enumerate(formulas)
+        )
 
     def _width(self, formula: Formula) -> float:
         return self._measurer[formula].width
@@ -242,6 +270,8 @@ def _lines(block: object) -> Iterator[tuple[Line, float]]:
             yield line, PARAGRAPH_EM
         case Display():
             yield block.reason, REASON_EM
+        case Plot() | RootMaps():
+            yield marked(block.caption), PARAGRAPH_EM
         case Table():
             limit = cell_em(block)
             yield marked(block.caption), PARAGRAPH_EM

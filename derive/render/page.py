@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 import base64
-import hashlib
 import re
 from collections.abc import Callable
-from dataclasses import dataclass
 
 from markupsafe import Markup, escape
 
 from derive.expressions.tree import Equation, Expression
-from derive.render import templates
+from derive.expressions.unicode_text import to_unicode
+from derive.render.circuit import circuit_svg, share_of_page
+from derive.render.groups import SHORT_TABLE, Heading, groups
+from derive.render.look import OURS, Look
 from derive.render.maths import (
     PARAGRAPH_EM,
     REASON_EM,
@@ -20,18 +21,22 @@ from derive.render.maths import (
     cell_em,
 )
 from derive.render.plot import plot_svg
+from derive.render.root_map import root_maps_svg
+from derive.render.title_block import title_rows
 from derive.sheet.document import (
     Block,
+    Circuit,
     Display,
-    Field,
     Folded,
+    Inline,
     Line,
     Mark,
     Maths,
     Paragraph,
     Plot,
     Reference,
-    Section,
+    Revised,
+    RootMaps,
     Sheet,
     SourceText,
     Table,
@@ -43,56 +48,26 @@ from derive.sheet.wording import marked
 _UNPRINTABLE = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f\ud800-\udfff\ufffe\uffff]")
 _SIGNS = {True: "✓", False: "✗", None: "–"}
 _TONES = {True: "pass", False: "fail", None: "open"}
+_ELEMENTS = {"added": "ins", "removed": "del", "changed": "span"}
 _KINDS: dict[type, str] = {
     Paragraph: "paragraph",
     Display: "display",
     Table: "table",
     SourceText: "source",
     Plot: "plot",
+    RootMaps: "plot",
+    Circuit: "circuit",
     Folded: "folded",
 }
-_LONG_FIELD = 40  # letters: a longer entry of the title block takes a row of its own
-_SHORT_TABLE = 8  # rows: a longer one may begin at the foot of a page and go on
 _FEW_COLUMNS = 2  # spread over the whole page, the eye would lose the row
 # Cells of more letters than this want the whole width, however few the columns.
 _SENTENCE = 60
 _MANY_COLUMNS = 8
+MAIN = 2  # the level of the headings that the contents list
+FEWEST_LISTED = 6  # of fewer sections there is no table of contents
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
 
 Setter = Callable[[Piece], Markup]
-
-
-@dataclass(frozen=True, slots=True)
-class Cell:
-    """A cell of the title block; `span` counts twelfths of its width.
-
-    `digest` is that of the topology which the cell names, where the sheet has several.
-    """
-
-    label: str
-    text: str
-    span: int
-    kind: str = ""
-    digest: str = ""
-
-
-@dataclass(frozen=True, slots=True)
-class Heading:
-    """A section's title with its number."""
-
-    number: str
-    title: str
-    level: int
-    about: Maths | None = None
-
-
-@dataclass(frozen=True, slots=True)
-class Group:
-    """Headings, the blocks that must not be parted from them, and the blocks that follow."""
-
-    headings: tuple[Heading, ...]
-    kept: tuple[Block, ...]
-    rest: tuple[Block, ...]
 
 
 class Page:
@@ -122,8 +97,13 @@ class Page:
         line: Line = (Text(heading.title),)
         return self.words((*line, Text(" "), heading.about) if heading.about else line, PARAGRAPH_EM)
 
-    def caption(self, block: Table) -> Markup:
-        """Return the caption of a table, names such as A_v in it set as maths."""
+    def plain_title(self, heading: Heading) -> str:
+        """Return the words of a heading with its number, for the head of the pages."""
+        about = f" {to_unicode(heading.about.content)}" if heading.about else ""
+        return f"{heading.number}  {heading.title}{about}"
+
+    def caption(self, block: Table | Plot | RootMaps) -> Markup:
+        """Return the caption of a table or a figure, names such as A_v in it set as maths."""
         return self.words(marked(block.caption), PARAGRAPH_EM)
 
     def cell(self, line: Line, limit: float) -> Markup:
@@ -156,9 +136,9 @@ class Page:
         self._figures += 1
         return self._figures
 
-    def plot(self, block: Plot, number: int, paper: bool) -> Markup:
+    def plot(self, block: Plot | RootMaps, number: int, paper: bool) -> Markup:
         """Return a plot: on the page itself for a screen, as an image for paper."""
-        svg = plot_svg(block, number)
+        svg = plot_svg(block, number) if isinstance(block, Plot) else root_maps_svg(block, number)
         if not paper:
             return svg
         # Inline drawings flood the writer's log; an image is tagged with its words.
@@ -166,6 +146,41 @@ class Page:
         return Markup('<img class="plot" src="data:image/svg+xml;base64,{}" alt="{}">').format(
             data, f"{block.caption}. {block.words}"
         )
+
+    def circuit(self, block: Circuit, number: int, paper: bool) -> Markup:
+        """Return a drawing of a circuit: on the page itself for a screen, as an image for paper."""
+        svg = circuit_svg(block.drawing, block.words, number, block.caption)
+        if not paper:
+            return svg
+        data = base64.b64encode(printable(svg).encode("utf-8")).decode("ascii")
+        return Markup(
+            '<img class="circuit" style="width:{:.2f}%" src="data:image/svg+xml;base64,{}" alt="{}">'
+        ).format(share_of_page(block.drawing), data, f"{block.caption}. {block.words}")
+
+    def is_narrow(self, block: Plot | RootMaps) -> bool:
+        """Say whether a plot takes half the page's width, so that another may stand beside it."""
+        return block.narrow if isinstance(block, Plot) else len(block.maps) == 1
+
+    def field(self, label: str) -> str:
+        """Return an entry of the title block by its label; "" where there is none."""
+        return next((field.text for field in self.sheet.fields if field.label == label), "")
+
+    def author(self) -> str:
+        """Return who prepared the sheet, for the file's own description."""
+        return self.field("Prepared")
+
+    def subject(self) -> str:
+        """Return what the file is, for its own description."""
+        return ", ".join(filter(None, (f"Derivation of {self.sheet.title}", self.designation())))
+
+    def designation(self) -> str:
+        """Return number and revision: "RG-310-04, revision B"."""
+        number, revision = self.field("Number"), self.field("Revision")
+        return ", ".join(filter(None, (number, revision and f"revision {revision}")))
+
+    def running(self) -> str:
+        """Return what stands at the head of every page of paper."""
+        return " – ".join(filter(None, (self.designation(), self.sheet.title)))
 
     def anchor(self, anchor: str) -> str:
         """Return the identifier in the page for an anchor of the sheet."""
@@ -177,11 +192,11 @@ class Page:
 
     def leads_to(self, block: Block | None) -> bool:
         """Say whether words before a block belong to it, and are not to be parted from it by a page's end."""
-        return isinstance(block, Display | Table | Plot)
+        return isinstance(block, Display | Table | Plot | RootMaps | Circuit)
 
     def is_short(self, block: Table) -> bool:
         """Say whether a table is short enough to be kept on one page."""
-        return len(block.rows) <= _SHORT_TABLE
+        return len(block.rows) <= SHORT_TABLE
 
     def breadth(self, block: Table) -> str:
         """Return the class of a table that has fewer or more columns than the page's width suits."""
@@ -195,7 +210,7 @@ class Page:
         words = (word for item in line if isinstance(item, Text) for word in item.text.split())
         return any(len(word) > _LONG_WORD for word in words)
 
-    def _inline(self, item: Text | Maths | Reference | Mark, limit: float) -> Markup:
+    def _inline(self, item: Inline, limit: float) -> Markup:
         match item:
             case Text(text):
                 return escape(text)
@@ -208,6 +223,11 @@ class Page:
                 mark = Markup('<span class="mark {}">{}\N{NO-BREAK SPACE}{}</span>')
                 return mark.format(_TONES[passed], _SIGNS[passed], text or _TONES[passed])
 
+            case Revised(sign, text):
+                # The element says to a reader's ear what the colour says to the eye.
+                words = Markup('<{0} class="revised {1}">{2}</{0}>')
+                return words.format(_ELEMENTS[sign], sign, text)
+
     def _run(self, content: Expression | Equation, limit: float) -> Markup:
         return Markup(" ").join(self._set(p) for p in self._maths.inline(content, limit))
 
@@ -218,18 +238,23 @@ def _has_sentences(table: Table) -> bool:
     return any(isinstance(part, Text) and len(part.text) > _SENTENCE for line in lines for part in line)
 
 
-def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) -> str:
+def compose(
+    sheet: Sheet, maths: SheetMaths, set_piece: Setter, *, look: Look = OURS, **more: object
+) -> str:
     """Return the whole page as HTML text.
 
     Given: `set_piece`, which marks up one piece of maths, and more values for the template, of which
     `paper` says whether the page is to be printed as a PDF.
+    Raises: InputError where a template of the user's own folder goes wrong.
     """
-    template = templates.environment().get_template("sheet.html.j2")
-    page = template.render(
+    made = groups(sheet.sections)
+    mains = tuple(h for group in made for h in group.headings if h.level == MAIN)
+    page = look.page(
         page=Page(sheet, maths, set_piece),
         sheet=sheet,
         rows=title_rows(sheet),
-        groups=groups(sheet.sections),
+        groups=made,
+        contents=mains if len(mains) >= FEWEST_LISTED else (),
         **more,
     )
     return printable(page)
@@ -238,96 +263,3 @@ def compose(sheet: Sheet, maths: SheetMaths, set_piece: Setter, **more: object) 
 def printable(text: str) -> str:
     """Return the text with a sign in place of what no page may hold."""
     return _UNPRINTABLE.sub("\N{REPLACEMENT CHARACTER}", text)
-
-
-def digest(sheet: Sheet) -> str:
-    """Return the SHA-256 of the topology that the sheet carries, as 64 hexadecimal digits."""
-    return digest_of(sheet.topology_text)
-
-
-def digest_of(text: str) -> str:
-    """Return the SHA-256 of a text as 64 hexadecimal digits."""
-    return hashlib.sha256(text.encode("utf-8", errors="replace")).hexdigest()
-
-
-def title_rows(sheet: Sheet) -> list[list[Cell]]:
-    """Return the cells of the title block, row by row, each row twelve twelfths wide."""
-    fields = list(sheet.fields)
-    number = next((f for f in fields if f.label.casefold() in ("number", "document")), None)
-    first = [Cell("Title", sheet.title, 9 if number else 12, "title")]
-    if number:
-        fields.remove(number)
-        first.append(Cell(number.label, number.text, 3, "docno"))
-    short = [f for f in fields if len(f.text) <= _LONG_FIELD and "\n" not in f.text]
-    entries = [(field, "") for field in short]
-    if sheet.passed:
-        entries.append((Field("Status", "✓ all checks passed"), "status pass"))
-    else:
-        entries.append((Field("Status", f"✗ {_failed(sheet)}"), "status fail"))
-    last = [[Cell("Source", sheet.topology_name, 12, "digest")]]
-    if sheet.sources:
-        last = [
-            [Cell(f"Source of {source.stage}", source.file, 12, "digest", digest_of(source.text))]
-            for source in sheet.sources
-        ]
-    long = [[Cell(f.label, f.text, 12, "long")] for f in fields if f not in short]
-    return [first, *_spread(entries), *long, *last]
-
-
-def _failed(sheet: Sheet) -> str:
-    count = len(sheet.failures)
-    return f"{count} checks failed" if count > 1 else "a check failed"
-
-
-def _spread(entries: list[tuple[Field, str]]) -> list[list[Cell]]:
-    """Spread entries evenly over rows of up to four, the fuller rows first."""
-    rows = -(-len(entries) // 4)
-    made = []
-    for row in range(rows):
-        part = entries[-(-row * len(entries) // rows) : -(-(row + 1) * len(entries) // rows)]
-        made.append([Cell(f.label, f.text, 12 // len(part), kind) for f, kind in part])
-    return made
-
-
-def groups(sections: tuple[Section, ...]) -> list[Group]:
-    """Return the sections numbered, each heading kept with what it stands over.
-
-    A section without blocks lends its heading to the next one, so that no heading ends a page.
-    """
-    made: list[Group] = []
-    waiting: list[Heading] = []
-    main = part = 0
-    for section in sections:
-        if section.level == 1:
-            main, part = main + 1, 0
-        else:
-            part += 1
-        number = f"{main}" if section.level == 1 else f"{main}.{part}"
-        waiting.append(Heading(number, section.title, section.level + 1, section.about))
-        if section.blocks:
-            kept = _kept(section.blocks)
-            made.append(Group(tuple(waiting), section.blocks[:kept], section.blocks[kept:]))
-            waiting = []
-    if waiting:
-        made.append(Group(tuple(waiting), (), ()))
-    return made
-
-
-def _kept(blocks: tuple[Block, ...]) -> int:
-    """Count the blocks that stay on one page with the heading over them.
-
-    Words that lead to a formula are kept with it; a long table may begin at the foot of a page.
-    """
-    match blocks:
-        case (Paragraph(), Display(), *_):
-            return 2
-        case (Paragraph(), Table(_, _, rows), *_) if len(rows) <= _SHORT_TABLE:
-            return 2
-        case (Table(_, _, rows), *_) if len(rows) > _SHORT_TABLE:
-            return 0
-        case (SourceText(text), *_) if text.count("\n") > _SHORT_TABLE:
-            return 0
-        case (Folded(), *_):
-            return 0
-        case _:
-            return 1

@@ -14,37 +14,41 @@ from markupsafe import Markup
 
 from derive.errors import OutputError
 from derive.render import templates
+from derive.render.archive import finish
 from derive.render.hidden_text import HiddenText
+from derive.render.look import OURS, Look
 from derive.render.maths import Piece, SheetMaths
 from derive.render.outline import read_page
-from derive.render.page import compose, digest
+from derive.render.page import compose
+from derive.render.title_block import digest
 from derive.sheet.document import Sheet
 
 # The same bytes from the same input: the files inside bear a date that says nothing.
 _NO_DATE = datetime(2000, 1, 1, tzinfo=UTC)
+CONTINUED = "(the formula before, continued)"
 _PACKAGES = (
     "libpango-1.0-0 libpangoft2-1.0-0 libharfbuzz0b libharfbuzz-subset0 libfontconfig1 libglib2.0-0"
 )
 
 
-def to_pdf(sheet: Sheet, maths: SheetMaths | None = None) -> bytes:
-    """Return the sheet as an A4 PDF with topology and ledger attached.
+def to_pdf(sheet: Sheet, maths: SheetMaths | None = None, look: Look = OURS) -> bytes:
+    """Return the sheet as an A4 PDF for the archive, with topology and ledger attached.
 
-    Given: the sheet's `maths`, where it has been set already.
-    Raises: OutputError if the maths cannot be typeset, or a library for PDF is missing.
+    Given: the sheet's `maths`, where it has been set already; the user's own `look`.
+    Raises: OutputError if the maths cannot be typeset, or a library for PDF is missing; InputError where a user's
+    template goes wrong.
     """
     weasyprint = _weasyprint()
     from weasyprint.text.fonts import FontConfiguration
 
     maths = maths or SheetMaths(sheet)
     pictures = Pictures(maths)
-    page = compose(sheet, maths, pictures.markup, paper=True, digest=digest(sheet), style=None)
+    page = compose(sheet, maths, pictures.markup, look=look, paper=True, digest=digest(sheet))
     fetcher = weasyprint.urls.URLFetcher(allowed_protocols=("file", "data"), fail_on_errors=False)
     base = templates.folder().as_uri() + "/"
     fonts = FontConfiguration()
-    style = weasyprint.CSS(
-        string=templates.read_text("print.css"), base_url=base, url_fetcher=fetcher, font_config=fonts
-    )
+    text = "\n".join([*map(templates.read_text, ("fonts.paper.css", "print.css")), look.style])
+    style = weasyprint.CSS(string=text, base_url=base, url_fetcher=fetcher, font_config=fonts)
     document = weasyprint.HTML(string=page, base_url=base, url_fetcher=fetcher).render(
         font_config=fonts,
         stylesheets=[style],
@@ -72,6 +76,7 @@ class Pictures:
         from derive.render.picture import FormulaImage, GlyphForm
 
         self.hidden = HiddenText()
+        self.words: set[str] = set()
         self._addresses = {formula: f"eq:{i}" for i, formula in enumerate(maths.formulas())}
         outlines: dict[str, str] = {}
         drawings = [read_page(page, outlines) for page in maths.drawn]
@@ -87,16 +92,22 @@ class Pictures:
         """Return the image element for one piece, lowered onto the line of the words around it."""
         address = self._addresses[piece.formula]
         image = self.cache[address]
-        image.text = image.text or piece.text
+        image.lines = image.lines or piece.lines
         display = piece.formula.display
         # WeasyPrint asks the image itself for its size; a style would cost more than the drawing.
         place = "" if display else f' style="vertical-align:{-piece.size.depth:.4f}em"'
         return Markup('<img class="{}" src="{}" alt="{}"{}>').format(
             "shown" if display else "inline",
             address,
-            piece.speech or "(continued)",
+            self._spoken(piece),
             Markup(place),
         )
+
+    def _spoken(self, piece: Piece) -> str:
+        """Return a piece's words for those who do not see it, and keep them: by them the tags tell formulas."""
+        words = piece.speech or CONTINUED
+        self.words.add(words)
+        return words
 
 
 def _attachments(weasyprint: Any, sheet: Sheet) -> list[Any]:
@@ -124,11 +135,9 @@ def _attachments(weasyprint: Any, sheet: Sheet) -> list[Any]:
 
 
 def _finish(pdf: Any, pictures: Pictures) -> None:
-    """Add the font of the hidden text, and list each attached file once."""
+    """Add the font of the hidden text, and what an archive asks for."""
     pictures.hidden.finish(pdf)
-    if "AF" in pdf.catalog:
-        once = list(dict.fromkeys(pdf.catalog["AF"]))
-        pdf.catalog["AF"][:] = once
+    finish(pdf, pictures.words)
 
 
 def load() -> None:

@@ -14,6 +14,7 @@ import pydyf
 
 from derive.render.hidden_text import HiddenText
 from derive.render.outline import Drawing
+from derive.render.text_lines import TextLine
 from derive.render.typesetter import POINTS_AN_EM
 
 
@@ -39,7 +40,7 @@ class FormulaImage:
     drawing: Drawing
     forms: dict[str, GlyphForm]
     hidden: HiddenText
-    text: str = ""
+    lines: tuple[TextLine, ...] = ()
 
     def get_intrinsic_size(self, resolution: float, font_size: float) -> tuple[float, float, float]:
         """Return width and height in CSS pixels for this size of text, and their ratio."""
@@ -56,9 +57,10 @@ class FormulaImage:
         with stream.stacked():
             stream.transform(a=width / self.drawing.width, d=height / self.drawing.height)
             stream.stream.append(self._operators(names))
-            if self.text:
-                text = self.hidden.operators(self.text, self.drawing.width, self.drawing.height)
-                stream.stream.append(text)
+            for line in self.lines:
+                box = self.drawing.width * line.width, self.drawing.height * line.height
+                top = self.drawing.height * line.top
+                stream.stream.append(self.hidden.operators(line.text, *box, top))
 
     def _operators(self, names: dict[str, str]) -> bytes:
         """Return all that is drawn, in black, as one run of operators."""

@@ -40,12 +40,26 @@ def read_text(name: str) -> str:
 
 
 @lru_cache(maxsize=1)
-def environment() -> Environment:
-    """Return the template engine, with every value escaped unless it is marked as markup."""
-    from jinja2 import Environment, FileSystemLoader, StrictUndefined
+def names() -> tuple[str, ...]:
+    """Return the names of the page and block templates, such as "blocks/table.html.j2"."""
+    here = folder()
+    return tuple(sorted(path.relative_to(here).as_posix() for path in here.rglob("*.j2")))
 
-    return Environment(
-        loader=FileSystemLoader(folder()),
+
+@lru_cache(maxsize=4)
+def environment(own: Path | None = None) -> Environment:
+    """Return the template engine, with every value escaped unless it is marked as markup.
+
+    Given: a user's own folder, whose templates stand before ours. Those run in a sandbox: they see what they are given,
+    and nothing else of the program or the machine.
+    """
+    from jinja2 import Environment, FileSystemLoader, StrictUndefined
+    from jinja2.sandbox import ImmutableSandboxedEnvironment
+
+    # Ours alone need no sandbox, which asks at every attribute.
+    engine = Environment if own is None else ImmutableSandboxedEnvironment
+    return engine(
+        loader=FileSystemLoader([place for place in (own, folder()) if place is not None]),
         autoescape=True,
         undefined=StrictUndefined,
         trim_blocks=True,

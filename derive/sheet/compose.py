@@ -9,10 +9,14 @@ from typing import Any
 
 from derive.check.verdict import Outcome
 from derive.sheet import sections as folder
+from derive.sheet.appendix import appendix
 from derive.sheet.assumed import failed_assumptions
 from derive.sheet.document import Field, Section, Sheet
 from derive.sheet.ledger import ledger_text
+from derive.sheet.sections.sign_off import newest_mark
 from derive.sheet.view import views
+
+SIGNED = ("Prepared", "Checked", "Approved")
 
 
 @cache
@@ -31,16 +35,17 @@ def section_modules() -> tuple[Any, ...]:
 def compose(outcome: Outcome, name: str, *, with_ledger: bool = True) -> Sheet:
     """Give the sheet as data; `name` is that of its files, without ending."""
     topology = outcome.circuit.topology
+    ledger = ledger_text(outcome) if with_ledger else ""
     return Sheet(
         title=topology.title_block.title,
         fields=_fields(outcome),
         passed=outcome.passed,
         failures=_failures(outcome),
-        sections=_sections(outcome),
+        sections=(*_sections(outcome), appendix(outcome, f"{name}.json", ledger)),
         topology_name=topology.file,
         topology_text=topology.text,
         ledger_name=f"{name}.json",
-        ledger_text=ledger_text(outcome) if with_ledger else "",
+        ledger_text=ledger,
     )
 
 
@@ -67,7 +72,7 @@ def _fields(outcome: Outcome) -> tuple[Field, ...]:
     block = topology.title_block
     entries = (
         ("Number", block.number),
-        ("Revision", block.revision),
+        ("Revision", block.revision or newest_mark(topology)),
         ("Project", block.project),
         ("Prepared", block.prepared),
         ("Checked", block.checked),
@@ -75,7 +80,8 @@ def _fields(outcome: Outcome) -> tuple[Field, ...]:
         ("Date", block.date),
         ("Notes", block.notes),
     )
-    return tuple(Field(label, text) for label, text in entries if text)
+    # Who has signed is of interest even where nobody has.
+    return tuple(Field(label, text) for label, text in entries if text or label in SIGNED)
 
 
 def _failures(outcome: Outcome) -> tuple[str, ...]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal
 
+from derive.drawing.drawing import Drawing
 from derive.expressions.tree import Equation, Expression
 
 
@@ -38,7 +39,15 @@ class Mark:
     text: str
 
 
-Inline = Text | Maths | Reference | Mark
+@dataclass(frozen=True, slots=True)
+class Revised:
+    """Words that a revision added, removed or changed; `sign` says which, besides the colour."""
+
+    sign: Literal["added", "removed", "changed"]
+    text: str
+
+
+Inline = Text | Maths | Reference | Mark | Revised
 Line = tuple[Inline, ...]
 
 
@@ -134,6 +143,14 @@ class Spot:
 
 
 @dataclass(frozen=True, slots=True)
+class Area:
+    """What lies between two curves, (across, low, high) by rising `across`: shaded, and named in the legend."""
+
+    name: str
+    points: tuple[tuple[float, float, float], ...]
+
+
+@dataclass(frozen=True, slots=True)
 class Panel:
     """One field of a plot; `guides` are values at which a line goes across, such as 0 dB."""
 
@@ -141,18 +158,51 @@ class Panel:
     curves: tuple[Curve, ...]
     spots: tuple[Spot, ...] = ()
     guides: tuple[float, ...] = ()
+    areas: tuple[Area, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
 class Plot:
     """A figure of one panel or several, one below the other, that share the axis across.
 
-    `words` say what the picture shows to those who do not see it.
+    `words` say what the picture shows to those who do not see it; a `narrow` one takes half the page's width.
     """
 
     caption: str
     across: Axis
     panels: tuple[Panel, ...]
+    words: str
+    narrow: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class RootMap:
+    """Poles and zeros (real, imaginary, multiplicity) of one response in the plane of s, in rad/s."""
+
+    name: str
+    poles: tuple[tuple[float, float, int], ...]
+    zeros: tuple[tuple[float, float, int], ...]
+    origin: int = 0
+
+
+@dataclass(frozen=True, slots=True)
+class RootMaps:
+    """A figure of the roots of several responses side by side, each map labelled with its name.
+
+    `origin` of a map counts zeros at the origin, poles negative. `words` are as those of a plot.
+    """
+
+    caption: str
+    maps: tuple[RootMap, ...]
+    words: str
+
+
+@dataclass(frozen=True, slots=True)
+class Circuit:
+    """A figure of a circuit; `words` say how it is connected to those who do not see it."""
+
+    caption: str
+    drawing: Drawing
     words: str
 
 
@@ -164,20 +214,21 @@ class Folded:
     blocks: tuple[Paragraph | Display | Table, ...]
 
 
-Block = Paragraph | Display | Table | SourceText | Plot | Folded
+Block = Paragraph | Display | Table | SourceText | Plot | RootMaps | Circuit | Folded
 
 
 @dataclass(frozen=True, slots=True)
 class Section:
     """A headed part of the sheet; `level` 1 is a main section, 2 a part of one.
 
-    `about` is set as maths behind the words of the title.
+    `about` is set as maths behind the words of the title. One that `folds` is shown by a screen when asked to.
     """
 
     title: str
     blocks: tuple[Block, ...]
     level: Literal[1, 2] = 1
     about: Maths | None = None
+    folds: bool = False
 
 
 def unfolded(blocks: tuple[Block, ...]) -> tuple[Block, ...]:

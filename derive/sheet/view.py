@@ -78,9 +78,9 @@ class View:
         """Whether the sheet has no other result."""
         return len(self.outcome.results) == 1
 
-    def section(self, title: str, blocks: tuple[Block, ...]) -> Section:
+    def section(self, title: str, blocks: tuple[Block, ...], *, folds: bool = False) -> Section:
         """Give a section on this result: a main one, or a part of the derivation of one of several."""
-        return Section(title, blocks, 1 if self.alone else 2)
+        return Section(title, blocks, 1 if self.alone else 2, folds=folds)
 
     @property
     def headline(self) -> tuple[Section, ...]:

@@ -8,6 +8,7 @@ from typing import Literal
 
 from derive.expressions.tree import Expression
 from derive.quantities.symbol import Value
+from derive.topology.sign_off import Reviewed, Revision
 
 GROUND = "gnd"
 # What a capacitor or inductor is for; it says in which bands it acts. "" is kept in every band.
@@ -15,6 +16,9 @@ Role = Literal["", "coupling", "bypass", "parasitic"]
 BandName = Literal["low", "mid", "high", "full"]
 # How results are to be derived: "" leaves it to the count of terms.
 SheetForm = Literal["", "nested", "expanded"]
+# What a sheet can plot, and what it plots where the user says nothing.
+PlotKind = Literal["response", "poles", "step", "delay"]
+PLOTS: tuple[PlotKind, ...] = ("response", "poles", "step")
 # 27 °C, common practice for small-signal parameters.
 ROOM_TEMPERATURE = Fraction("300.15")
 
@@ -108,6 +112,21 @@ class Find:
     per: tuple[tuple[str, Fraction], ...] = ()
 
 
+@dataclass(frozen=True, slots=True)
+class DrawingHints:
+    """The [drawing] table: how the circuit is to be drawn, as far as the user cares.
+
+    `order` holds nodes from left to right; `upright` and `level` parts that stand or lie; `mirrored` devices
+    whose control comes from the right.
+    """
+
+    order: tuple[str, ...] = ()
+    upright: tuple[str, ...] = ()
+    level: tuple[str, ...] = ()
+    mirrored: tuple[str, ...] = ()
+    resistors: Literal["zigzag", "rectangle"] = "zigzag"
+
+
 AssumptionForm = Literal["to_inf", "to_zero", "much_greater", "much_less", "equal"]
 
 
@@ -182,3 +201,7 @@ class Topology:
     assumptions: tuple[Assumption, ...] = ()
     budget: Budget = Budget()
     form: SheetForm = ""
+    revisions: tuple[Revision, ...] = ()
+    reviews: tuple[Reviewed, ...] = ()
+    plots: tuple[PlotKind, ...] = PLOTS
+    drawing: DrawingHints = DrawingHints()

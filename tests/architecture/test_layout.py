@@ -31,13 +31,18 @@ STATIONS = (
     "reactances",
     "estimates",
     "approximate",
+    "response",
     "check",
+    "drawing",
     "sheet",
     "render",
     "pipeline",
     "progress",
     "batch",
     "compare",
+    "review",
+    "start",
+    "watch",
     "cli",
 )
 # These two stand in front of the journey and look at all of it.

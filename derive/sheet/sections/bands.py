@@ -6,11 +6,13 @@ from collections.abc import Sequence
 
 from derive.bands.band_circuit import Change
 from derive.check.verdict import Outcome
+from derive.drawing.draw import draw_band
 from derive.expressions.tree import Equation, Name
 from derive.normalise.band_report import BandReport
 from derive.normalise.capacitor_table import CapacitorRow
 from derive.quantities.dimension import FREQUENCY, RESISTANCE
 from derive.quantities.format import engineering
+from derive.sheet.circuits import circuit_block
 from derive.sheet.document import Block, Column, Display, Line, Maths, Paragraph, Section, Table, Text
 from derive.sheet.figures import times
 from derive.sheet.wording import marked
@@ -50,6 +52,8 @@ def _band(report: BandReport) -> Section:
     if renamed:
         words = f"Nodes that became one: {', '.join(renamed)}."
         blocks.append(Paragraph((Text(words),), "note"))
+    drawn = circuit_block(draw_band(band), f"Small-signal circuit of the {band.band} band")
+    blocks.append(drawn)
     if report.capacitors:
         blocks.append(_capacitors(report.capacitors))
     return Section(f"Circuit of the {band.band} band", tuple(blocks))

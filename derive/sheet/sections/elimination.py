@@ -33,7 +33,7 @@ def compose(view: View) -> tuple[Section, ...]:
     if view.result.broken_steps:
         broken = "; ".join(f"({view.wording.label(n)}) {why}" for n, why in view.result.broken_steps)
         blocks.insert(0, Paragraph((Text(f"Steps whose proof failed: {broken}."),), "alarm"))
-    return (view.section("Elimination", tuple(blocks)),)
+    return (view.section("Elimination", tuple(blocks), folds=True),)
 
 
 def _plan(view: View, plan: Plan) -> Table:

@@ -17,8 +17,8 @@ from compared_stages import (
     stage,
 )
 
-from derive.compare.curves import curve_of, range_of
 from derive.normalise.exact_response import ExactResponse
+from derive.response.curves import curve_of, range_of
 
 
 def arrays(found):

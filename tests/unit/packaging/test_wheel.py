@@ -52,7 +52,8 @@ def test_every_file_of_the_package_and_the_templates_is_in_the_wheel(installed):
     package = files_of(ROOT / "derive")
     assert {"py.typed", "expressions/grammar.lark"} <= package
     templates = {f"report_templates/{name}" for name in files_of(ROOT / "report_templates")}
-    assert files_of(installed / "derive") == package | templates
+    cases = {f"cases/{name}" for name in files_of(ROOT / "cases")}
+    assert files_of(installed / "derive") == package | templates | cases
 
 
 def test_nothing_but_the_package_and_its_description_is_in_the_wheel(installed):
@@ -75,3 +76,8 @@ def test_a_sheet_is_made_from_the_wheel_alone(installed, tmp_path):
     assert Path(run(installed, "-c", where, cwd=tmp_path).strip()).is_relative_to(installed)
     run(installed, "-m", "derive", "sheet", str(CASE), "--quiet", cwd=tmp_path)
     assert sorted(path.suffix for path in (tmp_path / "sheets").iterdir()) == [".html", ".json", ".pdf"]
+
+
+def test_a_stage_is_begun_from_a_case_away_from_the_checkout(installed, tmp_path):
+    run(installed, "-m", "derive", "start", "mine", "--like", "line_buffer", cwd=tmp_path)
+    assert "R_iso" in (tmp_path / "mine.toml").read_text(encoding="utf-8")

@@ -10,9 +10,9 @@ import pytest
 
 from derive.expressions.parse import parse_expression
 from derive.expressions.tree import Equation, Name
+from derive.render.groups import groups
 from derive.render.html import to_html
 from derive.render.maths import SheetMaths
-from derive.render.page import groups
 from derive.render.pdf import to_pdf
 from derive.sheet.document import (
     Column,

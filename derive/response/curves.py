@@ -1,4 +1,4 @@
-"""The response of each stage against frequency: exact values of the whole circuit, nothing left out."""
+"""Responses against frequency, each value from the exact polynomials; phases without jumps."""
 
 from __future__ import annotations
 
@@ -7,8 +7,8 @@ import math
 from collections.abc import Sequence
 
 from derive.algebra.roots import roots
-from derive.compare.comparison import Point
 from derive.normalise.exact_response import ExactResponse, ratio_at
+from derive.response.traces import Point
 
 POINTS = 200
 # Around a pair of roots, at these multiples of its half-width: a narrow peak or notch falls between points.

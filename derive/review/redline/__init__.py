@@ -1,0 +1,1 @@
+"""What changed between two revisions of a stage: in its circuit, in what is asked, and in the results."""

@@ -1,0 +1,1 @@
+"""Beginning: a commented topology file to work on."""

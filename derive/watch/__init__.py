@@ -1,0 +1,1 @@
+"""Watching: a topology's sheet in the browser, derived anew on every save."""
