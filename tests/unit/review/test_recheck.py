@@ -47,8 +47,13 @@ def ways(kind, count):
     return [(kind, every[i % len(every)], i) for i in range(count)]
 
 
+def word(value):
+    """Give a name that is the same in every process."""
+    return getattr(value, "__name__", str(value))
+
+
 @pytest.mark.parametrize(
-    ("kind", "way", "seed"), [*ways("json", 15), *ways("html", 18), *ways("pdf", 7)], ids=str
+    ("kind", "way", "seed"), [*ways("json", 15), *ways("html", 18), *ways("pdf", 7)], ids=word
 )
 def test_tampering_is_found_and_named(kind, way, seed, issued, rechecked):
     data, aspects = way(issued[kind], random.Random(seed))
