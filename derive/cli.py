@@ -99,8 +99,18 @@ def _parser() -> argparse.ArgumentParser:
     show.add_argument("--simplify", action="store_true", help=SHORT_FORMS)
     show.add_argument("--quiet", action="store_true", help="no progress on standard error")
     show.set_defaults(run=_show)
+    _add_handcheck(commands)
     _add_compare(commands)
     return parser
+
+
+def _add_handcheck(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    handcheck = commands.add_parser("handcheck", help="check a derivation by hand, line by line")
+    handcheck.add_argument("file", metavar="FILE", help="file of the derivation")
+    handcheck.add_argument("--out", metavar="DIR", help="folder to write a sheet of it to")
+    handcheck.add_argument("--only", metavar="KINDS", help="of html,pdf,json")
+    handcheck.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    handcheck.set_defaults(run=_handcheck)
 
 
 def _add_compare(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
@@ -158,22 +168,52 @@ def _show(options: argparse.Namespace) -> int:
     return WELL if results.passed else FAILED
 
 
+def _handcheck(options: argparse.Namespace) -> int:
+    from derive.hand import check_hand_file, hand_name, write_hand
+    from derive.progress import Progress
+    from derive.sheet.hand.plain import plain_report
+
+    kinds, folder = _where_to(options)
+    name = hand_name(options.file)
+    with Progress(1, 2 + len(kinds), quiet=options.quiet) as progress:
+        tell = partial(progress.tell, name)
+        checked = check_hand_file(options.file, tell)
+        written = () if folder is None else write_hand(checked, name, folder, kinds, tell)
+    sys.stdout.write(plain_report(checked.report, _width(), colour=_may_colour()))
+    if written:
+        sys.stdout.write(f"\n{', '.join(str(path) for path in written)}\n")
+    return WELL if checked.report.passed else FAILED
+
+
+def _width() -> int:
+    return shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
+
+
+def _may_colour() -> bool:
+    plain = os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb"
+    return sys.stdout.isatty() and not plain
+
+
+def _where_to(options: argparse.Namespace) -> tuple[tuple[str, ...], Path | None]:
+    """Give the kinds of files and the folder for them, of a command that writes only where it is told to."""
+    if options.only is not None and options.out is None:
+        raise InputError(
+            "--only says which files to write, and none are written", cure="name a folder with --out"
+        )
+    if options.out is None:
+        return (), None
+    return _kinds(",".join(KINDS) if options.only is None else options.only), Path(options.out)
+
+
 def _compare(options: argparse.Namespace) -> int:
     from derive.compare.make import make_comparison
     from derive.compare.plain import plain_comparison
     from derive.progress import Progress
 
-    if options.only is not None and options.out is None:
-        raise InputError(
-            "--only says which files to write, and none are written", cure="name a folder with --out"
-        )
-    only = ",".join(KINDS) if options.only is None else options.only
-    kinds = () if options.out is None else _kinds(only)
-    folder = None if options.out is None else Path(options.out)
+    kinds, folder = _where_to(options)
     with Progress(len(options.files), 4, quiet=options.quiet) as progress:
         comparison, written = make_comparison(options.files, options.find, folder, kinds, progress.tell)
-    width = shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
-    sys.stdout.write(plain_comparison(comparison, width))
+    sys.stdout.write(plain_comparison(comparison, _width()))
     if written:
         sys.stdout.write(f"\n{', '.join(str(path) for path in written)}\n")
     return WELL if comparison.passed else FAILED

@@ -6,6 +6,7 @@ import os
 from pathlib import PurePath
 
 from derive.reading.assumptions import read_assumptions, read_budget
+from derive.reading.attached import read_hand_file
 from derive.reading.circuit import check_circuit
 from derive.reading.document import Document, load
 from derive.reading.drives import read_drives, read_node_words
@@ -66,6 +67,7 @@ def parse(text: str, file: str) -> Topology:
         assumptions=read_assumptions(document, [find.name for find in finds]),
         budget=read_budget(document),
         form=read_form(document),
+        hand=read_hand_file(document),
     )
     check_circuit(topology, document)
     return topology

@@ -6,7 +6,7 @@ import datetime
 from typing import Any
 
 from derive.reading.document import Document
-from derive.reading.fields import known_keys, not_yet, table, text
+from derive.reading.fields import known_keys, table, text
 from derive.topology.topology import SheetForm, TitleBlock
 
 _KEYS = (
@@ -20,6 +20,8 @@ _KEYS = (
     "project",
     "notes",
 )
+# Keys of the table that do not go into the title block.
+_OTHERS = ("form", "hand")
 _FORMS: tuple[SheetForm, ...] = ("nested", "expanded")
 _LONGEST_NOTES = 4000
 _TITLE_CURE = 'write [sheet] with title = "..." at the top'
@@ -33,12 +35,10 @@ def read_title_block(document: Document) -> TitleBlock:
     if "sheet" not in document.data:
         raise document.error("the file has no [sheet] table with a title", cure=_TITLE_CURE)
     sheet = table(document, document.data["sheet"], "sheet", "sheet", cure=_TITLE_CURE)
-    if "hand" in sheet:
-        raise not_yet(document, "sheet: the key hand is", "sheet", "hand", cure="take the line out")
-    known_keys(document, sheet, (*_KEYS, "form"), "sheet", "sheet")
+    known_keys(document, sheet, (*_KEYS, *_OTHERS), "sheet", "sheet")
     if "title" not in sheet:
         raise document.error("sheet: the title is missing", "sheet", cure='write title = "..."')
-    entries = {key: _entry(document, raw, key) for key, raw in sheet.items() if key != "form"}
+    entries = {key: _entry(document, raw, key) for key, raw in sheet.items() if key not in _OTHERS}
     if not entries["title"].strip():
         raise document.error("sheet: the title is empty", "sheet", "title", cure="say what the stage is")
     return TitleBlock(**entries)

@@ -32,11 +32,13 @@ STATIONS = (
     "estimates",
     "approximate",
     "check",
+    "handcheck",
     "sheet",
     "render",
     "pipeline",
     "progress",
     "batch",
+    "hand",
     "compare",
     "cli",
 )
