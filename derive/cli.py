@@ -102,10 +102,20 @@ def _parser() -> argparse.ArgumentParser:
     show.add_argument("--simplify", action="store_true", help=SHORT_FORMS)
     show.add_argument("--quiet", action="store_true", help="no progress on standard error")
     show.set_defaults(run=_show)
+    _add_handcheck(commands)
     _add_compare(commands)
     _add_review(commands)
     _add_at_the_desk(commands)
     return parser
+
+
+def _add_handcheck(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    handcheck = commands.add_parser("handcheck", help="check a derivation by hand, line by line")
+    handcheck.add_argument("file", metavar="FILE", help="file of the derivation")
+    handcheck.add_argument("--out", metavar="DIR", help="folder to write a sheet of it to")
+    handcheck.add_argument("--only", metavar="KINDS", help="of html,pdf,json")
+    handcheck.add_argument("--quiet", action="store_true", help="no progress on standard error")
+    handcheck.set_defaults(run=_handcheck)
 
 
 def _add_compare(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
@@ -195,6 +205,31 @@ def _show(options: argparse.Namespace) -> int:
     return WELL if results.passed else FAILED
 
 
+def _handcheck(options: argparse.Namespace) -> int:
+    from derive.hand import check_hand_file, hand_name, write_hand
+    from derive.progress import Progress
+    from derive.sheet.hand.plain import plain_report
+
+    folder, kinds = _folder_and_kinds(options)
+    name = hand_name(options.file)
+    with Progress(1, 2 + len(kinds), quiet=options.quiet) as progress:
+        tell = partial(progress.tell, name)
+        checked = check_hand_file(options.file, tell)
+        written = () if folder is None else write_hand(checked, name, folder, kinds, tell)
+    sys.stdout.write(plain_report(checked.report, _width(), colour=_may_colour()))
+    _tell_written(written)
+    return WELL if checked.report.passed else FAILED
+
+
+def _width() -> int:
+    return shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
+
+
+def _may_colour() -> bool:
+    plain = os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb"
+    return sys.stdout.isatty() and not plain
+
+
 def _compare(options: argparse.Namespace) -> int:
     from derive.compare.make import make_comparison
     from derive.compare.plain import plain_comparison
@@ -264,10 +299,6 @@ def _folder_and_kinds(options: argparse.Namespace) -> tuple[Path | None, tuple[s
     if options.out is None:
         return None, ()
     return Path(options.out), _kinds(",".join(KINDS) if options.only is None else options.only)
-
-
-def _width() -> int:
-    return shutil.get_terminal_size().columns if sys.stdout.isatty() else 120
 
 
 def _tell_written(written: Sequence[Path]) -> None:

@@ -23,6 +23,7 @@ from derive.devices.linearise import linearise
 from derive.eliminate.names import names_used
 from derive.errors import InputError
 from derive.estimates.estimate import estimate
+from derive.handcheck.attached import judge_attached, read_attached
 from derive.nodal.write import write_equations
 from derive.normalise.band_report import report_bands
 from derive.normalise.nested_choice import derive_form
@@ -70,19 +71,22 @@ def derive(
     only: str | None = None,
     band: str | None = None,
     explain: bool = True,
+    hand: bool = True,
     progress: Callable[[str], None] = lambda stage: None,
     meanwhile: Callable[[Outcome], None] = lambda outcome: None,
 ) -> Results:
     """Derive and check what a topology asks for.
 
     Given: whether the other engine is asked as well, and for how long; `only` names one quantity, `band`
-    one band; whether the results are to be put in the words of the trade as well; `progress` is told the
-    stages; `meanwhile` is given the outcome without its verdicts, while the other engine works.
+    one band; whether the results are to be put in the words of the trade as well, and whether the hand derivation
+    that the topology names is to be checked; `progress` is told the stages; `meanwhile` is given the outcome
+    without its verdicts, while the other engine works.
 
     Raises: InputError, TooLargeError or SingularError where the circuit cannot be worked.
     """
     point = operating_point(topology)
     circuit = linearise(topology, {device.part: device for device in point.devices} if point else {})
+    attached = read_attached(topology, bands_of(circuit)) if hand else None
     bands = tuple(restrict(circuit, name) for name in _chosen(circuit, band))
     if band is None:
         refuse_unused_merges(topology.merges, bands)
@@ -100,9 +104,12 @@ def derive(
     begun = start(solutions, lcapy=other_engine, lcapy_seconds=engine_seconds)
     progress("checking")
     report = report_bands(circuit, bands)
-    meanwhile(Outcome(circuit, tuple(Result(solution, ()) for solution in solutions), point, report))
+    aside = judge_attached(attached, solutions)
+    meanwhile(
+        Outcome(circuit, tuple(Result(solution, ()) for solution in solutions), point, report, aside)
+    )
     verdicts = finish(begun)
-    return Results(Outcome(circuit, tuple(map(_result, solutions, verdicts)), point, report))
+    return Results(Outcome(circuit, tuple(map(_result, solutions, verdicts)), point, report, aside))
 
 
 def _chosen(circuit: SmallSignal, band: str | None) -> tuple[BandName, ...]:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Protocol
 
 from derive.approximate.questions import Simplified
 from derive.approximate.register import Register
@@ -91,16 +92,29 @@ class Result:
         return sound and all(v.passed is not False for v in self.verdicts)
 
 
+class Beside(Protocol):
+    """What was judged beside the results, such as a hand derivation of one of them."""
+
+    @property
+    def passed(self) -> bool:
+        """Whether all of it stands."""
+
+
 @dataclass(frozen=True, slots=True)
 class Outcome:
-    """All results of one topology: its operating point where it has one, and its bands' circuits."""
+    """All results of one topology: its operating point where it has one, and its bands' circuits.
+
+    `hand` is the report on the hand derivation that the topology names, None where it names none.
+    """
 
     circuit: SmallSignal
     results: tuple[Result, ...]
     point: OperatingPoint | None = None
     bands: BandsReport | None = None
+    hand: Beside | None = None
 
     @property
     def passed(self) -> bool:
-        """Whether no check failed on any result, nor on the operating point."""
-        return all(result.passed for result in self.results) and (self.point is None or self.point.passed)
+        """Whether no check failed on any result, nor on the operating point, nor a line of the hand derivation."""
+        aside = (self.point is None or self.point.passed) and (self.hand is None or self.hand.passed)
+        return aside and all(result.passed for result in self.results)

@@ -59,7 +59,7 @@ def compare(
 
 
 def _work(topology: Topology, name: str, find: Find, tell: Callable[[str], None]) -> _Worked:
-    outcome = derive(topology, other_engine=False, only=find.name, progress=tell).outcome
+    outcome = derive(topology, other_engine=False, only=find.name, hand=False, progress=tell).outcome
     by_band = {result.solution.band_name: result.solution for result in outcome.results}
     main = next(by_band[band] for band in MID if band in by_band)
     at_hertz = mid_frequency(main)

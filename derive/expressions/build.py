@@ -8,10 +8,11 @@ signs in a row cancel, a sign in front of a product spans all of it, and `a*b/c/
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from fractions import Fraction
-from typing import Any
+from typing import Any, NamedTuple
 
+from derive.expressions.spelled import Refusal
 from derive.expressions.tree import (
     Expression,
     Name,
@@ -31,20 +32,23 @@ MAX_DECIMAL_EXPONENT = 400
 _HALF = Fraction(1, 2)
 
 
-class Refusal(Exception):
-    """Raised inside the reader for what the grammar allows and the language does not."""
+class Placed(NamedTuple):
+    """A tree and where it stands in the text, from `start` to before `end`.
 
-    def __init__(self, position: int, what: str, cure: str) -> None:
-        self.position = position
-        self.what = what
-        self.cure = cure
-        super().__init__(what)
+    `parts` are its operands in the order of `derive.expressions.walk.children_of`. Parentheses belong to what is in
+    them; of a flat sum or product that had inner ones, each operand has its own place.
+    """
+
+    node: Expression
+    start: int
+    end: int
+    parts: tuple[Placed, ...] = ()
 
 
 class TreeBuilder:
     """The actions of the grammar; each takes the pieces of its rule in the order written."""
 
-    def number(self, pieces: Sequence[Any]) -> Expression:
+    def number(self, pieces: Sequence[Any]) -> Placed:
         """Give the exact value of a whole or decimal number."""
         token = pieces[0]
         _, _, exponent = token.lower().partition("e")
@@ -54,35 +58,43 @@ class TreeBuilder:
                 "this number is too long",
                 f"keep to {MAX_NUMBER_LENGTH} digits and powers of ten to {MAX_DECIMAL_EXPONENT}",
             )
-        return Number(Fraction(str(token)))
+        return Placed(Number(Fraction(str(token))), token.start_pos, token.end_pos)
 
-    def name(self, pieces: Sequence[Any]) -> Expression:
+    def name(self, pieces: Sequence[Any]) -> Placed:
         """Give the name as it was written."""
-        return Name(str(pieces[0]))
+        token = pieces[0]
+        return Placed(Name(str(token)), token.start_pos, token.end_pos)
 
-    def root(self, pieces: Sequence[Any]) -> Expression:
+    def group(self, pieces: Sequence[Any]) -> Placed:
+        """Give what stands in parentheses, with them."""
+        opening, inner, closing = pieces
+        return Placed(inner.node, opening.start_pos, closing.end_pos, inner.parts)
+
+    def root(self, pieces: Sequence[Any]) -> Placed:
         """Give the square root."""
-        return Root(pieces[0])
+        word, _, radicand, closing = pieces
+        return Placed(Root(radicand.node), word.start_pos, closing.end_pos, (radicand,))
 
-    def signed(self, pieces: Sequence[Any]) -> Expression:
+    def signed(self, pieces: Sequence[Any]) -> Placed:
         """Give the operand, negative where an odd number of minus signs stands before it."""
         odd = sum(sign == "-" for sign in pieces[:-1]) % 2
-        return _negative(pieces[-1]) if odd else pieces[-1]
+        return _negative(pieces[0].start_pos, pieces[-1]) if odd else pieces[-1]
 
-    def sum(self, pieces: Sequence[Any]) -> Expression:
+    def sum(self, pieces: Sequence[Any]) -> Placed:
         """Give one flat sum."""
-        terms: list[Expression] = []
+        terms: list[Placed] = []
         for index in range(0, len(pieces), 2):
             term = pieces[index]
             if index and pieces[index - 1] == "-":
-                term = _negative(term)
-            terms.extend(term.terms if isinstance(term, Sum) else (term,))
-        return Sum(tuple(terms))
+                term = _negative(pieces[index - 1].start_pos, term)
+            terms.extend(term.parts if isinstance(term.node, Sum) else (term,))
+        node = Sum(tuple(term.node for term in terms))
+        return Placed(node, pieces[0].start, pieces[-1].end, tuple(terms))
 
-    def product(self, pieces: Sequence[Any]) -> Expression:
+    def product(self, pieces: Sequence[Any]) -> Placed:
         """Give products and quotients from left to right."""
-        above: list[Expression] = [pieces[0]]
-        below: list[Expression] = []
+        above: list[Placed] = [pieces[0]]
+        below: list[Placed] = []
         for index in range(1, len(pieces), 2):
             if pieces[index] == "/":
                 below.append(pieces[index + 1])
@@ -92,19 +104,20 @@ class TreeBuilder:
             above.append(pieces[index + 1])
         return _over(above, below) if below else _product(above)
 
-    def parallel(self, pieces: Sequence[Any]) -> Expression:
+    def parallel(self, pieces: Sequence[Any]) -> Placed:
         """Give one flat parallel combination."""
-        branches: list[Expression] = []
+        branches: list[Placed] = []
         for branch in pieces:
-            branches.extend(branch.branches if isinstance(branch, Parallel) else (branch,))
-        return Parallel(tuple(branches))
+            branches.extend(branch.parts if isinstance(branch.node, Parallel) else (branch,))
+        node = Parallel(tuple(branch.node for branch in branches))
+        return Placed(node, pieces[0].start, pieces[-1].end, tuple(branches))
 
-    def power(self, pieces: Sequence[Any]) -> Expression:
+    def power(self, pieces: Sequence[Any]) -> Placed:
         """Give the power; the exponent 1/2 is the square root, as the ledger writes it."""
         base, hat, written = pieces
-        exponent = _constant(written)
+        exponent = _constant(written.node)
         if exponent == _HALF:
-            return Root(base)
+            return Placed(Root(base.node), base.start, written.end, (base,))
         if exponent is None or exponent.denominator != 1:
             raise Refusal(
                 hat.end_pos,
@@ -117,22 +130,28 @@ class TreeBuilder:
                 "this exponent is too large",
                 f"keep between -{MAX_EXPONENT} and {MAX_EXPONENT}",
             )
-        return Power(base, int(exponent))
+        return Placed(Power(base.node, int(exponent)), base.start, written.end, (base,))
 
 
-def _negative(operand: Expression) -> Expression:
-    return operand.operand if isinstance(operand, Negative) else Negative(operand)
+def _negative(start: int, operand: Placed) -> Placed:
+    if isinstance(operand.node, Negative):
+        return operand.parts[0]._replace(start=start)
+    return Placed(Negative(operand.node), start, operand.end, (operand,))
 
 
-def _product(parts: Iterable[Expression]) -> Expression:
-    factors: list[Expression] = []
+def _product(parts: Sequence[Placed]) -> Placed:
+    factors: list[Placed] = []
     for part in parts:
-        factors.extend(part.factors if isinstance(part, Product) else (part,))
-    return factors[0] if len(factors) == 1 else Product(tuple(factors))
+        factors.extend(part.parts if isinstance(part.node, Product) else (part,))
+    if len(factors) == 1:
+        return factors[0]
+    node = Product(tuple(factor.node for factor in factors))
+    return Placed(node, parts[0].start, parts[-1].end, tuple(factors))
 
 
-def _over(above: Iterable[Expression], below: Iterable[Expression]) -> Expression:
-    return Quotient(_product(above), _product(below))
+def _over(above: Sequence[Placed], below: Sequence[Placed]) -> Placed:
+    top, bottom = _product(above), _product(below)
+    return Placed(Quotient(top.node, bottom.node), top.start, bottom.end, (top, bottom))
 
 
 def _constant(expression: Expression) -> Fraction | None:

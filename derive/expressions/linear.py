@@ -36,7 +36,7 @@ class Dialect:
 
     `power` takes the base (an atom) and the exponent, `root` the radicand and how tightly it holds,
     `parallel` the branches.
-    `struck` says of what is written that it is struck out.
+    `struck` says of what is written that it is struck out; `nearly` is the sign of an approximation.
     """
 
     times: str
@@ -46,6 +46,7 @@ class Dialect:
     root: Callable[[str, int], Written]
     parallel: Callable[[list[Written]], Written]
     elided: Callable[[Elided], str]
+    nearly: str = "~"
     struck: Callable[[str], str] = "[struck: {}]".format
 
 
@@ -59,7 +60,8 @@ def write_line(content: Expression | Equation, dialect: Dialect) -> str:
     """Write an expression or an equation on one line in a dialect."""
     if isinstance(content, Equation):
         left, right = _write(content.left, dialect), _write(content.right, dialect)
-        return f"{left[0]} = {right[0]}"
+        sign = "=" if content.relation == "=" else dialect.nearly
+        return f"{left[0]} {sign} {right[0]}"
     return _write(content, dialect)[0]
 
 

@@ -7,9 +7,10 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from derive.errors import InputError
-from derive.expressions.build import Refusal, TreeBuilder
+from derive.expressions.build import Placed, TreeBuilder
+from derive.expressions.spell import spell
+from derive.expressions.spelled import Refusal, Spelled
 from derive.expressions.tree import Expression, Power
-from derive.expressions.walk import children_of
 
 if TYPE_CHECKING:
     from lark import Lark
@@ -22,41 +23,19 @@ _BEFORE, _AFTER = 48, 24
 _WORDS = {
     "NUMBER": "a number",
     "NAME": "a name",
-    "_SQRT": '"sqrt("',
+    "SQRT": '"sqrt("',
     "PLUS": '"+"',
     "MINUS": '"-"',
     "HAT": '"^"',
     "TIMES": '"*"',
     "OVER": '"/"',
     "_BARS": '"||"',
-    "_OPEN": '"("',
-    "_CLOSE": '")"',
+    "OPEN": '"("',
+    "CLOSE": '")"',
     "$END": "the end",
 }
 _OPERATORS = {"PLUS", "MINUS", "TIMES", "OVER", "_BARS"}
-_INSTEAD = {
-    "·": "*",
-    "×": "*",
-    "⋅": "*",
-    "−": "-",
-    "–": "-",
-    "÷": "/",
-    "|": "||",
-    "∥": "||",
-    "‖": "||",
-    "²": "^2",
-    "³": "^3",
-    "√": "sqrt(x)",
-    "[": "(",
-    "{": "(",
-    "]": ")",
-    "}": ")",
-    "π": "pi",
-    "β": "beta",
-    "ω": "omega",
-    "µ": "mu",
-    "μ": "mu",
-}
+_INSTEAD = {"|": "||", "[": "(", "{": "(", "]": ")", "}": ")"}
 
 
 def parse_expression(text: str, *, where: str = "") -> Expression:
@@ -75,14 +54,35 @@ def parse_expression(text: str, *, where: str = "") -> Expression:
             cure=f"give parts of it names of their own, to stay below {MAX_LENGTH:,}",
         )
     try:
-        _refuse_deep_parentheses(text)
-        expression = _read(text)
+        return parse_placed(text).node
     except Refusal as refusal:
-        pointed = _pointed(text, refusal.position)
-        what = f"this expression cannot be read\n{pointed}\n{refusal.what}"
+        what = f"this expression cannot be read\n{pointed(text, refusal.position)}\n{refusal.what}"
         raise InputError(what, where=where, cure=refusal.cure) from None
-    _refuse_deep_tree(expression, where)
-    return expression
+
+
+def parse_placed(text: str) -> Placed:
+    """Read one expression, every part of it with its place in the text.
+
+    Raises: Refusal, with the place, for anything that is not an expression.
+    """
+    return parse_spelled(spell(text), text)
+
+
+def parse_spelled(spelled: Spelled, text: str) -> Placed:
+    """Read an expression that was spelled in plain signs; `text` is what was typed, to which the places belong.
+
+    Raises: Refusal, with the place, for anything that is not an expression.
+    """
+    _refuse_deep_parentheses(spelled)
+    placed = _read(spelled, text)
+    _refuse_deep_tree(placed, spelled)
+    return placed if spelled.starts is None and not spelled.shift else _typed(placed, spelled)
+
+
+def _typed(placed: Placed, spelled: Spelled) -> Placed:
+    """Give the tree with the places in what was typed."""
+    parts = tuple([_typed(part, spelled) for part in placed.parts])
+    return Placed(placed.node, spelled.start(placed.start), spelled.end(placed.end), parts)
 
 
 @cache
@@ -94,46 +94,51 @@ def _parser() -> Lark:
     return Lark(grammar, parser="lalr", transformer=TreeBuilder(), maybe_placeholders=False)
 
 
-def _read(text: str) -> Expression:
+def _read(spelled: Spelled, text: str) -> Placed:
     parser = _parser()
     from lark.exceptions import UnexpectedCharacters, UnexpectedToken
 
     try:
         # With the builder inside the parser the "tree" that comes back is the builder's own.
-        read: Any = parser.parse(text)
+        read: Any = parser.parse(spelled.text)
     except UnexpectedCharacters as error:
-        raise _unknown_sign(text, error.pos_in_stream or 0) from None
+        raise _unknown_sign(spelled, error.pos_in_stream or 0) from None
     except UnexpectedToken as error:
-        raise _out_of_place(text, error.token, error.accepts or error.expected) from None
-    expression: Expression = read
-    return expression
+        raise _out_of_place(spelled, text, error.token, error.accepts or error.expected) from None
+    except Refusal as refusal:
+        raise Refusal(spelled.start(refusal.position), refusal.what, refusal.cure) from None
+    placed: Placed = read
+    return placed
 
 
-def _unknown_sign(text: str, position: int) -> Refusal:
-    sign = text[position]
+def _unknown_sign(spelled: Spelled, position: int) -> Refusal:
+    sign = spelled.text[position]
     if sign in _INSTEAD:
         cure = f'write "{_INSTEAD[sign]}"'
-    elif sign == "=":
+    elif sign in "=~":
         cure = "give one side of the equation only"
     elif sign == "_":
         cure = "begin a name with a letter"
     else:
         cure = "use names, numbers, + - * / ^ || sqrt and parentheses"
-    return Refusal(position, f'"{_visible(sign)}" has no meaning in an expression', cure)
+    return Refusal(spelled.start(position), f'"{_visible(sign)}" has no meaning in an expression', cure)
 
 
-def _out_of_place(text: str, token: Any, accepts: set[str]) -> Refusal:
+def _out_of_place(spelled: Spelled, text: str, token: Any, accepts: set[str]) -> Refusal:
     # The parser may have closed an operand before it stopped; operators could have gone on from it.
-    if "_OPEN" not in accepts:
+    if "OPEN" not in accepts:
         accepts = accepts | _OPERATORS
     expected = ", ".join(sorted(_WORDS[kind] for kind in accepts))
+    plain = spelled.text
     if token.type == "$END":
-        cure = "close the parenthesis" if "_CLOSE" in accepts else "complete it"
+        cure = "close the parenthesis" if "CLOSE" in accepts else "complete it"
         what = f"the expression ends too early; expected {expected}"
-        return Refusal(len(text.rstrip()), what, cure)
+        return Refusal(spelled.end(len(plain.rstrip())), what, cure)
     position = int(token.start_pos)
-    what = f'"{_visible(str(token)[:40])}" cannot stand here; expected {expected}'
-    return Refusal(position, what, _cure(text, position, token.type, accepts))
+    start = spelled.start(position)
+    typed = text[start : spelled.end(position + len(token))] or str(token)
+    what = f'"{_visible(typed[:40])}" cannot stand here; expected {expected}'
+    return Refusal(start, what, _cure(plain, position, token.type, accepts))
 
 
 def _cure(text: str, position: int, kind: str, accepts: set[str]) -> str:
@@ -142,9 +147,9 @@ def _cure(text: str, position: int, kind: str, accepts: set[str]) -> str:
         return "sqrt takes its argument in parentheses: sqrt(x)"
     if "TIMES" not in accepts:
         return "put a name, a number or a group in parentheses before it"
-    if kind == "_CLOSE":
+    if kind == "CLOSE":
         return "take this parenthesis away, or open one before it"
-    if kind == "_OPEN" and _ends_in_name(before):
+    if kind == "OPEN" and _ends_in_name(before):
         return 'write "*" before the parenthesis to multiply; the only function is sqrt(x)'
     if kind == "NAME" and before[-1:].isdigit():
         return 'write "*" between factors; a value code such as 4k7 is written out: 4700'
@@ -158,8 +163,8 @@ def _ends_in_name(before: str) -> bool:
     return before[start : start + 1].isalpha()
 
 
-def _pointed(text: str, position: int) -> str:
-    """Give the text about the position with a caret under it, each line indented."""
+def pointed(text: str, position: int) -> str:
+    """Give the text about a position with a caret under it, each line indented."""
     start = max(0, position - _BEFORE) if len(text) > _BEFORE + _AFTER else 0
     end = max(position, start + _BEFORE) + _AFTER
     shown = ("..." if start else "") + text[start:end] + ("..." if end < len(text) else "")
@@ -172,14 +177,14 @@ def _visible(text: str) -> str:
     return "".join(c if c.isprintable() else " " if c.isspace() else "?" for c in text)
 
 
-def _refuse_deep_parentheses(text: str) -> None:
+def _refuse_deep_parentheses(spelled: Spelled) -> None:
     depth = 0
-    for position, sign in enumerate(text):
+    for position, sign in enumerate(spelled.text):
         if sign == "(":
             depth += 1
             if depth > MAX_DEPTH:
                 raise Refusal(
-                    position,
+                    spelled.start(position),
                     f"parentheses are nested more than {MAX_DEPTH} deep",
                     "give the inner parts names of their own",
                 )
@@ -187,19 +192,19 @@ def _refuse_deep_parentheses(text: str) -> None:
             depth -= 1
 
 
-def _refuse_deep_tree(expression: Expression, where: str) -> None:
+def _refuse_deep_tree(placed: Placed, spelled: Spelled) -> None:
     """Refuse what later recursion, or an exact power of a power of a number, could not bear."""
-    pending = [(expression, 1, 1)]
+    pending = [(placed, 1, 1)]
     while pending:
-        node, depth, exponent = pending.pop()
-        if isinstance(node, Power):
-            exponent *= max(1, abs(node.exponent))
+        each, depth, exponent = pending.pop()
+        if isinstance(each.node, Power):
+            exponent *= max(1, abs(each.node.exponent))
         if depth > MAX_DEPTH or exponent > MAX_NESTED_EXPONENT:
-            raise InputError(
+            raise Refusal(
+                spelled.start(each.start),
                 "this expression is nested too deeply"
                 if depth > MAX_DEPTH
                 else "powers of powers grow too large here",
-                where=where,
-                cure="give the inner parts names of their own",
+                "give the inner parts names of their own",
             )
-        pending.extend((child, depth + 1, exponent) for child in children_of(node))
+        pending.extend((part, depth + 1, exponent) for part in each.parts)

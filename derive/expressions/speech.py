@@ -31,7 +31,8 @@ def to_speech(content: Expression | Equation) -> str:
     Fractions and roots say where they end; groups are opened and closed in words.
     """
     if isinstance(content, Equation):
-        return f"{_say(content.left)[0]} equals {_say(content.right)[0]}"
+        says = "equals" if content.relation == "=" else "is approximately"
+        return f"{_say(content.left)[0]} {says} {_say(content.right)[0]}"
     return _say(content)[0]
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from fractions import Fraction
+from typing import Literal
 
 
 @dataclass(frozen=True, slots=True)
@@ -86,6 +87,7 @@ class Struck:
     operand: Expression
 
 
+Relation = Literal["=", "~"]
 Expression = (
     Number | Name | Sum | Product | Quotient | Power | Negative | Parallel | Root | Elided | Struck
 )
@@ -93,10 +95,11 @@ Expression = (
 
 @dataclass(frozen=True, slots=True)
 class Equation:
-    """The statement that `left` and `right` are equal."""
+    """The statement that `left` and `right` are equal, or nearly so where `relation` is "~"."""
 
     left: Expression
     right: Expression
+    relation: Relation = "="
 
 
 ZERO = Number(Fraction(0))

@@ -33,7 +33,8 @@ _Set = tuple[str, int]
 def to_typst(content: Expression | Equation) -> str:
     """Write an expression or an equation as the source of Typst maths, without dollar signs."""
     if isinstance(content, Equation):
-        return f"{_set(content.left)[0]} = {_set(content.right)[0]}"
+        sign = "=" if content.relation == "=" else "approx"
+        return f"{_set(content.left)[0]} {sign} {_set(content.right)[0]}"
     return _set(content)[0]
 
 

@@ -59,4 +59,5 @@ _UNICODE = Dialect(
     root=_root,
     parallel=_parallel,
     elided=lambda elided: f"… ({more_terms(elided)})",
+    nearly="≈",
 )

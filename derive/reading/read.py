@@ -6,6 +6,7 @@ import os
 from pathlib import PurePath
 
 from derive.reading.assumptions import read_assumptions, read_budget
+from derive.reading.attached import read_hand_file
 from derive.reading.circuit import check_circuit
 from derive.reading.document import Document, load
 from derive.reading.drawing import read_drawing
@@ -69,6 +70,7 @@ def parse(text: str, file: str) -> Topology:
         reviews=read_reviews(document),
         plots=read_plots(document),
         drawing=read_drawing(document, parts, drives),
+        hand=read_hand_file(document),
     )
     check_circuit(topology, document)
     return topology

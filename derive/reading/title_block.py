@@ -7,7 +7,7 @@ from typing import Any
 
 from derive.quantities.words import did_you_mean, listed, quoted
 from derive.reading.document import Document
-from derive.reading.fields import described, known_keys, not_yet, table, text
+from derive.reading.fields import described, known_keys, table, text
 from derive.topology.topology import PLOTS, PlotKind, SheetForm, TitleBlock
 
 _KEYS = (
@@ -21,7 +21,8 @@ _KEYS = (
     "project",
     "notes",
 )
-_OTHER_KEYS = ("form", "plots")
+# Keys of the table that do not go into the title block.
+_OTHER_KEYS = ("form", "plots", "hand")
 _PLOTS: tuple[PlotKind, ...] = ("response", "poles", "step", "delay")
 _FORMS: tuple[SheetForm, ...] = ("nested", "expanded")
 _LONGEST_NOTES = 4000
@@ -36,8 +37,6 @@ def read_title_block(document: Document) -> TitleBlock:
     if "sheet" not in document.data:
         raise document.error("the file has no [sheet] table with a title", cure=_TITLE_CURE)
     sheet = table(document, document.data["sheet"], "sheet", "sheet", cure=_TITLE_CURE)
-    if "hand" in sheet:
-        raise not_yet(document, "sheet: the key hand is", "sheet", "hand", cure="take the line out")
     known_keys(document, sheet, (*_KEYS, *_OTHER_KEYS), "sheet", "sheet")
     if "title" not in sheet:
         raise document.error("sheet: the title is missing", "sheet", cure='write title = "..."')

@@ -31,9 +31,9 @@ from derive.render.typesetter import Formula, Measurer
 INDENT_EM = 1.4
 LONGEST_LEAD = 0.3  # of the column: a longer left side takes a line of its own
 LONGEST_FRACTION = 24  # lines above or below a bar: a page holds no more
-_SIGNS = {"": "", "+": "+", "-": "-", "=": "=", "∥": "parallel", "·": "dot", "/": "\\/"}
+_SIGNS = {"": "", "+": "+", "-": "-", "=": "=", "~": "approx", "∥": "parallel", "·": "dot", "/": "\\/"}
 _BRACKETS_EM = 1.0
-_SIGN_EM = {"": 0.0, "+": 1.15, "-": 1.15, "=": 1.25, "∥": 1.1, "·": 0.75, "/": 0.4}
+_SIGN_EM = {"": 0.0, "+": 1.15, "-": 1.15, "=": 1.25, "~": 1.25, "∥": 1.1, "·": 0.75, "/": 0.4}
 
 
 @dataclass(frozen=True, slots=True)
@@ -108,10 +108,10 @@ class Breaker:
         lead = self._width(whole.left) + _SIGN_EM["="]
         if lead > LONGEST_LEAD * limit:
             tokens = self._tokens(whole.left, limit - INDENT_EM)
-            tokens += _signed(self._tokens(whole.right, limit - 2 * INDENT_EM), "=")
+            tokens += _signed(self._tokens(whole.right, limit - 2 * INDENT_EM), whole.relation)
             return _packed(tokens, limit)
         tokens = self._tokens(whole.right, limit - lead - INDENT_EM)
-        return _packed(tokens, limit, lead, f"{left} & = ")
+        return _packed(tokens, limit, lead, f"{left} & {_SIGNS[whole.relation]} ")
 
     def _tokens(self, expression: Expression, limit: float) -> list[Token]:
         """Cut an expression into tokens no wider than the limit, where it can be cut."""

@@ -22,7 +22,7 @@ from derive.render.maths import (
 )
 from derive.render.plot import plot_svg
 from derive.render.root_map import root_maps_svg
-from derive.render.title_block import title_rows
+from derive.render.title_block import title_rows, warning
 from derive.sheet.document import (
     Block,
     Circuit,
@@ -255,6 +255,7 @@ def compose(
         rows=title_rows(sheet),
         groups=made,
         contents=mains if len(mains) >= FEWEST_LISTED else (),
+        warning=warning(sheet),
         **more,
     )
     return printable(page)

@@ -114,9 +114,7 @@ def _attachments(weasyprint: Any, sheet: Sheet) -> list[Any]:
     # Not every system knows the type, and the type is written into the file.
     mimetypes.add_type("application/toml", ".toml")
     own = ((sheet.topology_name, sheet.topology_text, "topology of this sheet", "Source"),)
-    several = tuple(
-        (f"{s.stage}.toml", s.text, f"topology of {s.stage}", "Source") for s in sheet.sources
-    )
+    several = tuple((f"{s.stage}.toml", s.text, f"source of {s.stage}", "Source") for s in sheet.sources)
     files = (
         *(several or own),
         (sheet.ledger_name, sheet.ledger_text, "results of this sheet, for programs", "Data"),

@@ -45,9 +45,9 @@ def title_rows(sheet: Sheet) -> list[list[Cell]]:
     short = [f for f in fields if len(f.text) <= _LONG_FIELD and "\n" not in f.text]
     entries = [(field, "") for field in short]
     if sheet.passed:
-        entries.append((Field("Status", "✓ all checks passed"), "status pass"))
+        entries.append((Field("Status", f"✓ {sheet.status or 'all checks passed'}"), "status pass"))
     else:
-        entries.append((Field("Status", f"✗ {_failed(sheet)}"), "status fail"))
+        entries.append((Field("Status", f"✗ {sheet.status or _failed(sheet)}"), "status fail"))
     last = [[Cell("Source", sheet.topology_name, 12, "digest")]]
     if sheet.sources:
         last = [
@@ -56,6 +56,12 @@ def title_rows(sheet: Sheet) -> list[list[Cell]]:
         ]
     long = [[Cell(f.label, f.text, 12, "long")] for f in fields if f not in short]
     return [first, *_spread(entries), *long, *last]
+
+
+def warning(sheet: Sheet) -> str:
+    """Return what stands over the failures on the first page."""
+    checks = "Checks" if len(sheet.failures) > 1 else "A check"
+    return sheet.warning or f"{checks} failed: the results of this sheet are not to be relied on."
 
 
 def _failed(sheet: Sheet) -> str:

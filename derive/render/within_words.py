@@ -20,12 +20,14 @@ from derive.expressions.typst_maths import to_typst
 # How tightly a formula on one line holds together.
 _SUM, _PRODUCT, _ATOM = range(3)
 _Set = tuple[str, int]
+# Between the sides of an equation, as maths.
+SIGNS = {"=": "=", "~": "approx"}
 
 
 def slashed(content: Expression | Equation) -> str:
     """Return Typst source for use among words: quotients as a/b, so that all stays at full size."""
     if isinstance(content, Equation):
-        return f"{_set(content.left)[0]} = {_set(content.right)[0]}"
+        return f"{_set(content.left)[0]} {SIGNS[content.relation]} {_set(content.right)[0]}"
     return _set(content)[0]
 
 
@@ -33,7 +35,7 @@ def run_on(content: Expression | Equation) -> list[str]:
     """Cut a formula within words where a line may end: before = and before the signs of a sum."""
     if isinstance(content, Equation):
         right = run_on(content.right)
-        return [*run_on(content.left), f"= med {right[0]}", *right[1:]]
+        return [*run_on(content.left), f"{SIGNS[content.relation]} med {right[0]}", *right[1:]]
     if not isinstance(content, Sum) or len(content.terms) < 2:
         return [slashed(content)]
     made: list[str] = []

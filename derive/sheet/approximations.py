@@ -43,7 +43,7 @@ def _approximation(entry: Entry) -> dict[str, Any]:
         "numerator": [to_ledger(value) for value in form.numerator],
         "denominator": [to_ledger(value) for value in form.denominator],
         "ratio": rounded(entry.ratio),
-        "errors": _errors(entry.together),
+        "errors": errors_data(entry.together),
         "status": entry.status,
         "number": entry.number,
         "reason": entry.reason,
@@ -64,12 +64,13 @@ def _approximation(entry: Entry) -> dict[str, Any]:
             "numerator": [to_text(value) for value in read.numerator],
             "denominator": [to_text(value) for value in read.denominator],
         },
-        "alone": _errors(entry.alone),
-        "worst_corner": _worst(entry.worst),
+        "alone": errors_data(entry.alone),
+        "worst_corner": worst_data(entry.worst),
     }
 
 
-def _errors(errors: Errors | None) -> dict[str, Any] | None:
+def errors_data(errors: Errors | None) -> dict[str, Any] | None:
+    """Give the errors of a reduced result as data, rounded to the digits that count."""
     if errors is None:
         return None
     return {
@@ -93,7 +94,8 @@ def _errors(errors: Errors | None) -> dict[str, Any] | None:
     }
 
 
-def _worst(worst: Worst | None) -> dict[str, Any] | None:
+def worst_data(worst: Worst | None) -> dict[str, Any] | None:
+    """Give the worst over the corners as data, rounded to the digits that count."""
     if worst is None:
         return None
     return {

@@ -8,10 +8,12 @@ from functools import cache
 from typing import Any
 
 from derive.check.verdict import Outcome
+from derive.handcheck.report import HandReport
 from derive.sheet import sections as folder
 from derive.sheet.appendix import appendix
 from derive.sheet.assumed import failed_assumptions
 from derive.sheet.document import Field, Section, Sheet
+from derive.sheet.hand.words import short_failures
 from derive.sheet.ledger import ledger_text
 from derive.sheet.sections.sign_off import newest_mark
 from derive.sheet.view import views
@@ -93,6 +95,8 @@ def _failures(outcome: Outcome) -> tuple[str, ...]:
             numbers = ", ".join(str(number) for number, _ in result.broken_steps)
             names.append(f"{find}: proof of step {numbers}")
         names += [f"{find}: {words}" for words in failed_assumptions(result)]
+    if isinstance(outcome.hand, HandReport):
+        names += [f"by hand: {words}" for words in short_failures(outcome.hand)]
     return tuple(names)
 
 

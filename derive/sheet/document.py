@@ -263,7 +263,8 @@ class Sheet:
     """The whole document, with the files that it carries.
 
     `passed` says whether no check failed; `failures` names those that did, for the first page. A sheet on
-    several topologies has them in `sources`, and no topology of its own.
+    several topologies has them in `sources`, and no topology of its own. `status` and `warning` are what the title
+    block and the note over the failures say of it, "" for what is said of every sheet.
     """
 
     title: str
@@ -277,3 +278,5 @@ class Sheet:
     ledger_text: str
     language: str = "en"
     sources: tuple[Source, ...] = ()
+    status: str = ""
+    warning: str = ""

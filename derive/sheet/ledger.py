@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import hashlib
 import json
 import math
 from collections.abc import Sequence
@@ -16,10 +15,13 @@ from derive.expressions.ledger_text import to_ledger
 from derive.expressions.text import to_text
 from derive.expressions.tree import Equation, Expression
 from derive.expressions.walk import substitute
+from derive.handcheck.report import HandReport
 from derive.normalise.form import CertifiedRoot, NominalNumbers
 from derive.quantities.units import ledger_unit
 from derive.sheet.approximations import approximations, shown_in
 from derive.sheet.definitions import definitions_of, used_in
+from derive.sheet.digest import digest as digest
+from derive.sheet.hand.ledger import hand_data
 from derive.sheet.simplified import simplified
 from derive.sheet.wording import Wording, plain_line
 from derive.topology.topology import Find
@@ -41,17 +43,21 @@ def ledger(outcome: Outcome) -> dict[str, Any]:
         },
         "symbols": _symbols(outcome.circuit),
         "results": [_result(result) for result in outcome.results],
+        **_hand(outcome),
     }
+
+
+def _hand(outcome: Outcome) -> dict[str, Any]:
+    """Give the check of the hand derivation, where the topology names one."""
+    source = outcome.circuit.topology.hand
+    if source is None or not isinstance(outcome.hand, HandReport):
+        return {}
+    return {"hand": hand_data(outcome.hand, source.text)}
 
 
 def ledger_text(outcome: Outcome) -> str:
     """Give the ledger as it is written to a file."""
     return json.dumps(ledger(outcome), ensure_ascii=False, indent=1, allow_nan=False) + "\n"
-
-
-def digest(text: str) -> str:
-    """Give the SHA-256 of a topology file's text."""
-    return hashlib.sha256(text.encode("utf-8")).hexdigest()
 
 
 def exact_text(value: Fraction) -> str:

@@ -8,6 +8,7 @@ from dataclasses import replace
 from derive.check.verdict import Outcome, Verdict
 from derive.expressions.tree import Equation
 from derive.expressions.unicode_text import to_unicode
+from derive.handcheck.report import HandReport
 from derive.normalise.form import NominalNumbers
 from derive.sheet.assumed import failed_assumptions
 from derive.sheet.bandwidth import peak_of
@@ -28,6 +29,7 @@ from derive.sheet.document import (
     Text,
 )
 from derive.sheet.figures import figure, hertz, newton_difference
+from derive.sheet.hand.words import failures, summary
 from derive.sheet.tally import NOTHING_TO_JUDGE, kind_of, tally_of
 from derive.sheet.view import View, far_value, gain_dimension, power_of_s, views
 
@@ -53,6 +55,7 @@ def plain_outcome(outcome: Outcome, *, steps: bool = False) -> str:
     lines += _whole(("separation",), outcome, steps)
     lines += [] if steps else _whole(CIRCUIT, outcome, steps)
     lines += list(_bias_verdicts(outcome))
+    lines += list(_hand(outcome))
     return "\n".join(lines).rstrip() + "\n"
 
 
@@ -165,7 +168,7 @@ def _inline(piece: Inline) -> str:
 
 def equation_text(equation: Equation) -> str:
     """Give an equation as plain text."""
-    return f"{to_unicode(equation.left)} = {to_unicode(equation.right)}"
+    return to_unicode(equation)
 
 
 def _bias_verdicts(outcome: Outcome) -> Iterator[str]:
@@ -180,6 +183,16 @@ def _bias_verdicts(outcome: Outcome) -> Iterator[str]:
         yield f"  {MARKS[check.passed]} {check.part}: by Newton's method {newton_difference(check)}"
     for found in point.derivations:
         yield from (f"  ✗ {found.symbol}, step {number}: {why}" for number, why in found.broken)
+
+
+def _hand(outcome: Outcome) -> Iterator[str]:
+    report = outcome.hand
+    if not isinstance(report, HandReport):
+        return
+    yield ""
+    title = f"Derivation by hand of {report.find}, {report.band} band: {report.file}"
+    yield from (title, "-" * len(title), f"  {MARKS[report.passed]} {summary(report)}")
+    yield from (f"  ✗ {words}" for words in failures(report))
 
 
 def _gain(view: View, numbers: NominalNumbers) -> str:
@@ -211,4 +224,8 @@ def summary_rows(outcome: Outcome) -> list[tuple[str, str, str]]:
     if outcome.point is not None:
         passed = "passed" if outcome.point.passed else "FAILED"
         rows.append(("operating point", "", passed))
+    if isinstance(outcome.hand, HandReport):
+        report = outcome.hand
+        words = summary(report)
+        rows.append((f"{report.find} by hand", "", words if report.passed else f"FAILED: {words}"))
     return rows

@@ -181,10 +181,21 @@ class TitleBlock:
 
 
 @dataclass(frozen=True, slots=True)
+class Attached:
+    """A file that the topology names: `name` as written there, `path` for messages, and its text."""
+
+    name: str
+    path: str
+    text: str
+    place: Place
+
+
+@dataclass(frozen=True, slots=True)
 class Topology:
     """One stage as its user described it, with the text it was read from.
 
-    `bands` is empty where the user chose none; `temperature` is that of the junctions, in kelvin.
+    `bands` is empty where the user chose none; `temperature` is that of the junctions, in kelvin. `hand` is the hand
+    derivation that goes beside the results, None where there is none.
     """
 
     file: str
@@ -205,3 +216,4 @@ class Topology:
     reviews: tuple[Reviewed, ...] = ()
     plots: tuple[PlotKind, ...] = PLOTS
     drawing: DrawingHints = DrawingHints()
+    hand: Attached | None = None

@@ -117,12 +117,27 @@ TABLES = (
     row("find without a name", finds('[find]\nvoltage = "out" #<\n'), "find voltage", "table"),
     row("find as a list", finds('[[find.A_v]] #<\nvoltage = "out"\n'), "find A_v", "a list"),
     row("nodes word is a number", GOOD + "[nodes]\nout = 5 #<\n", "nodes: out", "number 5"),
+    row(
+        "no hand file",
+        SHEET + 'hand = "none.toml" #<\n' + GOOD.removeprefix(SHEET),
+        "none.toml",
+        "no such file",
+    ),
+    row(
+        "hand file is a folder", SHEET + 'hand = "." #<\n' + GOOD.removeprefix(SHEET), "hand", "directory"
+    ),
+    row(
+        "hand file by a whole path",
+        SHEET + 'hand = "/h.toml" #<\n' + GOOD.removeprefix(SHEET),
+        "hand",
+        "beside",
+    ),
+    row("hand is a number", SHEET + "hand = 5 #<\n" + GOOD.removeprefix(SHEET), "hand", "number 5"),
     row("words for no node", GOOD + '[nodes]\nouy = "cable" #<\n', '"ouy"', 'did you mean "out"'),
 )
 
 LATER = (
     row("drawing", GOOD + "[drawing] #<\n", "drawing", "not yet supported"),
-    row("hand", SHEET + 'hand = "h.toml" #<\n', "hand", "not yet supported"),
     row("return ratio", finds('[find.T]\nreturn_ratio = "R_1" #<\n'), "return_ratio", "not yet"),
 )
 

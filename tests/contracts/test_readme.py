@@ -131,13 +131,14 @@ def first_not_printed(shown, printed):
 
 
 def test_there_is_a_sample_of_each_command_that_prints():
-    assert [command for command, _, _ in SAMPLES] == ["show", "compare"]
+    assert [command for command, _, _ in SAMPLES] == ["show", "handcheck", "compare"]
 
 
 @pytest.mark.parametrize(("command", "rest", "shown"), SAMPLES, ids=[sample[0] for sample in SAMPLES])
 def test_what_a_command_is_shown_to_print_is_what_it_prints(command, rest, shown, capsys, monkeypatch):
     monkeypatch.chdir(ROOT)
-    assert derive.cli.main([command, *shlex.split(rest), "--quiet"]) == 0
+    # The derivation by hand that is shown has mistakes in it.
+    assert derive.cli.main([command, *shlex.split(rest), "--quiet"]) == (command == "handcheck")
     printed = capsys.readouterr().out
     assert len(shown.splitlines()) > 15
     assert first_not_printed(shown, printed) is None

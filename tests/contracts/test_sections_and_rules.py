@@ -2,6 +2,7 @@
 
 import importlib
 import pkgutil
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -24,17 +25,21 @@ from derive.sheet.document import (
 )
 from derive.sheet.view import views
 from derive.sheet.wording import SENTENCES, Wording, plain_line
+from derive.topology.topology import Attached, Place
 
 CIRCUITS = Path(__file__).parents[1] / "benchmarks" / "circuits"
 CASES = Path(__file__).parents[2] / "cases"
 ASSUMED = '[[assume]]\nthat = "beta >> 1"\n[budget]\nsimplify = true\n'
+HAND = "find = 'A_v'\nband = 'mid'\nlines = '''\na_1 = 0\nK = \n'''\n"
 
 
 @pytest.fixture(scope="module")
 def outcome():
     # A stage with supplies, a device, roles and merged parts has something for every section.
     text = (CASES / "echo_preamp" / "topology.toml").read_text(encoding="utf-8")
-    return derive(parse(text + ASSUMED, "topology.toml"), other_engine=False).outcome
+    by_hand = Attached("hand.toml", "hand.toml", HAND, Place("topology.toml", 1))
+    topology = replace(parse(text + ASSUMED, "topology.toml"), hand=by_hand)
+    return derive(topology, other_engine=False).outcome
 
 
 def names_in(package):

@@ -94,8 +94,6 @@ def test_an_expression_is_read_as_its_tree(text: str, tree: Expression) -> None:
         ("2(b + c)", 1, 'write "*" between factors'),
         ("4k7 + a", 1, "a value code such as 4k7 is written out"),
         ("a | b", 2, 'write "||"'),
-        ("a ∥ b", 2, 'write "||"'),
-        ("a − b", 2, 'write "-"'),
         ("[a + b]", 0, 'write "("'),
         ("(a + b", 6, "close the parenthesis"),
         ("a + b)", 5, "take this parenthesis away"),

@@ -1,0 +1,1 @@
+"""Hand algebra held against the circuit, line by line."""
