@@ -43,7 +43,16 @@ def check_hand_file(
     """
     name = os.fspath(file)
     hand = read_hand(name)
-    topology = read(_topology_of(hand, name))
+    return check_hand(hand, read(_topology_of(hand, name)), name, tell)
+
+
+def check_hand(
+    hand: HandFile, topology: Topology, name: str, tell: Callable[[str], None] = lambda stage: None
+) -> Checked:
+    """Check every line of a hand derivation against its topology; `name` is what messages point to.
+
+    Raises: InputError where it is of no result of the topology.
+    """
     point = operating_point(topology)
     circuit = linearise(topology, {device.part: device for device in point.devices} if point else {})
     find, band = choose(hand, topology, bands_of(circuit), name)

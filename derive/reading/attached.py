@@ -3,20 +3,23 @@
 from __future__ import annotations
 
 import os
+from collections.abc import Callable
 from pathlib import PurePath
 
 from derive.errors import InputError
 from derive.reading.document import Document
 from derive.reading.fields import text
-from derive.reading.files import check_text, read_text
+from derive.reading.files import check_text
 from derive.topology.topology import Attached
 
+Beside = Callable[[str], str]
 _HAND = ("sheet", "hand")
 
 
-def read_hand_file(document: Document) -> Attached | None:
+def read_hand_file(document: Document, beside: Beside) -> Attached | None:
     """Give the file under `hand` in [sheet], which stands beside the topology; None where there is none.
 
+    Given: `beside`, which reads a file; an issued sheet gives what it carries.
     Raises: InputError, at the line of the topology, for a file that cannot be had.
     """
     sheet = document.data.get("sheet", {})
@@ -31,7 +34,7 @@ def read_hand_file(document: Document) -> Attached | None:
         )
     path = os.fspath(PurePath(document.file).parent / name)
     try:
-        written = read_text(path)
+        written = beside(path)
         check_text(written, path)
     except InputError as error:
         raise document.error(f"sheet: hand: {name}: {error.what}", *_HAND, cure=error.cure) from None

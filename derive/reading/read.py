@@ -6,7 +6,7 @@ import os
 from pathlib import PurePath
 
 from derive.reading.assumptions import read_assumptions, read_budget
-from derive.reading.attached import read_hand_file
+from derive.reading.attached import Beside, read_hand_file
 from derive.reading.circuit import check_circuit
 from derive.reading.document import Document, load
 from derive.reading.drawing import read_drawing
@@ -37,9 +37,10 @@ def read(path: str | os.PathLike[str]) -> Topology:
     return parse(read_text(path), os.fspath(path))
 
 
-def parse(text: str, file: str) -> Topology:
+def parse(text: str, file: str, beside: Beside | None = read_text) -> Topology:
     """Give the topology that the text describes; `file` is the name that messages point to.
 
+    Given: `beside`, which gives the text of a file that it names, by its path; None leaves such files unread.
     Raises: InputError, with file, line and cure, for anything that cannot be used.
     """
     check_text(text, file)
@@ -70,7 +71,7 @@ def parse(text: str, file: str) -> Topology:
         reviews=read_reviews(document),
         plots=read_plots(document),
         drawing=read_drawing(document, parts, drives),
-        hand=read_hand_file(document),
+        hand=None if beside is None else read_hand_file(document, beside),
     )
     check_circuit(topology, document)
     return topology

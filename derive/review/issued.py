@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 from typing import Any, Literal
 
 Kind = Literal["pdf", "html", "json"]
-SheetKind = Literal["sheet", "comparison", "redline"]
+SheetKind = Literal["sheet", "comparison", "redline", "handcheck"]
 # same: nothing differs. newer: an earlier version made it, and its results stand. differs: something does not.
 Standing = Literal["same", "newer", "differs"]
 Aspect = Literal["source", "ledger", "equation", "words", "drawing", "markup", "file", "derivation"]
@@ -52,10 +52,9 @@ class Issued:
 
     @property
     def holds(self) -> SheetKind:
-        """Whether it is the sheet of one topology, compares several, or says what changed between two."""
-        if "comparison" in self.ledger:
-            return "comparison"
-        return "redline" if "redline" in self.ledger else "sheet"
+        """Whether it is that of one topology, of several, of what changed between two, or of a hand derivation."""
+        kinds: tuple[SheetKind, ...] = ("comparison", "redline", "handcheck")
+        return next((kind for kind in kinds if kind in self.ledger), "sheet")
 
     @property
     def version(self) -> str:

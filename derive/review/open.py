@@ -4,12 +4,14 @@ from __future__ import annotations
 
 import os
 import stat
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
 from derive.errors import InputError
 from derive.review.issued import Carried, Issued, Kind
 from derive.review.json_text import CURE, read_any, read_object
+from derive.sheet.hand.names import stems
 
 LARGEST_SHEET = 64_000_000
 NO_SHEET = "name a sheet that nodeledger wrote: a .pdf, .html or .json file"
@@ -127,7 +129,7 @@ def _ledger(text: str, file: str) -> dict[str, Any]:
     made_by = ledger.get("made_by")
     maker = made_by if isinstance(made_by, dict) else {}
     shaped = isinstance(maker.get("version"), str)
-    kinds = [kind for kind in ("ledger", "comparison", "redline") if kind in ledger]
+    kinds = [kind for kind in ("ledger", "comparison", "redline", "handcheck") if kind in ledger]
     if not shaped or len(kinds) != 1:
         raise InputError("this is no ledger of a sheet", where=file, cure=NO_SHEET)
     if maker.get("name") != "nodeledger":
@@ -143,6 +145,10 @@ def sources_of(ledger: dict[str, Any], where: str = "ledger") -> list[Carried]:
     """
     if "redline" in ledger:
         return [_stage(ledger.get(side), side, where) for side in ("old", "new")]
+    if "handcheck" in ledger:
+        found = [_source(ledger.get(key), where) for key in ("hand", "topology")]
+        names = stems(*(each.file for each in found))
+        return [replace(each, stage=stem) for each, stem in zip(found, names, strict=True)]
     if "comparison" not in ledger:
         return [_source(ledger.get("topology"), where)]
     stages = ledger.get("stages")

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import partial
 from pathlib import Path
 
 from derive.approximate.questions import with_short_forms
@@ -47,6 +48,8 @@ def remake(issued: Issued, tell: Tell = lambda stage: None, look: Look = OURS) -
         sheet = _comparison(issued, tell)
     elif issued.holds == "redline":
         sheet = _redline(issued, tell)
+    elif issued.holds == "handcheck":
+        sheet = _hand(issued, tell)
     else:
         sheet, remarks = _sheet(issued, tell)
     tell("writing it again")
@@ -73,7 +76,7 @@ def name_of(issued: Issued) -> str:
 
 def _sheet(issued: Issued, tell: Tell) -> tuple[Sheet, tuple[str, ...]]:
     source = issued.sources[0]
-    topology = parse(source.text, source.file)
+    topology = parse(source.text, source.file, beside=partial(_carried_hand, issued))
     if any(isinstance(r, dict) and "simplified" in r for r in issued.ledger.get("results", [])):
         # The short forms may have been asked for on the command line: then no file says so.
         topology = with_short_forms(topology)
@@ -91,7 +94,9 @@ def _several(issued: Issued) -> tuple[list[str], list[Topology]]:
     if len(within) != len(issued.sources):
         raise InputError("the sources attached are not as many as the stages of the ledger")
     pairs = zip(issued.sources, within, strict=True)
-    return [own.stage for own in within], [parse(source.text, own.file) for source, own in pairs]
+    return [own.stage for own in within], [
+        parse(source.text, own.file, beside=None) for source, own in pairs
+    ]
 
 
 def _redline(issued: Issued, tell: Tell) -> Sheet:
@@ -110,6 +115,31 @@ def _comparison(issued: Issued, tell: Tell) -> Sheet:
     find = issued.ledger.get("find")
     wanted = find if isinstance(find, str) else None
     return compose_comparison(compare(topologies, names, wanted, lambda _, stage: tell(stage)))
+
+
+def _hand(issued: Issued, tell: Tell) -> Sheet:
+    from derive.hand import check_hand
+    from derive.handcheck.read import parse_hand
+    from derive.sheet.hand.compose import compose_hand
+
+    hand_source, source = issued.sources
+    own_hand, own = sources_of(issued.ledger)
+    hand = parse_hand(hand_source.text, own_hand.file)
+    topology = parse(source.text, own.file, beside=None)
+    checked = check_hand(hand, topology, own_hand.file, tell)
+    return compose_hand(checked.report, hand, topology, name_of(issued))
+
+
+def _carried_hand(issued: Issued, path: str) -> str:
+    """Give the text of the hand derivation that a sheet carries in its ledger.
+
+    Raises: InputError where it carries none.
+    """
+    hand = issued.ledger.get("hand")
+    text = hand.get("text") if isinstance(hand, dict) else None
+    if not isinstance(text, str):
+        raise InputError("the sheet does not carry it", where=path, cure="issue the sheet again")
+    return text
 
 
 def _engine(result: Result) -> Verdict | None:

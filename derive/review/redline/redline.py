@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 from collections.abc import Callable
+from dataclasses import replace
 from pathlib import Path
 
 from derive.errors import InputError
@@ -35,7 +36,8 @@ def redline_of(
     old: tuple[str, Topology], new: tuple[str, Topology], tell: Tell = lambda name, stage: None
 ) -> Redline:
     """Give all that changed between two topologies, each with the file that it was found in."""
-    sides = [_derived(file, topology, tell) for file, topology in (old, new)]
+    # What was written by hand beside a stage is no part of it, and no redline carries it.
+    sides = [_derived(file, replace(topology, hand=None), tell) for file, topology in (old, new)]
     before, after = sides
     changes = (
         *topology_changes(before.topology, after.topology),
@@ -72,7 +74,7 @@ def revision(file: str | os.PathLike[str]) -> Topology:
             where=name,
             cure="see what differs with nodeledger recheck",
         )
-    return parse(source.text, source.file)
+    return parse(source.text, source.file, beside=None)
 
 
 def _derived(file: str, topology: Topology, tell: Tell) -> Side:

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from pathlib import PurePath
-
 from derive.handcheck.report import HandFile, HandReport
 from derive.sheet.document import (
     Block,
@@ -19,6 +17,7 @@ from derive.sheet.document import (
 )
 from derive.sheet.hand.blocks import line_blocks, proof_block, summary_blocks
 from derive.sheet.hand.ledger import hand_ledger_text
+from derive.sheet.hand.names import stems
 from derive.sheet.hand.words import FURTHER, MEANINGS, VERDICTS, short_failures, summary
 from derive.sheet.sections.cautions import CAUTIONS
 from derive.topology.topology import Topology
@@ -81,10 +80,5 @@ def _meanings(report: HandReport) -> Block:
 
 def _sources(hand: HandFile, topology: Topology) -> tuple[Source, ...]:
     """Carry both files; each under its own name where they are called alike."""
-    stems = [PurePath(hand.file).stem, PurePath(topology.file).stem]
-    if stems[0] == stems[1]:
-        stems[1] = f"{stems[1]}_topology"
-    return (
-        Source(stems[0], hand.file, hand.text),
-        Source(stems[1], topology.file, topology.text),
-    )
+    first, second = stems(hand.file, topology.file)
+    return (Source(first, hand.file, hand.text), Source(second, topology.file, topology.text))
