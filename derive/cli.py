@@ -31,6 +31,8 @@ SHORT_FORMS = "find short forms within the budget of error"
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command and give the exit status."""
     _open_closed_streams()
+    # The matrices are small: threads of the linear algebra library cost more than they bring.
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     options = _parser().parse_args(arguments)
     _never_stumble_over_letters()
     try:
