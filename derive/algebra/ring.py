@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from functools import reduce
 from typing import Any
@@ -55,11 +55,17 @@ class Ring:
         return Ring(self.names, frozenset(), self.context)
 
 
-def ring(names: Iterable[str], inverted: Iterable[str] = ()) -> Ring:
-    """Make a ring; any text will do for a name, and the first name is the most significant."""
+def ring(
+    names: Iterable[str], inverted: Iterable[str] = (), numbers: Mapping[str, int] | None = None
+) -> Ring:
+    """Make a ring; any text will do for a name, and the first name is the most significant.
+
+    Given: `numbers` of the names, where polynomials of several rings are to have the same text if they are equal.
+    """
     ordered = tuple(names)
     # FLINT does not check generator names, and prints them: give it harmless ones of our own.
-    safe = [f"x{index}" for index in range(len(ordered))] or ["x0"]
+    places = range(len(ordered)) if numbers is None else [numbers[name] for name in ordered]
+    safe = [f"x{place}" for place in places] or ["x0"]
     return Ring(ordered, frozenset(inverted), fmpz_mpoly_ctx.get(safe, Ordering.lex))
 
 

@@ -56,18 +56,14 @@ def _sized(expression: Expression, values: Mapping[str, Fraction | Sized]) -> Si
         if expression.text not in values:
             raise DeriveError(f"no value is known for {expression.text}")
         known = values[expression.text]
-        return known if isinstance(known, tuple) else (known, abs(known))
+        return known if isinstance(known, tuple) else _alone(known)
     if isinstance(expression, Negative):
         value, size = _sized(expression.operand, values)
         return -value, size
     if isinstance(expression, Sum):
         return _sum(expression, values)
     if isinstance(expression, Product):
-        value, size = Fraction(1), Fraction(1)
-        for factor in expression.factors:
-            own, own_size = _sized(factor, values)
-            value, size = value * own, size * own_size
-        return value, size
+        return _product(expression, values)
     if isinstance(expression, Quotient):
         above, size = _sized(expression.numerator, values)
         below, _ = _sized(expression.denominator, values)
@@ -81,9 +77,28 @@ def _sized(expression: Expression, values: Mapping[str, Fraction | Sized]) -> Si
     raise DeriveError("an expression of this form has no exact value")
 
 
+def _alone(value: Fraction) -> Sized:
+    # What is not negative is its own size, as the same object: products and sums of such are worked once.
+    return value, value if value >= 0 else -value
+
+
+def _product(expression: Product, values: Mapping[str, Fraction | Sized]) -> Sized:
+    value = size = Fraction(1)
+    for factor in expression.factors:
+        own, own_size = _sized(factor, values)
+        if value is size and own is own_size:
+            value = size = value * own
+        else:
+            value, size = value * own, size * own_size
+    return value, size
+
+
 def _sum(expression: Sum, values: Mapping[str, Fraction | Sized]) -> Sized:
-    value, size = Fraction(0), Fraction(0)
+    value = size = Fraction(0)
     for term in expression.terms:
         own, own_size = _sized(term, values)
-        value, size = value + own, size + own_size
+        if value is size and own is own_size:
+            value = size = value + own
+        else:
+            value, size = value + own, size + own_size
     return (Fraction(0) if abs(value) < LEFT_OVER * size else value), size

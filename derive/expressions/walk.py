@@ -148,7 +148,11 @@ def _looked_up(node: Any, lookup: Any) -> Any:
     try:
         return lookup[node.text]
     except KeyError:
-        raise DeriveError(f'there is no value for "{node.text}"') from None
+        raise _without_value(node.text) from None
+
+
+def _without_value(name: str) -> DeriveError:
+    return DeriveError(f'there is no value for "{name}"')
 
 
 def _elided() -> DeriveError:
@@ -177,20 +181,24 @@ def evaluate_modulo(expression: Expression, lookup: Mapping[str, int], prime: in
     """
     try:
         return _residue(expression, lookup, prime)
+    except KeyError as error:
+        raise _without_value(error.args[0]) from None
     except ValueError as error:
         # pow says "base is not invertible for the given modulus".
         raise ZeroDivisionError(str(error)) from None
 
 
 def _residue(node: Expression, lookup: Mapping[str, int], prime: int) -> int:  # noqa: C901 - one branch a noun
-    # The commonest nouns of a long polynomial come first.
-    if isinstance(node, Name):
-        return int(_looked_up(node, lookup)) % prime
-    if isinstance(node, Product):
+    # The commonest nouns of a long polynomial come first, and the names in it are looked up on the spot.
+    kind = type(node)
+    if kind is Product:
         total = 1
-        for factor in node.factors:
-            total = total * _residue(factor, lookup, prime) % prime
+        for factor in node.factors:  # type: ignore[union-attr]
+            known = lookup[factor.text] if type(factor) is Name else _residue(factor, lookup, prime)
+            total = total * known % prime
         return total
+    if kind is Name:
+        return int(lookup[node.text]) % prime  # type: ignore[union-attr]
     if isinstance(node, Power):
         return pow(_residue(node.base, lookup, prime), node.exponent, prime)
     if isinstance(node, Sum):

@@ -20,6 +20,7 @@ from derive.quantities.dimension import (
 from derive.readable.clusters import Cluster, clustered
 from derive.readable.compose import Composer
 from derive.readable.measure import NAME, magnitude, measure
+from derive.readable.memory import Memory
 from derive.readable.search import AMPLIFIER_BONUS, BUDGET, Search
 from derive.readable.vocabulary import Junction, Vocabulary
 from derive.readable.words import WAYS, Way
@@ -39,9 +40,11 @@ SEARCH_DEEP, SEARCH_AT_ALL = 60, 160
 Candidate = tuple[Expression, int]
 
 
-def candidates(space: Workspace, ratio: Ratio, vocabulary: Vocabulary) -> Iterator[Candidate]:
+def candidates(
+    space: Workspace, ratio: Ratio, vocabulary: Vocabulary, memory: Memory
+) -> Iterator[Candidate]:
     """Give forms of a ratio, each with the bonus that is taken off its measure."""
-    desk = _Desk(space, vocabulary, _composer(vocabulary))
+    desk = _Desk(space, vocabulary, _composer(vocabulary), memory)
     reactive = _by_reactances(space, ratio, vocabulary)
     alone = all(len(names) == 1 for names, _ in reactive)
     if len(reactive) > 1:
@@ -56,7 +59,8 @@ def candidates(space: Workspace, ratio: Ratio, vocabulary: Vocabulary) -> Iterat
         else:
             yield desk.form(ratio, deep=alone), 0
         if vocabulary.amplifiers & set(space.names(ratio.top, ratio.bottom)):
-            yield _Desk(space, vocabulary, desk.composer, ideal=True).form(ratio), AMPLIFIER_BONUS
+            ideal = _Desk(space, vocabulary, desk.composer, memory, ideal=True)
+            yield ideal.form(ratio), AMPLIFIER_BONUS
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,6 +68,7 @@ class _Desk:
     space: Workspace
     vocabulary: Vocabulary
     composer: Composer
+    memory: Memory
     ideal: bool = False
 
     def form(self, ratio: Ratio, *, deep: bool = True, corner: bool = False) -> Expression:
@@ -72,6 +77,13 @@ class _Desk:
         Not `deep`: the words are chosen by how long the ratio looks as one fraction, and only those searched.
         A `corner` frequency is written with g_m/C and not with r_e.
         """
+        key = ratio.key, deep, corner, self.ideal
+        found = self.memory.forms.get(key)
+        if found is None:
+            found = self.memory.forms[key] = self._form(ratio, deep, corner)
+        return found
+
+    def _form(self, ratio: Ratio, deep: bool, corner: bool) -> Expression:
         space = self.space
         best: Expression | None = None
         for junction in self.vocabulary.junctions:
@@ -142,6 +154,7 @@ class _Desk:
             vocabulary.output_side or {},
             vocabulary.amplifiers if self.ideal else frozenset(),
             budget,
+            self.memory.shelf((self.ideal, *weights.items())),
         )
 
     def _joined(self, cluster: Cluster, stands_for: dict[str, Expression]) -> Expression:

@@ -9,7 +9,7 @@ names stand first.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from fractions import Fraction
 
 from derive.expressions.polynomials import add, divide, multiply
@@ -26,7 +26,7 @@ from derive.expressions.tree import (
     Quotient,
     Sum,
 )
-from derive.expressions.walk import children_of, names_of
+from derive.expressions.walk import children_of
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,6 +35,8 @@ class Composer:
 
     rank: Mapping[str, int]
     words: frozenset[str]
+    # By identity, with the expression itself, so that no other can come to have its address.
+    ranks: dict[int, tuple[Expression, int | None, bool]] = field(default_factory=dict)
 
     def product(self, factors: Sequence[Expression]) -> Expression:
         """Multiply; signs go to the front, divisors share one fraction bar."""
@@ -49,17 +51,22 @@ class Composer:
         minus = False
         sides: dict[bool, list[Expression]] = {True: [], False: []}
         dividers: list[Quotient] = []
+        pending.reverse()
         while pending:
-            factor, side = pending.pop(0)
-            if isinstance(factor, Negative):
+            factor, side = pending.pop()
+            kind = type(factor)
+            if kind is Name:
+                sides[side].append(factor)
+            elif isinstance(factor, Negative):
                 minus = not minus
-                pending.insert(0, (factor.operand, side))
+                pending.append((factor.operand, side))
             elif isinstance(factor, Product):
-                pending[:0] = [(inner, side) for inner in factor.factors]
-            elif isinstance(factor, Quotient) and side and is_divider(factor):
-                dividers.append(factor)
+                pending += [(inner, side) for inner in reversed(factor.factors)]
             elif isinstance(factor, Quotient):
-                pending[:0] = [(factor.numerator, side), (factor.denominator, not side)]
+                if side and is_divider(factor):
+                    dividers.append(factor)
+                else:
+                    pending += [(factor.denominator, not side), (factor.numerator, side)]
             else:
                 sides[side].append(factor)
         for factor in [d for d in dividers if _other(d) in sides[True]]:
@@ -149,7 +156,7 @@ class Composer:
         if isinstance(factor, Name):
             words_first = 1 if factor.text in self.words else 2
             return words_first, self.rank.get(factor.text, 0)
-        if isinstance(factor, Sum) and set(names_of(factor)) <= self.words:
+        if isinstance(factor, Sum) and self._of_words(factor):
             return 1, len(self.rank)
         if isinstance(factor, Parallel):
             return 3, self._rank_of(factor)
@@ -172,10 +179,27 @@ class Composer:
         """Whether a factor is 1 + g·R, and not 1 + β alone."""
         if not (isinstance(factor, Sum) and ONE in factor.terms):
             return False
-        return not set(names_of(factor)) <= self.words
+        return not self._of_words(factor)
 
     def _rank_of(self, expression: Expression) -> int:
-        return min((self.rank.get(name, 0) for name in names_of(expression)), default=0)
+        return self._ranked(expression)[1] or 0
+
+    def _of_words(self, expression: Expression) -> bool:
+        return self._ranked(expression)[2]
+
+    def _ranked(self, expression: Expression) -> tuple[Expression, int | None, bool]:
+        """Give an expression, the rank of its first name, and whether all its names are words."""
+        found = self.ranks.get(id(expression))
+        if found is None:
+            if isinstance(expression, Name):
+                rank: int | None = self.rank.get(expression.text, 0)
+                found = expression, rank, expression.text in self.words
+            else:
+                inner = [self._ranked(child) for child in children_of(expression)]
+                known = [rank for _, rank, _ in inner if rank is not None]
+                found = expression, min(known, default=None), all(words for _, _, words in inner)
+            self.ranks[id(expression)] = found
+        return found
 
 
 def is_divider(expression: Quotient) -> bool:

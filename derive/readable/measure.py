@@ -6,7 +6,8 @@ bare 1) can count less than one name each.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
 from fractions import Fraction
 
 from derive.expressions.tree import (
@@ -29,34 +30,55 @@ NAME, NUMBER, UNIT, MARK = 4, 3, 2, 1
 
 def measure(expression: Expression, weights: Mapping[str, int] | None = None) -> int:
     """Give the length of an expression for a reader; `weights` are those of names that stand for more."""
-    if isinstance(expression, Name):
-        return (weights or {}).get(expression.text, NAME)
-    if isinstance(expression, Number):
-        return UNIT if expression == ONE else NUMBER
-    total = sum(measure(child, weights) for child in children_of(expression))
-    if isinstance(expression, Parallel) and all(isinstance(b, Name) for b in expression.branches):
-        # R_1 ∥ R_2 is read as one resistance.
-        return total - 2 * MARK * (len(expression.branches) - 1)
-    if isinstance(expression, Power):
-        return total + 2 * MARK
-    if isinstance(expression, Negative | Parallel):
-        return total + MARK
-    if isinstance(expression, Product):
-        return total + MARK * sum(isinstance(factor, Sum) for factor in expression.factors)
-    if isinstance(expression, Quotient):
+    return Ruler(weights or {}).measure(expression)
+
+
+@dataclass(slots=True, eq=False)
+class Ruler:
+    """Measures many expressions that share their parts: each part is measured once."""
+
+    weights: Mapping[str, int]
+    # By identity, with the part itself, so that no other can come to have its address.
+    known: dict[int, tuple[Expression, int, bool]] = field(default_factory=dict)
+
+    def measure(self, expression: Expression) -> int:
+        """Give the length of an expression for a reader."""
+        return self._measured(expression)[1]
+
+    def _measured(self, expression: Expression) -> tuple[Expression, int, bool]:
+        """Give an expression, its length, and whether there is a fraction in it."""
+        found = self.known.get(id(expression))
+        if found is None:
+            kind = type(expression)
+            if kind is Name:
+                length, fraction = self.weights.get(expression.text, NAME), False  # type: ignore[union-attr]
+            elif kind is Number:
+                length, fraction = UNIT if expression == ONE else NUMBER, False
+            else:
+                inner = [self._measured(child) for child in children_of(expression)]
+                fraction = kind is Quotient or any(has for _, _, has in inner)
+                length = sum(part for _, part, _ in inner) + _marks(expression, inner)
+            found = self.known[id(expression)] = expression, length, fraction
+        return found
+
+
+def _marks(expression: Expression, inner: Sequence[tuple[Expression, int, bool]]) -> int:
+    """Give what an expression adds to the lengths of its operands."""
+    kind = type(expression)
+    if kind is Product:
+        return MARK * sum(type(factor) is Sum for factor, _, _ in inner)
+    if kind is Quotient:
         # Fractions within fractions are what makes a formula hard to read.
-        below, above = _fraction_in(expression.denominator), _fraction_in(expression.numerator)
-        if is_divider(expression):
-            return total - 2 * MARK
-        marks = 1 + isinstance(expression.denominator, Sum | Product) + 4 * below + 2 * above
-        return total + MARK * marks
-    return total
-
-
-def _fraction_in(expression: Expression) -> bool:
-    if isinstance(expression, Quotient):
-        return True
-    return any(map(_fraction_in, children_of(expression)))
+        (_, _, above), (under, _, below) = inner
+        if is_divider(expression):  # type: ignore[arg-type]
+            return -2 * MARK
+        return MARK * (1 + isinstance(under, Sum | Product) + 4 * below + 2 * above)
+    if kind is Power:
+        return 2 * MARK
+    if kind is Parallel and all(type(branch) is Name for branch, _, _ in inner):
+        # R_1 ∥ R_2 is read as one resistance.
+        return -2 * MARK * (len(inner) - 1)
+    return MARK if kind in (Negative, Parallel) else 0
 
 
 def leaves(expression: Expression) -> int:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from functools import lru_cache
 
 from derive.algebra.ring import Polynomial, Ring, moved, used_names
@@ -13,9 +13,9 @@ from derive.normalise.form import NormalForm
 from derive.readable.candidates import candidates
 from derive.readable.form import Definition, ReadableForm, used_in
 from derive.readable.measure import leaves, measure
+from derive.readable.memory import memory_of
 from derive.readable.prove import ratio_of, same_ratio
-from derive.readable.vocabulary import Vocabulary
-from derive.readable.workspace import workspace_of
+from derive.readable.vocabulary import Junction, Vocabulary
 
 # Ratios of more terms are written as they are: nobody reads them, and the search would be slow.
 LONGEST = 400
@@ -59,10 +59,12 @@ def _worked(question: _Question) -> Expression:
     raw = Writer(ring, _writing_order(ring, vocabulary)).ratio(numerator, denominator)
     if len(numerator) + len(denominator) > LONGEST or numerator == 0:
         return raw
-    space = workspace_of(_names(ring, (numerator, denominator), vocabulary))
+    words = _words(vocabulary.junctions)
+    memory = memory_of((*words, *(name for name in ring.names if name not in words)), vocabulary.key)
+    space = memory.space(_names(ring, (numerator, denominator), vocabulary))
     ratio = space.ratio(moved(numerator, ring, space.ring), moved(denominator, ring, space.ring))
     best, least = raw, measure(raw)
-    for candidate, bonus in candidates(space, ratio, vocabulary):
+    for candidate, bonus in candidates(space, ratio, vocabulary, memory):
         length = measure(candidate) - bonus
         if length < least and _never_longer(candidate, raw):
             best, least = candidate, length
@@ -79,13 +81,14 @@ def _writing_order(ring: Ring, vocabulary: Vocabulary) -> tuple[str, ...]:
 def _names(ring: Ring, polynomials: Sequence[Polynomial], vocabulary: Vocabulary) -> tuple[str, ...]:
     """Give the names that occur, and those of the words that can stand for some of them."""
     used = used_names(ring, polynomials)
-    words = [
-        word
-        for junction in vocabulary.junctions
-        if junction.g_m in used and junction.r_pi in used
-        for word in (junction.beta, junction.r_e, junction.alpha)
+    known = [
+        junction for junction in vocabulary.junctions if junction.g_m in used and junction.r_pi in used
     ]
-    return (*words, *used)
+    return (*_words(known), *used)
+
+
+def _words(junctions: Iterable[Junction]) -> tuple[str, ...]:
+    return tuple(word for j in junctions for word in (j.beta, j.r_e, j.alpha))
 
 
 def _never_longer(candidate: Expression, raw: Expression) -> bool:

@@ -19,7 +19,8 @@ from derive.expressions.tree import ONE, ZERO, Expression, Name, Negative, Numbe
 from derive.quantities.dimension import Dimension
 from derive.readable import rewrites as folder
 from derive.readable.compose import Composer
-from derive.readable.measure import NAME, measure
+from derive.readable.measure import NAME, Ruler
+from derive.readable.memory import Record, Shelf
 from derive.readable.workspace import Pieces, Ratio, Workspace
 
 # Ratios looked at for one result; a stage of three nodes takes some dozens.
@@ -74,41 +75,71 @@ class Search:
     output_side: Mapping[str, frozenset[str]]
     amplifiers: frozenset[str] = frozenset()
     left: int = BUDGET
+    shelf: Shelf = field(default_factory=Shelf)
     found: dict[str, Expression] = field(default_factory=dict)
-    guesses: dict[str, int] = field(default_factory=dict)
     open: set[str] = field(default_factory=set)
-    written: dict[str, Expression] = field(default_factory=dict)
+    record: Record = field(default_factory=Record)
+    ruler: Ruler = field(init=False)
+
+    def __post_init__(self) -> None:
+        self.ruler = Ruler(self.weights)
 
     def best(self, ratio: Ratio) -> Expression:
         """Give the shortest form found."""
         if ratio.top == 0:
             return ZERO
-        known = self.found.get(ratio.key)
-        if known is not None:
-            return known
         if ratio.minus:
             best = self.best(Ratio(ratio.top, ratio.bottom))
             return best.operand if isinstance(best, Negative) else Negative(best)
-        if ratio.key in self.open or len(ratio.top) == 1 == len(ratio.bottom) or self.left <= 0:
-            # What is asked for again while it is being worked is written as it stands.
+        if len(ratio.top) == 1 == len(ratio.bottom):
             return self.whole(ratio)
+        known = self.found.get(ratio.key)
+        if known is not None:
+            self.record.used(ratio.key)
+            return known
+        if ratio.key in self.open or self.left <= 0:
+            # What is asked for again while it is being worked is written as it stands.
+            self.record.spoil()
+            return self.whole(ratio)
+        return self._taken_over(ratio.key) or self._worked(ratio)
+
+    def _taken_over(self, key: str) -> Expression | None:
+        """Give what an earlier search came to, where this one would come to the same and count as much."""
+        settled = self.shelf.settled.get(key)
+        if settled is None:
+            return None
+        best, needs = settled
+        new = [need for need in needs if need not in self.found]
+        if len(new) > self.left or not self.open.isdisjoint(needs) or self.record.spoilt(needs):
+            return None
+        self.left -= len(new)
+        for need in new:
+            self.found[need], self.record.closures[need] = self.shelf.settled[need]
+        self.record.used(key)
+        return best
+
+    def _worked(self, ratio: Ratio) -> Expression:
+        key = ratio.key
         self.left -= 1
-        self.open.add(ratio.key)
-        best = self._shortest(ratio)
-        self.open.remove(ratio.key)
-        self.found[ratio.key] = best
+        self.open.add(key)
+        self.record.begin(key)
+        best = self.found[key] = self._shortest(ratio)
+        self.open.remove(key)
+        needs = self.record.end(key)
+        if needs is not None:
+            self.shelf.settled[key] = best, needs
         return best
 
     def _shortest(self, ratio: Ratio) -> Expression:
         """Work out the proposals that look shortest before their parts are shortened, and keep the best."""
-        best = self.whole(ratio)
-        least = self.measure(best)
         looks: list[tuple[int, int, Proposal]] = []
         for proposal in self._proposals(ratio):
             if proposal.bonus >= CERTAIN:
                 return proposal.build(*map(self.best, proposal.parts))
             look = sum(map(self.guess, proposal.parts)) - proposal.bonus
             looks.append((look, len(looks), proposal))
+        best = self.whole(ratio)
+        least = self.measure(best)
         for _, _, proposal in sorted(looks, key=lambda look: look[:2])[:BEAM]:
             form = proposal.build(*map(self.best, proposal.parts))
             length = self.measure(form) - proposal.bonus
@@ -122,36 +153,37 @@ class Search:
 
     def guess(self, ratio: Ratio) -> int:
         """Guess how long a ratio will be, from what its factors are made of, without writing it."""
-        return self._guessed(ratio.top) + self._guessed(ratio.bottom)
+        return self._guessed(ratio.top, ratio.above) + self._guessed(ratio.bottom, ratio.below)
 
-    def _guessed(self, polynomial: Polynomial) -> int:
-        key = str(polynomial)
-        known = self.guesses.get(key)
+    def _guessed(self, polynomial: Polynomial, key: str) -> int:
+        known = self.shelf.guesses.get(key)
         if known is None:
-            pieces = self.space.pieces(polynomial)
+            pieces = self.space.pieces(polynomial, key)
             known = NAME * sum(pieces.powers.values())
             for factor in pieces.sums:
                 names = len(self.space.names(factor))
                 # Taken out again and again, a name stands once, and once more for every two terms beyond.
                 known += NAME * names + NAME * max(0, len(factor) - names) // 2
-            self.guesses[key] = known
+            self.shelf.guesses[key] = known
         return known
 
     def measure(self, expression: Expression) -> int:
         """Give an expression's length."""
-        return measure(expression, self.weights)
+        return self.ruler.measure(expression)
 
     def whole(self, ratio: Ratio) -> Expression:
         """Write a ratio as one fraction, factors and common parts taken out above and below."""
-        result = self.composer.quotient(self.polynomial(ratio.top), self.polynomial(ratio.bottom))
+        above = self.polynomial(ratio.top, ratio.above)
+        result = self.composer.quotient(above, self.polynomial(ratio.bottom, ratio.below))
         return Negative(result) if ratio.minus else result
 
-    def polynomial(self, polynomial: Polynomial) -> Expression:
+    def polynomial(self, polynomial: Polynomial, key: str | None = None) -> Expression:
         """Write a polynomial with its common factors taken out, again and again."""
-        key = str(polynomial)
-        known = self.written.get(key)
+        key = key or str(polynomial)
+        known = self.shelf.written.get(key)
         if known is None:
-            known = self.written[key] = self._assembled(self.space.pieces(polynomial))
+            pieces = self.space.pieces(polynomial, key)
+            known = self.shelf.written[key] = self._assembled(pieces)
         return known
 
     def _assembled(self, pieces: Pieces) -> Expression:
@@ -169,8 +201,9 @@ class Search:
     def _nested(self, polynomial: Polynomial) -> Expression:
         """Write an irreducible sum as name·(…) + rest, with the name that makes it shortest."""
         space = self.space
-        names = [name for name in space.names(polynomial) if space.degree(polynomial, name) == 1]
-        counts = {name: len(polynomial.derivative(space.ring.names.index(name))) for name in names}
+        degrees = zip(space.ring.names, polynomial.degrees(), strict=False)
+        names = [name for name, degree in degrees if degree == 1]
+        counts = {name: len(polynomial.derivative(space.places[name])) for name in names}
         names = [name for name in names if counts[name] < len(polynomial)]
         if len(polynomial) > WIDE:
             names = sorted(names, key=lambda name: -counts[name])[:1]

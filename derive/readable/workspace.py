@@ -4,13 +4,14 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from functools import cached_property
 
 from derive.algebra.ratio import lowest_terms
-from derive.algebra.ring import Polynomial, Ring, negative, used_names
+from derive.algebra.ring import Polynomial, Ring, negative
 from derive.algebra.ring import ring as make_ring
 
 
-@dataclass(frozen=True, slots=True, eq=False)
+@dataclass(frozen=True, eq=False)
 class Ratio:
     """top/bottom in lowest terms, most of the terms of each positive; `minus` is the sign in front."""
 
@@ -18,10 +19,20 @@ class Ratio:
     bottom: Polynomial
     minus: bool = False
 
-    @property
+    @cached_property
+    def above(self) -> str:
+        """A text that is the same for the same numerator."""
+        return str(self.top)
+
+    @cached_property
+    def below(self) -> str:
+        """A text that is the same for the same denominator."""
+        return str(self.bottom)
+
+    @cached_property
     def key(self) -> str:
         """A text that is the same for the same ratio."""
-        return f"{'-' if self.minus else ''}{self.top}/{self.bottom}"
+        return f"{'-' if self.minus else ''}{self.above}/{self.below}"
 
     @property
     def length(self) -> int:
@@ -44,10 +55,17 @@ class Workspace:
 
     ring: Ring
     factors: dict[str, Pieces] = field(default_factory=dict)
+    places: dict[str, int] = field(init=False)
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "places", {name: place for place, name in enumerate(self.ring.names)})
 
     def ratio(self, top: Polynomial, bottom: Polynomial, minus: bool = False) -> Ratio:
         """Give a ratio in lowest terms, its sign in front."""
-        top, bottom = lowest_terms(self.ring, top, bottom)
+        return self.signed(*lowest_terms(self.ring, top, bottom), minus)
+
+    def signed(self, top: Polynomial, bottom: Polynomial, minus: bool = False) -> Ratio:
+        """Give a ratio of two that share nothing, its sign in front."""
         if negative(top):
             top, minus = -top, not minus
         if negative(bottom):
@@ -56,22 +74,25 @@ class Workspace:
 
     def names(self, *polynomials: Polynomial) -> tuple[str, ...]:
         """Give the names that occur, in the ring's order."""
-        return used_names(self.ring, polynomials)
+        degrees = [polynomial.degrees() for polynomial in polynomials]
+        found = degrees[0] if len(degrees) == 1 else map(max, *degrees)
+        return tuple(name for name, degree in zip(self.ring.names, found, strict=False) if degree > 0)
 
     def degree(self, polynomial: Polynomial, name: str) -> int:
         """Give the highest power of a name."""
-        return int(polynomial.degrees()[self.ring.names.index(name)])
+        return int(polynomial.degrees()[self.places[name]])
 
     def split(self, polynomial: Polynomial, name: str) -> tuple[Polynomial, Polynomial] | None:
         """Give (p_0, p_1) with p = p_0 + name·p_1; None where the name has a higher power."""
-        if self.degree(polynomial, name) > 1:
+        place = self.places[name]
+        if polynomial.degrees()[place] > 1:
             return None
-        slope = polynomial.derivative(self.ring.names.index(name))
-        return polynomial - self.ring.generator(name) * slope, slope
+        slope = polynomial.derivative(place)
+        return polynomial - self.ring.context.gen(place) * slope, slope
 
-    def pieces(self, polynomial: Polynomial) -> Pieces:
-        """Take a polynomial apart."""
-        key = str(polynomial)
+    def pieces(self, polynomial: Polynomial, key: str | None = None) -> Pieces:
+        """Take a polynomial apart; `key` is its text, where that is known."""
+        key = key or str(polynomial)
         found = self.factors.get(key)
         if found is None:
             found = self.factors[key] = self._pieces(polynomial)
@@ -92,6 +113,6 @@ class Workspace:
         return Pieces(number, ordered, tuple(sorted(sums, key=lambda p: (len(p), str(p)))))
 
 
-def workspace_of(names: tuple[str, ...]) -> Workspace:
-    """Make a workspace over these names."""
-    return Workspace(make_ring(names))
+def workspace_of(names: tuple[str, ...], numbers: Mapping[str, int] | None = None) -> Workspace:
+    """Make a workspace over these names; with `numbers`, keys are the same in all workspaces."""
+    return Workspace(make_ring(names, numbers=numbers))

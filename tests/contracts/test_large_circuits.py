@@ -103,7 +103,8 @@ def test_nested_form_can_be_asked_for():
 
 
 def test_expanded_form_can_be_asked_for():
-    results = derive(parse(text_of("random8", "expanded"), "random8.toml"), other_engine=False)
+    topology = parse(text_of("random8", "expanded"), "random8.toml")
+    results = derive(topology, other_engine=False, explain=False)
     derivation = results.outcome.results[0].solution.derivation
     assert results.passed
     assert derivation.nested is None

@@ -22,10 +22,12 @@ def propose(ratio: Ratio, search: Search) -> Iterator[Proposal]:
         return search.composer.product([rest, part])
 
     for top, bottom in _pairs(ratio, search):
-        part = space.ratio(top, bottom)
-        # rest = ratio/part
-        rest = space.ratio(ratio.top * part.bottom, ratio.bottom * part.top, part.minus)
-        if rest.top == rest.bottom or part.top == part.bottom or part.key in seen:
+        # Factors of what shares nothing share nothing, and nor does what is left.
+        part = space.signed(top, bottom)
+        if part.key in seen or part.top == part.bottom:
+            continue
+        rest = space.signed(ratio.top / part.top, ratio.bottom / part.bottom, part.minus)
+        if rest.top == rest.bottom:
             continue
         if part.length >= ratio.length and rest.length >= ratio.length:
             continue

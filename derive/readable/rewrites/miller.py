@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+from derive.algebra.ratio import lowest_terms
 from derive.expressions.tree import ONE, Expression, Name
 from derive.readable.rewrites.series import splits
 from derive.readable.search import Proposal, Search
@@ -23,8 +24,10 @@ def propose(ratio: Ratio, search: Search) -> Iterator[Proposal]:
     for name, rest, slope in splits(ratio, search):
         if slope.minus or rest.minus or len(rest.top) == 0:
             continue
-        # g = (slope - 1)/rest
-        gain = space.ratio((slope.top - slope.bottom) * rest.bottom, slope.bottom * rest.top)
+        # g = (slope - 1)/rest; above and below share only what one fraction has above and the other below.
+        above, under = lowest_terms(space.ring, slope.top - slope.bottom, rest.top)
+        over, below = lowest_terms(space.ring, rest.bottom, slope.bottom)
+        gain = space.signed(above * over, below * under)
         if gain.top == 0 or gain.length >= slope.length:
             continue
 
