@@ -112,6 +112,9 @@ def _parser() -> argparse.ArgumentParser:
 def _add_handcheck(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
     handcheck = commands.add_parser("handcheck", help="check a derivation by hand, line by line")
     handcheck.add_argument("file", metavar="FILE", help="file of the derivation")
+    handcheck.add_argument(
+        "--exact", action="store_true", help="prove true lines by exact algebra as well"
+    )
     handcheck.add_argument("--out", metavar="DIR", help="folder to write a sheet of it to")
     handcheck.add_argument("--only", metavar="KINDS", help="of html,pdf,json")
     handcheck.add_argument("--quiet", action="store_true", help="no progress on standard error")
@@ -214,7 +217,7 @@ def _handcheck(options: argparse.Namespace) -> int:
     name = hand_name(options.file)
     with Progress(1, 2 + len(kinds), quiet=options.quiet) as progress:
         tell = partial(progress.tell, name)
-        checked = check_hand_file(options.file, tell)
+        checked = check_hand_file(options.file, tell, exact=options.exact)
         written = () if folder is None else write_hand(checked, name, folder, kinds, tell)
     sys.stdout.write(plain_report(checked.report, _width(), colour=_may_colour()))
     _tell_written(written)

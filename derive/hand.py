@@ -34,20 +34,28 @@ class Checked:
 
 
 def check_hand_file(
-    file: str | os.PathLike[str], tell: Callable[[str], None] = lambda stage: None
+    file: str | os.PathLike[str],
+    tell: Callable[[str], None] = lambda stage: None,
+    *,
+    exact: bool = False,
 ) -> Checked:
     """Check every line of a hand derivation against the topology that its file names.
 
-    Given: `tell`, which is told each stage that begins.
+    Given: `tell`, which is told each stage that begins; `exact`, whether true lines are also multiplied out.
     Raises: InputError where the file or its topology cannot be used.
     """
     name = os.fspath(file)
     hand = read_hand(name)
-    return check_hand(hand, read(_topology_of(hand, name)), name, tell)
+    return check_hand(hand, read(_topology_of(hand, name)), name, tell, exact=exact)
 
 
 def check_hand(
-    hand: HandFile, topology: Topology, name: str, tell: Callable[[str], None] = lambda stage: None
+    hand: HandFile,
+    topology: Topology,
+    name: str,
+    tell: Callable[[str], None] = lambda stage: None,
+    *,
+    exact: bool = False,
 ) -> Checked:
     """Check every line of a hand derivation against its topology; `name` is what messages point to.
 
@@ -59,7 +67,7 @@ def check_hand(
     tell(f"deriving {find.name}, {band} band")
     solution = solve(restrict(circuit, band), find, explain=False)
     tell("checking the lines")
-    return Checked(hand, topology, check_lines(solution, hand))
+    return Checked(hand, topology, check_lines(solution, hand, exact=exact))
 
 
 def write_hand(

@@ -15,7 +15,7 @@ from derive.handcheck.mend import Mender
 from derive.handcheck.names import Names
 from derive.handcheck.points import UndecidedError
 from derive.handcheck.price import Pricer
-from derive.handcheck.prove import proved_exactly
+from derive.handcheck.prove import DIFFERENT, proved_exactly
 from derive.handcheck.report import (
     Edit,
     HandDefinition,
@@ -123,7 +123,12 @@ class _Work:
         sources = self.causes.sources(left, right, item.line.number, wrong=False)
         proof = item.proof
         if self.exact:
-            proof = f"{proof}; {proved_exactly(self.solved, left, right)}"
+            exactly = proved_exactly(self.solved, left, right)
+            proof = f"{proof}; {exactly}"
+            if exactly == DIFFERENT:
+                return LineVerdict(
+                    item.line, "mistake", "its sides differ when multiplied out", proof=proof
+                )
         if sources is None:
             why = (
                 LEAP

@@ -119,6 +119,7 @@ def _comparison(issued: Issued, tell: Tell) -> Sheet:
 
 def _hand(issued: Issued, tell: Tell) -> Sheet:
     from derive.hand import check_hand
+    from derive.handcheck.prove import IDENTICAL
     from derive.handcheck.read import parse_hand
     from derive.sheet.hand.compose import compose_hand
 
@@ -126,7 +127,9 @@ def _hand(issued: Issued, tell: Tell) -> Sheet:
     own_hand, own = sources_of(issued.ledger)
     hand = parse_hand(hand_source.text, own_hand.file)
     topology = parse(source.text, own.file, beside=None)
-    checked = check_hand(hand, topology, own_hand.file, tell)
+    lines = issued.ledger["hand"].get("lines", [])
+    exact = any(IDENTICAL in str(line.get("proof")) for line in lines if isinstance(line, dict))
+    checked = check_hand(hand, topology, own_hand.file, tell, exact=exact)
     return compose_hand(checked.report, hand, topology, name_of(issued))
 
 

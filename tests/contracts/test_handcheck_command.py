@@ -12,9 +12,11 @@ import pikepdf
 import pytest
 
 import derive.batch
+import derive.handcheck.check_lines as check_lines
 import derive.render.pdf
 from derive.cli import main
 from derive.errors import InputError, OutputError
+from derive.handcheck.prove import DIFFERENT
 from derive.pipeline import derive as worked
 from derive.reading.read import read
 
@@ -172,6 +174,22 @@ def test_files_are_written_where_a_folder_is_named(folder, capsys):
         path.unlink()
     main(["handcheck", "second_try.toml", "--out", "made", "--only", "html,json", "--quiet"])
     assert first == {path.name: path.read_bytes() for path in (folder / "made").iterdir()}
+
+
+def test_on_request_true_lines_are_multiplied_out_as_well(folder, monkeypatch):
+    (folder / "exact.toml").write_text(HAND, encoding="utf-8")
+
+    def proofs():
+        status = main(["handcheck", "exact.toml", "--exact", "--out", "out", "--only", "json", "--quiet"])
+        lines = json.loads((folder / "out" / "exact.json").read_text(encoding="utf-8"))["hand"]["lines"]
+        return status, [line["proof"] for line in lines]
+
+    status, told = proofs()
+    assert status == 0
+    assert all("identical when multiplied out" in proof for proof in told)
+    monkeypatch.setattr(check_lines, "proved_exactly", lambda *sides: DIFFERENT)
+    status, told = proofs()
+    assert status == 1
 
 
 def test_the_sheet_of_a_file_called_hand_is_named_after_its_folder(folder):

@@ -49,6 +49,7 @@ def folder(tmp_path_factory):
     for kind in KINDS:
         (folder / f"section.{kind}").write_bytes(write(compose(outcome, "section"), kind))
     write_hand(check_hand_file(sources / "by_hand.toml"), "by_hand", folder, KINDS)
+    write_hand(check_hand_file(sources / "by_hand.toml", exact=True), "exactly", folder, ["json"])
     for file in sources.iterdir():
         file.unlink()
     return folder
@@ -65,6 +66,11 @@ def without_the_other_engine(monkeypatch):
 def test_a_sheet_with_a_derivation_by_hand_is_the_same_from_its_file_alone(name, kind, folder):
     found = recheck(open_bytes((folder / f"{name}.{kind}").read_bytes(), f"{name}.{kind}"))
     assert (found.standing, found.differences) == ("same", ())
+
+
+def test_a_sheet_whose_lines_were_multiplied_out_is_the_same(folder):
+    found = recheck(open_bytes((folder / "exactly.json").read_bytes(), "exactly.json"))
+    assert found.standing == "same"
 
 
 @pytest.mark.parametrize("kind", ["json", "html"])
