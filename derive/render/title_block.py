@@ -45,7 +45,7 @@ def title_rows(sheet: Sheet) -> list[list[Cell]]:
     short = [f for f in fields if len(f.text) <= _LONG_FIELD and "\n" not in f.text]
     entries = [(field, "") for field in short]
     if sheet.passed:
-        entries.append((Field("Status", "✓ all checks passed"), "status pass"))
+        entries.append((Field("Status", f"✓ {_passed(sheet)}"), "status pass"))
     else:
         entries.append((Field("Status", f"✗ {_failed(sheet)}"), "status fail"))
     last = [[Cell("Source", sheet.topology_name, 12, "digest")]]
@@ -56,6 +56,10 @@ def title_rows(sheet: Sheet) -> list[list[Cell]]:
         ]
     long = [[Cell(f.label, f.text, 12, "long")] for f in fields if f not in short]
     return [first, *_spread(entries), *long, *last]
+
+
+def _passed(sheet: Sheet) -> str:
+    return f"no check failed, {sheet.left_open} left open" if sheet.left_open else "all checks passed"
 
 
 def _failed(sheet: Sheet) -> str:

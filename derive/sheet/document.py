@@ -96,11 +96,15 @@ class Column:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """A table with a caption; every row has one line of inline content a column."""
+    """A table with a caption; every row has one line of inline content a column.
+
+    `by_hand` says whether it has room for what people write into it on paper.
+    """
 
     caption: str
     columns: tuple[Column, ...]
     rows: tuple[tuple[Line, ...], ...]
+    by_hand: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -262,8 +266,9 @@ class Source:
 class Sheet:
     """The whole document, with the files that it carries.
 
-    `passed` says whether no check failed; `failures` names those that did, for the first page. A sheet on
-    several topologies has them in `sources`, and no topology of its own.
+    `passed` says whether no check failed; `failures` names those that did, for the first page, `left_open`
+    counts those that did not come to an end. A sheet on several topologies has them in `sources`, and no topology
+    of its own.
     """
 
     title: str
@@ -277,3 +282,4 @@ class Sheet:
     ledger_text: str
     language: str = "en"
     sources: tuple[Source, ...] = ()
+    left_open: int = 0
