@@ -159,7 +159,8 @@ class Breaker:
             if made and _beside(made[-1], new[0]).full_width <= limit:
                 made[-1] = _beside(made[-1], new[0])
             elif made:
-                made.append(replace(new[0], sign="·"))
+                source = new[0].source.removeprefix("dot ")
+                made.append(replace(new[0], source=source, sign="·"))
             else:
                 made.append(new[0])
             made.extend(new[1:])

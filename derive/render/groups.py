@@ -79,6 +79,8 @@ def _kept(blocks: tuple[Block, ...]) -> int:
     match blocks:
         case (Paragraph(), Display(), *_):
             return 2
+        case (Paragraph(), Paragraph(), Display(), *_):
+            return 3
         case (Paragraph(), Table(_, _, rows), *_) if len(rows) <= SHORT_TABLE:
             return 2
         case (Table(_, _, rows), *_) if len(rows) > SHORT_TABLE:

@@ -12,6 +12,7 @@ from derive.expressions.tree import Equation, Expression
 from derive.expressions.unicode_text import to_unicode
 from derive.render.circuit import circuit_svg, share_of_page
 from derive.render.groups import SHORT_TABLE, Heading, groups
+from derive.render.line_ends import on_paper
 from derive.render.look import OURS, Look
 from derive.render.maths import (
     PARAGRAPH_EM,
@@ -65,6 +66,7 @@ _SENTENCE = 60
 _MANY_COLUMNS = 8
 MAIN = 2  # the level of the headings that the contents list
 FEWEST_LISTED = 6  # of fewer sections there is no table of contents
+_LONG_NUMBER = 34  # letters: as many has a pair of poles, −3.16456 krad/s ± j 251.557 krad/s
 _LONG_WORD = 18  # letters: a longer word in a table may be broken anywhere
 
 Setter = Callable[[Piece], Markup]
@@ -73,16 +75,25 @@ Setter = Callable[[Piece], Markup]
 class Page:
     """What the templates ask for while they write a sheet."""
 
-    def __init__(self, sheet: Sheet, maths: SheetMaths, set_piece: Setter) -> None:
+    def __init__(
+        self, sheet: Sheet, maths: SheetMaths, set_piece: Setter, *, paper: bool = False
+    ) -> None:
         self.sheet = sheet
         self._maths = maths
         self._set = set_piece
+        self._paper = paper
         self._tables = 0
         self._figures = 0
 
     def words(self, line: Line, limit: float) -> Markup:
         """Return a line of words, maths, links and marks as markup."""
-        return Markup("").join(self._inline(item, limit) for item in line)
+        following = (*line[1:], None)
+        return Markup("").join(
+            on_paper(item.text, before_maths=isinstance(after, Maths))
+            if self._paper and isinstance(item, Text)
+            else self._inline(item, limit)
+            for item, after in zip(line, following, strict=False)
+        )
 
     def paragraph(self, line: Line) -> Markup:
         """Return the words of a paragraph."""
@@ -205,6 +216,10 @@ class Page:
             return " many"
         return " few" if columns <= _FEW_COLUMNS and not _has_sentences(block) else ""
 
+    def is_wordy(self, line: Line) -> bool:
+        """Say whether a cell holds words rather than a number with its unit, and so may take several lines."""
+        return sum(len(item.text) for item in line if isinstance(item, Text)) > _LONG_NUMBER
+
     def breaks_words(self, line: Line) -> bool:
         """Say whether a cell holds a word too long to be kept whole in a narrow column."""
         words = (word for item in line if isinstance(item, Text) for word in item.text.split())
@@ -250,7 +265,7 @@ def compose(
     made = groups(sheet.sections)
     mains = tuple(h for group in made for h in group.headings if h.level == MAIN)
     page = look.page(
-        page=Page(sheet, maths, set_piece),
+        page=Page(sheet, maths, set_piece, paper=bool(more.get("paper"))),
         sheet=sheet,
         rows=title_rows(sheet),
         groups=made,

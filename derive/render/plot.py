@@ -18,7 +18,7 @@ from derive.render.plot_scale import Scale, scale_of
 from derive.sheet.document import Area, Axis, Curve, Panel, Plot, Spot
 
 # All lengths in units of which the figure is 640 wide: 174 mm on paper.
-WIDTH, LEFT, RIGHT = 640.0, 46.0, 20.0
+WIDTH, LEFT, RIGHT = 640.0, 46.0, 26.0
 FIELD = WIDTH - LEFT - RIGHT
 NARROW = 312.0  # of a plot that has another beside it
 HEIGHTS = {1: (250.0,), 2: (140.0, 94.0)}

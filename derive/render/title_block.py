@@ -45,7 +45,7 @@ def title_rows(sheet: Sheet) -> list[list[Cell]]:
     short = [f for f in fields if len(f.text) <= _LONG_FIELD and "\n" not in f.text]
     entries = [(field, "") for field in short]
     if sheet.passed:
-        entries.append((Field("Status", f"✓ {sheet.status or 'all checks passed'}"), "status pass"))
+        entries.append((Field("Status", f"✓ {sheet.status or _passed(sheet)}"), "status pass"))
     else:
         entries.append((Field("Status", f"✗ {sheet.status or _failed(sheet)}"), "status fail"))
     last = [[Cell("Source", sheet.topology_name, 12, "digest")]]
@@ -62,6 +62,10 @@ def warning(sheet: Sheet) -> str:
     """Return what stands over the failures on the first page."""
     checks = "Checks" if len(sheet.failures) > 1 else "A check"
     return sheet.warning or f"{checks} failed: the results of this sheet are not to be relied on."
+
+
+def _passed(sheet: Sheet) -> str:
+    return f"no check failed, {sheet.left_open} left open" if sheet.left_open else "all checks passed"
 
 
 def _failed(sheet: Sheet) -> str:

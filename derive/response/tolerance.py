@@ -94,7 +94,7 @@ def tolerance_span(circuit: SmallSignal, find: Find, hertz: Sequence[float]) -> 
                 list(product((-1.0, 0.0, 1.0) if len(names) == 1 else (-1.0, 1.0), repeat=len(names)))
             )
             found = rows.solve(_factors(circuit, known, names, 1 + signs * ends), omegas)
-            says = f"all {2 ** len(names)} corners of the tolerances"
+            says = f"all {2 ** len(names)} corners"
             low_high = _extremes(found)
         else:
             low_high = _directed(rows, circuit, known, names, ends, omegas)

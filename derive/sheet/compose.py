@@ -16,6 +16,7 @@ from derive.sheet.document import Field, Section, Sheet
 from derive.sheet.hand.words import short_failures
 from derive.sheet.ledger import ledger_text
 from derive.sheet.sections.sign_off import newest_mark
+from derive.sheet.tally import tally_of
 from derive.sheet.view import views
 
 SIGNED = ("Prepared", "Checked", "Approved")
@@ -48,6 +49,7 @@ def compose(outcome: Outcome, name: str, *, with_ledger: bool = True) -> Sheet:
         topology_text=topology.text,
         ledger_name=f"{name}.json",
         ledger_text=ledger,
+        left_open=sum(tally_of(result.verdicts).left_open for result in outcome.results),
     )
 
 

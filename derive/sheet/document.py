@@ -96,11 +96,15 @@ class Column:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """A table with a caption; every row has one line of inline content a column."""
+    """A table with a caption; every row has one line of inline content a column.
+
+    `by_hand` says whether it has room for what people write into it on paper.
+    """
 
     caption: str
     columns: tuple[Column, ...]
     rows: tuple[tuple[Line, ...], ...]
+    by_hand: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -262,9 +266,10 @@ class Source:
 class Sheet:
     """The whole document, with the files that it carries.
 
-    `passed` says whether no check failed; `failures` names those that did, for the first page. A sheet on
-    several topologies has them in `sources`, and no topology of its own. `status` and `warning` are what the title
-    block and the note over the failures say of it, "" for what is said of every sheet.
+    `passed` says whether no check failed; `failures` names those that did, for the first page, `left_open`
+    counts those that did not come to an end. A sheet on several topologies has them in `sources`, and no topology
+    of its own. `status` and `warning` are what the title block and the note over the failures say of it, "" for
+    what is said of every sheet.
     """
 
     title: str
@@ -280,3 +285,4 @@ class Sheet:
     sources: tuple[Source, ...] = ()
     status: str = ""
     warning: str = ""
+    left_open: int = 0

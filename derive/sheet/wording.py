@@ -66,7 +66,7 @@ class Wording:
     def says(self, step: Step) -> Line:
         """Give the sentence of a step."""
         if step.rule in bias_steps.SENTENCES:
-            return (Text(bias_steps.SENTENCES[step.rule]),)
+            return marked(bias_steps.SENTENCES[step.rule])
         return joined(SENTENCES[step.rule](self, step))
 
     def with_names(self, words: str) -> Line:
@@ -92,6 +92,14 @@ def marked(words: str) -> Line:
         else:
             line.append(Text(word))
     return joined(tuple(line))
+
+
+def told(words: str) -> Line:
+    """Set the origin of a device's parameter: as `marked`, and a current gain by its letter."""
+    before, sign, after = words.partition("beta = ")
+    if not sign:
+        return marked(words)
+    return joined((*marked(before), Maths(Name("beta")), Text(" = "), *marked(after)))
 
 
 def joined(line: Line) -> Line:

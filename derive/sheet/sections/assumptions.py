@@ -28,6 +28,7 @@ from derive.sheet.document import (
 )
 from derive.sheet.figures import hertz, signed_percent, times
 from derive.sheet.view import MOST_LEAVES, View
+from derive.sheet.wording import marked
 from derive.topology.topology import Budget
 
 ORDER = 71
@@ -54,7 +55,7 @@ def compose(view: View) -> tuple[Section, ...]:
         blocks += [_terms(register), *(_reason(entry) for entry in register.entries), _price(register)]
         roots = _roots(register)
         blocks += [roots] if roots else []
-        blocks.append(Paragraph((Text(_method(register)),), "note"))
+        blocks.append(Paragraph(marked(_method(register)), "note"))
     if register.idle:
         numbers = ", ".join(map(str, register.idle))
         one = len(register.idle) == 1

@@ -10,7 +10,7 @@ from derive.expressions.walk import names_of
 from derive.quantities.dimension import VOLTAGE
 from derive.quantities.format import engineering
 from derive.sheet.document import Block, Column, Line, Maths, Paragraph, Section, Table, Text
-from derive.sheet.wording import marked
+from derive.sheet.wording import marked, told
 
 ORDER = 26
 SCOPE = "sheet"
@@ -45,7 +45,7 @@ def _table(lines: list[ParameterLine]) -> Table:
         Column((Text(heading),), heading == "Value")
         for heading in ("Parameter", "Value", "Origin", "From")
     )
-    rows = tuple((_symbol(line), _value(line), marked(line.says), _equation(line)) for line in lines)
+    rows = tuple((_symbol(line), _value(line), told(line.says), _equation(line)) for line in lines)
     return Table("Small-signal parameters", columns, rows)
 
 

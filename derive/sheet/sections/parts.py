@@ -40,6 +40,8 @@ def compose(outcome: Outcome) -> tuple[Section, ...]:
         blocks.append(Table("Drives", _columns("Drive", "Kind", "Connected"), tuple(rows)))
     rows = [_part_row(part, outcome) for part in topology.parts]
     heads = _columns("Part", "Kind", "Connected", "Value", "Tolerance", numeric=("Value", "Tolerance"))
+    if not any(part.tolerance is not None for part in topology.parts):
+        heads, rows = heads[:-1], [row[:-1] for row in rows]
     blocks.append(Table("Parts as read", heads, tuple(rows)))
     if topology.node_words:
         nodes = [((Text(node),), (Text(words),)) for node, words in topology.node_words]

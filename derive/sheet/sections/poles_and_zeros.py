@@ -114,6 +114,8 @@ def _numeric(numbers: NominalNumbers) -> list[Block]:
     if rows:
         headings = ("", "Value", "Frequency |p|/2π", "Q", "Where", "Error bound, relative")
         columns = _columns(headings, (1, 2, 3, 5))
+        if all(root.quality is None for root in (*numbers.poles, *numbers.zeros)):
+            columns, rows = (*columns[:3], *columns[4:]), [(*row[:3], *row[4:]) for row in rows]
         blocks.append(Table("Poles and zeros at the nominal values", columns, tuple(rows)))
     for root in numbers.coincident:
         if root.imaginary >= 0:

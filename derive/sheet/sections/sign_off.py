@@ -52,7 +52,7 @@ def _signatures(topology: Topology) -> Table:
         _row("Checked", block.checked, "", ""),
         _row("Approved", block.approved, "", ""),
     )
-    return Table("Signatures", _columns("Role", "Name", "Date", "Signature"), rows)
+    return Table("Signatures", _columns("Role", "Name", "Date", "Signature"), rows, by_hand=True)
 
 
 def _items(outcome: Outcome) -> Table:
@@ -66,7 +66,7 @@ def _items(outcome: Outcome) -> Table:
     ]
     rows = tuple(_item(name, given.get(name.casefold())) for name in dict.fromkeys(names))
     columns = _columns("Item", "By", "Verdict", "Remark", "Date")
-    return Table("What was checked, and by whom", columns, rows)
+    return Table("What was checked, and by whom", columns, rows, by_hand=True)
 
 
 def _item(name: str, review: Reviewed | None) -> tuple[Line, ...]:

@@ -10,7 +10,7 @@ from derive.quantities.format import engineering
 from derive.quantities.symbol import Symbol
 from derive.sheet.definitions import definitions_of
 from derive.sheet.document import Column, Line, Maths, Section, Table, Text
-from derive.sheet.wording import joined, marked
+from derive.sheet.wording import joined, marked, told
 
 ORDER = 84
 SCOPE = "sheet"
@@ -57,7 +57,7 @@ def _of_the_circuit(outcome: Outcome) -> list[Row]:
     for symbol in outcome.circuit.symbols:
         tolerance = f" ± {float(100 * symbol.tolerance):g} %" if symbol.tolerance else ""
         origin = devices.get(symbol.name, symbol.origin)
-        rows.append((symbol.name, _value(symbol), marked(f"{origin}{tolerance}")))
+        rows.append((symbol.name, _value(symbol), told(f"{origin}{tolerance}")))
     for drive in outcome.circuit.topology.drives:
         plus, minus = drive.nodes
         where = (

@@ -35,7 +35,7 @@ from derive.sheet.resistances import (
     told_before,
 )
 from derive.sheet.view import View, views
-from derive.sheet.wording import joined, marked
+from derive.sheet.wording import NAME_LIKE, joined, marked
 
 ORDER = 64
 SCOPE = "result"
@@ -45,7 +45,7 @@ FURTHER = "f_1"
 NAMED_LEAVES = 4
 SOURCE = (
     "Products of time constants: B. L. Cochrun and A. Grabel, IEEE Trans. Circuit Theory 20 (1973); numerators by "
-    "transfer constants: A. Hajimiri, IEEE Trans. Circuits Syst. I 57 (2010); both from memory."
+    "transfer constants: A. Hajimiri, IEEE Trans. Circuits Syst. I 57 (2010); both cited from memory."
 )
 
 
@@ -66,7 +66,7 @@ def compose(view: View) -> tuple[Section, ...]:
     blocks += _products(view, found)
     blocks += _hidden(found)
     if found.remark:
-        blocks.append(Paragraph((Text(_sentence(found.remark)),), "note"))
+        blocks.append(Paragraph(marked(_sentence(found.remark)), "note"))
     words = with_words(_definitions(view, found, tables=before is None))
     blocks += [Paragraph(words)] if words else []
     blocks += [_derivation(seen) for seen in derivations(view.outcome) if seen.place == view.place]
@@ -78,7 +78,9 @@ def _band_of(view: View, other: View) -> str:
 
 
 def _sentence(words: str) -> str:
-    return f"{words[:1].upper()}{words[1:].rstrip('.')}."
+    """Make words a sentence; a name that begins it keeps its own letter."""
+    first = words[:1] if NAME_LIKE.fullmatch(words.partition(" ")[0]) else words[:1].upper()
+    return f"{first}{words[1:].rstrip('.')}."
 
 
 def _tables(view: View, found: TimeConstants) -> list[Block]:

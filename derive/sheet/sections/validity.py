@@ -2,10 +2,16 @@
 
 from __future__ import annotations
 
+import math
+from fractions import Fraction
+
 from derive.bias.second_order import SmallSignalLimit, small_signal_limits
 from derive.check.verdict import Outcome
+from derive.devices.elements import Capacitor
+from derive.devices.parameters import DeviceParameters
 from derive.quantities.dimension import FREQUENCY, VOLTAGE
 from derive.quantities.format import engineering
+from derive.quantities.words import listed
 from derive.sheet.document import Column, Line, Section, Table, Text
 from derive.sheet.wording import marked
 
@@ -18,6 +24,7 @@ def compose(outcome: Outcome) -> tuple[Section, ...]:
     """Give the section: one row a limit, each with the number that this circuit gives it."""
     rows = [
         *_bands(outcome),
+        *_transits(outcome),
         *_amplitudes(outcome),
         *_temperature(outcome),
         *_values(outcome),
@@ -49,6 +56,35 @@ def _bands(outcome: Outcome) -> list[Row]:
             says = "at every frequency for the elements as modelled"
         rows.append((f"Frequency, {band.circuit.band} band", says))
     return rows
+
+
+def _transits(outcome: Outcome) -> list[Row]:
+    """Say up to where the model of a device holds whose capacitances stand in a result.
+
+    Source: g_m/(2π·(C_π + C_μ)), and with C_gs and C_gd likewise, is textbook standard; that one lumped model
+    serves well below it only is common practice.
+    """
+    circuits = [result.solution.derivation.system.small_signal for result in outcome.results]
+    with_capacitances = {e.part for c in circuits for e in c.elements if isinstance(e, Capacitor)}
+    rows = []
+    for device in outcome.circuit.devices:
+        hertz = _transit(device) if device.part in with_capacitances else None
+        if hertz is not None:
+            says = (
+                f"well below its transition frequency, {_hertz(hertz)} by the values given; poles and zeros above "
+                "that are the model's rather than the device's (common practice)"
+            )
+            rows.append((f"Frequency, {device.part}", says))
+    return rows
+
+
+def _transit(device: DeviceParameters) -> float | None:
+    transconductance = device.value("g_m")
+    for names in (("C_pi", "C_mu"), ("C_gs", "C_gd")):
+        farads = sum(device.value(name) or Fraction(0) for name in names)
+        if transconductance and device.value(names[0]):
+            return float(transconductance / farads) / (2 * math.pi)
+    return None
 
 
 def _hertz(value: float) -> str:
@@ -101,9 +137,13 @@ def _values(outcome: Outcome) -> list[Row]:
         rows.append(
             ("Values", "as symbols for all values; as numbers at the nominal ones, no tolerance given")
         )
-    left_out = [f"{d.part}: {left.symbol}" for d in outcome.circuit.devices for left in d.left_out]
+    left_out = [
+        f"{device.part} without {listed([left.symbol for left in device.left_out])}"
+        for device in outcome.circuit.devices
+        if device.left_out
+    ]
     if left_out:
-        rows.append(("Left out of the devices", f"without {', '.join(left_out)}"))
+        rows.append(("Left out of the devices", "; ".join(left_out)))
     return rows
 
 

@@ -99,6 +99,14 @@ def test_a_continued_line_begins_with_its_sign():
     assert all(re.match(r"& #h\([\d.]+em\) - med ", row.source) for row in rows[1:])
 
 
+def test_two_fractions_on_two_lines_have_one_dot_between_them():
+    """Side by side the second has a dot of its own; at the head of a line it must not have two."""
+    whole = Equation(A, Product((Quotient(long_sum(5), B), Quotient(long_sum(5, 20), C))))
+    rows, _ = laid_out(whole, COLUMN_EM)
+    assert len(rows) > 1
+    assert sum(row.source.count("dot ") for row in rows) == 1
+
+
 def test_a_minus_before_a_broken_sum_stays_outside_its_brackets():
     rows, _ = laid_out(Sum((A, Negative(long_sum(20)))), COLUMN_EM)
     text = " ".join(row.source for row in rows)

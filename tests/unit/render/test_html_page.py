@@ -9,7 +9,7 @@ import pytest
 
 from derive.render.html import in_script, tidy, to_html
 from derive.render.maths import SheetMaths
-from derive.sheet.document import Display
+from derive.sheet.document import Column, Display, Table, Text
 
 VOID = {"meta", "br", "img", "link", "hr", "input", "wbr"}
 
@@ -126,6 +126,22 @@ def test_a_passed_sheet_has_no_banner(sheet):
     page = to_html(replace(sheet, passed=True, failures=())).decode()
     assert 'class="banner"' not in page
     assert "all checks passed" in page
+
+
+def test_a_sheet_whose_checks_did_not_all_end_does_not_say_that_all_passed(sheet):
+    page = to_html(replace(sheet, passed=True, failures=(), left_open=2)).decode()
+    assert "all checks passed" not in page
+    assert "no check failed, 2 left open" in page
+
+
+def test_words_among_numbers_may_take_several_lines(sheet):
+    def cells(words):
+        table = Table("", (Column((Text("Resistance"),), numeric=True),), (((Text(words),),),))
+        section = replace(sheet.sections[0], blocks=(table,))
+        return to_html(replace(sheet, sections=(section,))).decode()
+
+    assert 'class="numeric wordy"' in cells("infinite: in series with the current drive")
+    assert 'class="numeric wordy"' not in cells("−3.16456 krad/s ± j 251.557 krad/s")
 
 
 def test_marks_say_their_verdict_in_signs_and_words(page):

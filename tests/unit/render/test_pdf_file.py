@@ -13,7 +13,10 @@ import pytest
 
 from derive.errors import OutputError
 from derive.render import pdf as pdf_module
+from derive.render.groups import groups
 from derive.render.pdf import to_pdf
+from derive.sheet.document import Display, Paragraph
+from tests.support.issued_pages import elements, faults_of_document
 
 CONFTEST = Path(__file__).with_name("conftest.py")
 PRINT_TWICE = """
@@ -166,6 +169,33 @@ def test_no_heading_stands_alone_at_the_foot_of_a_page(sheet):
         assert "V_e/V_src" in texts[place]
         found.add(place)
     assert found == {0, 1}
+
+
+def test_an_issued_file_has_no_fault(opened):
+    assert faults_of_document(opened) == []
+
+
+def test_each_fault_of_a_file_is_found(made):
+    with pikepdf.open(io.BytesIO(made)) as document:
+        figure = next(e for e in elements(document.Root.StructTreeRoot) if e.get("/S") == "/Formula")
+        del figure.Alt
+        with document.open_metadata() as metadata:
+            metadata["pdfuaid:part"] = "2"
+        heading = [e for e in elements(document.Root.StructTreeRoot) if e.get("/S") == "/H2"][-1]
+        for inner in elements(heading):
+            inner.Pg = document.pages[0].obj
+        found = faults_of_document(document)
+    assert "/Formula without alternative text" in found
+    assert any("declares" in fault for fault in found)
+    assert "page 1: a heading has nothing under it" in found
+
+
+def test_a_section_whose_words_come_in_two_pieces_keeps_them_with_its_heading(sheet):
+    words = next(b for s in sheet.sections for b in s.blocks if isinstance(b, Paragraph))
+    formula = next(b for s in sheet.sections for b in s.blocks if isinstance(b, Display))
+    section = replace(sheet.sections[0], blocks=(words, words, formula, words))
+    (group,) = groups((section,))
+    assert group.kept == (words, words, formula)
 
 
 def test_two_processes_write_the_same_bytes():
