@@ -22,7 +22,7 @@ PREFIXES = ((1.0, "s"), (1e-3, "ms"), (1e-6, "µs"), (1e-9, "ns"), (1e-12, "ps")
 def step_plots(shown: Shown) -> tuple[Plot, ...]:
     """Give the plots of the rise and, where the circuit has a corner below its band, of the sag."""
     step = step_response(shown.whole)
-    if step is None or not step.poles:
+    if step is None or not step.poles or unstable(step):
         return ()
     slow, fast = _sorted(step, shown)
     if not fast:
@@ -32,6 +32,11 @@ def step_plots(shown: Shown) -> tuple[Plot, ...]:
     if not slow or rise is None:
         return (first,)
     return first, _plot(shown, step, _window(slow), f"Step response of {shown.name}: the sag", ())
+
+
+def unstable(step: StepResponse) -> bool:
+    """Whether what follows a step grows without end."""
+    return any(pole.real > 0 for pole in step.poles)
 
 
 def _window(poles: list[complex]) -> float:

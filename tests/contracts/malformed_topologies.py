@@ -136,10 +136,7 @@ TABLES = (
     row("words for no node", GOOD + '[nodes]\nouy = "cable" #<\n', '"ouy"', 'did you mean "out"'),
 )
 
-LATER = (
-    row("drawing", GOOD + "[drawing] #<\n", "drawing", "not yet supported"),
-    row("return ratio", finds('[find.T]\nreturn_ratio = "R_1" #<\n'), "return_ratio", "not yet"),
-)
+LATER = (row("return ratio", finds('[find.T]\nreturn_ratio = "R_1" #<\n'), "return_ratio", "not yet"),)
 
 NAMES = (
     row("name begins with a digit", also('1R = { resistor = "1k" } #<'), '"1R"', "not a name"),

@@ -16,7 +16,14 @@ POINTS = 3
 # What is not asked for here, and what does not apply where nothing stores energy or bridges two nodes; these
 # last are judged below where they fail.
 NOT_ALWAYS = ("another engine",)
-MAY_NOT_APPLY = ("readable form", "time constants", "Miller's theorem", "estimates", "assumptions")
+MAY_NOT_APPLY = (
+    "readable form",
+    "time constants",
+    "Miller's theorem",
+    "estimates",
+    "assumptions",
+    "short forms",
+)
 
 
 @dataclass(frozen=True)

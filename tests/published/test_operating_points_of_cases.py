@@ -80,6 +80,7 @@ def square(factor, gate, threshold, source, loop, supply, slope):
 
 BIPOLAR = {
     "line_buffer": lambda v_be: {"Q1": on_a_divider(9, 68e3, 82e3, 1.8e3, 180, v_be)},
+    "detector_follower": lambda v_be: {"Q1": on_a_divider(9, 330e3, 470e3, 1.2e3, 180, v_be)},
     "echo_preamp": lambda v_be: {"Q1": on_a_divider(7.2, 68e3, 22e3, 1047, 180, v_be)},
     "cable_receiver": lambda v_be: {"Q1": on_a_divider(12, 82e3, 22e3, 1.8e3, 180, v_be)},
     "echo_cascode": cascode,

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from derive.check.verdict import Outcome
+from derive.response.step import step_response
 from derive.sheet.delay_plot import delay_plot
 from derive.sheet.document import Block, Paragraph, Section, Text
 from derive.sheet.response_plot import response_plot
 from derive.sheet.responses import shown_responses
 from derive.sheet.root_plot import root_plot
-from derive.sheet.time_plot import step_plots
+from derive.sheet.time_plot import step_plots, unstable
 
 ORDER = 12
 SCOPE = "sheet"
@@ -16,6 +17,7 @@ LEAD = (
     "Drawn at the nominal values. The whole circuit has every part in place, no band and no assumption taken; where a "
     "band's curve leaves it, the band is at its end."
 )
+GROWS = "not drawn, as a pole lies in the right half-plane: it grows without end, and the circuit is not stable."
 
 
 def compose(outcome: Outcome) -> tuple[Section, ...]:
@@ -33,6 +35,9 @@ def compose(outcome: Outcome) -> tuple[Section, ...]:
         # A step of current into a port is asked for less often than one of a drive.
         if "step" in wanted and shown.find.quantity != "impedance":
             blocks += step_plots(shown)
+            step = step_response(shown.whole)
+            if step is not None and unstable(step):
+                blocks.append(Paragraph((Text(f"Step response of {shown.name}: {GROWS}"),), "alarm"))
         if "delay" in wanted and shown.find.quantity != "impedance":
             plot = delay_plot(shown)
             blocks += [plot] if plot else []

@@ -151,8 +151,8 @@ def test_line_ends_of_two_letters_change_no_value(topology):
 
 
 def test_what_is_not_yet_supported_says_so_by_its_own_error():
-    with pytest.raises(NotYetSupportedError, match="the key hand is not yet supported here"):
-        parse(SHEET + 'hand = "a.hand.toml"\n', "a.toml")
+    with pytest.raises(NotYetSupportedError, match="return_ratio"):
+        parse(STAGE + '[find.T]\nreturn_ratio = "R_1"\n', "a.toml")
 
 
 def test_file_is_read_with_its_name(tmp_path):
