@@ -122,21 +122,27 @@ def test_start_writes_a_file_and_says_what_comes_next(tmp_path, monkeypatch, cap
     assert "left as it is" in refused(capsys, "start", "mine")
 
 
+def heed_control_c():
+    # What is started in the background of a shell is deaf to it, and so would be its children.
+    signal.signal(signal.SIGINT, signal.default_int_handler)
+
+
 def test_watch_ends_cleanly_with_control_c(folder):
-    child = subprocess.Popen(
+    with subprocess.Popen(
         [sys.executable, "-m", "derive", "watch", str(folder / "low.toml"), "--port", "0"],
         cwd=ROOT,
         stdout=subprocess.PIPE,
         stderr=subprocess.PIPE,
         text=True,
-    )
-    try:
-        assert "http://127.0.0.1:" in child.stdout.readline()
-        assert "derived" in child.stdout.readline()
-        child.send_signal(signal.SIGINT)
-        out, err = child.communicate(timeout=30)
-    finally:
-        child.kill()
+        preexec_fn=heed_control_c,
+    ) as child:
+        try:
+            assert "http://127.0.0.1:" in child.stdout.readline()
+            assert "derived" in child.stdout.readline()
+            child.send_signal(signal.SIGINT)
+            out, err = child.communicate(timeout=30)
+        finally:
+            child.kill()
     assert (child.returncode, out, err) == (0, "ended\n", "")
 
 

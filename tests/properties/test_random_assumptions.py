@@ -12,7 +12,7 @@ from assumed import solutions_of
 from assumed_circuits import Stage, polynomials, reduce, removed_response, symbolic, worst_errors
 from assumed_comparison import HIGH, LOW, close, differences, disputed, drawn_stages
 
-COUNT, BATCH = 60, 10
+COUNT, BATCH = 40, 10
 
 
 @cache

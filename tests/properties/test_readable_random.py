@@ -9,7 +9,7 @@ import pytest
 from readable_stages import faults, stages, value_of
 
 # Most circuits are small, so that there can be many; `campaign.py --of readable` runs more.
-COUNT, BATCH, LARGER = 300, 100, 50
+COUNT, BATCH, LARGER = 200, 100, 50
 SEED = 4_000_000
 
 
