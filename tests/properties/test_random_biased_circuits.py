@@ -21,7 +21,7 @@ from derive.errors import InputError, TooLargeError
 from derive.pipeline import derive
 from derive.reading.read import parse
 
-COUNT, BATCH, SEED = 45, 15, 9_100_000
+COUNT, BATCH, SEED = 60, 15, 9_100_000
 SUPPLY, V_BE = Fraction(12), Fraction(13, 20)
 CHARGE, BOLTZMANN = Fraction("1.602176634e-19"), Fraction("1.380649e-23")
 HEAD = '[sheet]\ntitle = "Stage"\n'
