@@ -66,7 +66,9 @@ def with_divider(dc: DcCircuit, device: DcDevice, derivation: Derivation) -> Der
     taken = {*derivation.system.ring.names, *dc.names.taken, derivation.system.find.name}
     taken |= {unknown.name for unknown in derivation.system.unknowns}
     v_bb = fresh(taken, dc.names.indexed(device.part, "V_BB"))
-    r_b = fresh(taken, dc.names.indexed(device.part, "R_B"))
+    # R_B is what many call their base divider in the file; V_BB's partner is then R_BB.
+    wanted = [dc.names.indexed(device.part, name) for name in ("R_B", "R_BB")]
+    r_b = fresh(taken, next((name for name in wanted if name not in taken), wanted[-1]))
     v_be, beta = (Name(symbol.name) for symbol in device.dc.symbols[:2])
     across = [Name(v_bb), negate(divider.emitter_rail)]
     if device.sign < 0:

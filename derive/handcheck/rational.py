@@ -10,6 +10,7 @@ from typing import Any
 from flint import fmpq, fmpq_mpoly_ctx, nmod_mpoly_ctx
 
 from derive.algebra.modular import PRIME
+from derive.algebra.unreduced import Unreduced
 from derive.check.solve import residue
 from derive.expressions.tree import ZERO, Expression, Name, Number, Power, Product, Sum
 from derive.expressions.walk import children_of, evaluate, evaluate_modulo, names_of, with_children
@@ -24,37 +25,19 @@ class TooLongError(Exception):
     """Raised where a line has too many terms in its unknowns."""
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Pair:
-    """A fraction of polynomials."""
+class _Pair(Unreduced):
+    """A fraction of polynomials that is given up where it grows too long."""
 
-    top: Polynomial
-    bottom: Polynomial
+    __slots__ = ()
 
     def __post_init__(self) -> None:
         if len(self.top) > MOST_TERMS or len(self.bottom) > MOST_TERMS:
             raise TooLongError
 
-    def __add__(self, other: _Pair) -> _Pair:
-        if self.bottom == other.bottom:
-            return _Pair(self.top + other.top, self.bottom)
-        return _Pair(self.top * other.bottom + other.top * self.bottom, self.bottom * other.bottom)
-
-    def __mul__(self, other: _Pair) -> _Pair:
-        return _Pair(self.top * other.top, self.bottom * other.bottom)
-
-    def __truediv__(self, other: _Pair) -> _Pair:
-        if other.top == 0:
-            raise ZeroDivisionError("a divisor is zero")
-        return _Pair(self.top * other.bottom, self.bottom * other.top)
-
-    def __neg__(self) -> _Pair:
-        return _Pair(-self.top, self.bottom)
-
     def __pow__(self, exponent: int) -> _Pair:
         if exponent > MOST_EXPONENT and max(len(self.top), len(self.bottom)) > 2:
             raise TooLongError
-        return _Pair(self.top**exponent, self.bottom**exponent)
+        return Unreduced.__pow__(self, exponent)
 
 
 class Unknowns:

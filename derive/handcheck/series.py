@@ -3,12 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
-from typing import Any
 
 from flint import nmod_poly
 
 from derive.algebra.modular import PRIME
+from derive.algebra.unreduced import Unreduced
 from derive.check.solve import residue
 from derive.errors import DeriveError
 from derive.expressions.tree import Expression, Name, Power, Product, Quotient, Sum
@@ -19,37 +18,19 @@ from derive.normalise.form import NormalForm
 HIGHEST = 60
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Pair:
-    """A fraction of polynomials in s."""
+class _Pair(Unreduced):
+    """A fraction of polynomials in s, up to a degree that is still compared."""
 
-    top: Any
-    bottom: Any
+    __slots__ = ()
 
     def __post_init__(self) -> None:
         if max(self.top.degree(), self.bottom.degree()) > HIGHEST:
             raise DeriveError("the degree in s is too high")
 
-    def __add__(self, other: _Pair) -> _Pair:
-        if self.bottom == other.bottom:
-            return _Pair(self.top + other.top, self.bottom)
-        return _Pair(self.top * other.bottom + other.top * self.bottom, self.bottom * other.bottom)
-
-    def __mul__(self, other: _Pair) -> _Pair:
-        return _Pair(self.top * other.top, self.bottom * other.bottom)
-
-    def __truediv__(self, other: _Pair) -> _Pair:
-        if other.top == 0:
-            raise ZeroDivisionError("a divisor is zero")
-        return _Pair(self.top * other.bottom, self.bottom * other.top)
-
-    def __neg__(self) -> _Pair:
-        return _Pair(-self.top, self.bottom)
-
     def __pow__(self, exponent: int) -> _Pair:
         if exponent * max(self.top.degree(), self.bottom.degree()) > HIGHEST:
             raise DeriveError("the degree in s is too high")
-        return _Pair(self.top**exponent, self.bottom**exponent)
+        return Unreduced.__pow__(self, exponent)
 
 
 def coefficients_modulo(response: Expression, values: Mapping[str, int]) -> dict[str, int] | None:

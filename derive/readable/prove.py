@@ -8,12 +8,12 @@ J. ACM 27 (1980) 701-717; Zippel (1979); from memory).
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 from derive.algebra.modular import PRIME, residues
 from derive.algebra.ratio import lowest_terms
 from derive.algebra.ring import Polynomial, Ring
+from derive.algebra.unreduced import Unreduced
 from derive.expressions.tree import Expression
 from derive.expressions.walk import evaluate, evaluate_modulo, substitute
 from derive.readable.form import Definition
@@ -22,33 +22,6 @@ from derive.readable.measure import leaves
 # Forms of more leaves are compared modulo a prime.
 EXACT_LEAVES = 60
 POINTS = 3
-
-
-@dataclass(frozen=True, slots=True, eq=False)
-class _Pair:
-    """A fraction of polynomials; nothing is cancelled but equal denominators are kept."""
-
-    top: Polynomial
-    bottom: Polynomial
-
-    def __add__(self, other: _Pair) -> _Pair:
-        if self.bottom == other.bottom:
-            return _Pair(self.top + other.top, self.bottom)
-        return _Pair(self.top * other.bottom + other.top * self.bottom, self.bottom * other.bottom)
-
-    def __mul__(self, other: _Pair) -> _Pair:
-        return _Pair(self.top * other.top, self.bottom * other.bottom)
-
-    def __truediv__(self, other: _Pair) -> _Pair:
-        if other.top == 0:
-            raise ZeroDivisionError("a divisor is zero for all values")
-        return _Pair(self.top * other.bottom, self.bottom * other.top)
-
-    def __neg__(self) -> _Pair:
-        return _Pair(-self.top, self.bottom)
-
-    def __pow__(self, exponent: int) -> _Pair:
-        return _Pair(self.top**exponent, self.bottom**exponent)
 
 
 def ratio_of(expression: Expression, ring: Ring) -> tuple[Polynomial, Polynomial]:
@@ -60,11 +33,11 @@ def ratio_of(expression: Expression, ring: Ring) -> tuple[Polynomial, Polynomial
     return lowest_terms(ring, pair.top, pair.bottom)
 
 
-def _pair(expression: Expression, ring: Ring) -> _Pair:
-    names = {name: _Pair(ring.generator(name), ring.one) for name in ring.names}
+def _pair(expression: Expression, ring: Ring) -> Unreduced:
+    names = {name: Unreduced(ring.generator(name), ring.one) for name in ring.names}
 
-    def number(value: Fraction) -> _Pair:
-        return _Pair(ring.constant(value.numerator), ring.constant(value.denominator))
+    def number(value: Fraction) -> Unreduced:
+        return Unreduced(ring.constant(value.numerator), ring.constant(value.denominator))
 
     return evaluate(expression, names, number)
 

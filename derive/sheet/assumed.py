@@ -55,11 +55,15 @@ def assumed(view: View) -> list[Block]:
     found = written(register.entries[-1])
     if leaves(found) > ONE_LINE:
         return []
-    return [Display(found, (*_lead(view, register), Text("; "), *_mark(register)))]
+    return [
+        Display(
+            Equation(Name(view.name), found, "~"), (*_lead(view, register), Text("; "), *_mark(register))
+        )
+    ]
 
 
 def _lead(view: View, register: Register) -> Line:
-    line: list[Inline] = [Maths(Name(view.name)), Text(" approximately, with ")]
+    line: list[Inline] = [Text("With ")]
     for place, entry in enumerate(register.entries):
         last = place == len(register.entries) - 1
         line += [Text("" if not place else " and " if last else ", "), *statement(entry.assumption)]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 
+from derive.normalise.exact_response import ratio_at
 from derive.quantities.dimension import RATIO, TIME
 from derive.quantities.format import engineering
 from derive.quantities.units import unit_of
@@ -45,11 +46,18 @@ def _window(poles: list[complex]) -> float:
 
 
 def _sorted(step: StepResponse, shown: Shown) -> tuple[list[complex], list[complex]]:
-    """Part the poles of the sag from those of the rise, at the middle of the pass band where there is a low edge."""
+    """Part the poles of the sag from those of the rise, at the middle of the pass band where there is a sag."""
     middle = 2 * math.pi * shown.mid_hz
-    low_edge = any(edge < shown.mid_hz for edge in shown.edges)
-    slow = [pole for pole in step.poles if low_edge and abs(pole) < middle]
+    sags = _sags(shown)
+    slow = [pole for pole in step.poles if sags and abs(pole) < middle]
     return slow, [pole for pole in step.poles if pole not in slow]
+
+
+def _sags(shown: Shown) -> bool:
+    """Whether a step falls back: at zero frequency there is less than half the power of the pass band."""
+    top, bottom = shown.whole.top[0], shown.whole.bottom[0]
+    within = ratio_at((shown.whole,), (), shown.mid_hz)
+    return bool(bottom and within) and abs(float(top / bottom)) < abs(within or 0) / math.sqrt(2)
 
 
 def _end(step: StepResponse, slow: list[complex]) -> float:

@@ -7,7 +7,7 @@ from fractions import Fraction
 from typing import Literal
 
 from derive.approximate.register import Entry, Errors, Register, RootError
-from derive.expressions.tree import Expression, Name, Power
+from derive.expressions.tree import Equation, Expression, Name, Power
 from derive.quantities.dimension import FREQUENCY, RATIO
 from derive.quantities.format import engineering
 from derive.readable.measure import leaves
@@ -53,8 +53,7 @@ def compose(view: View) -> tuple[Section, ...]:
     blocks += [Paragraph(words_used)] if words_used else []
     if register.entries:
         blocks += [_terms(register), *(_reason(entry) for entry in register.entries), _price(register)]
-        roots = _roots(register)
-        blocks += [roots] if roots else []
+        blocks += [table for table in (_price_at(register), _roots(register)) if table]
         blocks.append(Paragraph(marked(_method(register)), "note"))
     if register.idle:
         numbers = ", ".join(map(str, register.idle))
@@ -96,11 +95,11 @@ def _step(view: View, entry: Entry, *, first: bool) -> list[Block]:
     if entry.reduced.struck and not entry.reduced.shown:
         blocks.append(Paragraph(_struck(entry)))
     found = written(entry)
-    words = f" with assumption {entry.number}" + ("" if first else " and those before it")
-    reason: Line = (Maths(Name(view.name)), Text(words))
+    words = f"With assumption {entry.number}" + ("" if first else " and those before it")
     if leaves(found) <= MOST_LEAVES:
-        blocks.append(Display(found, reason))
+        blocks.append(Display(Equation(Name(view.name), found, "~"), (Text(words),)))
     else:
+        reason: Line = (Text(f"{words} "), Maths(Name(view.name)))
         words = f" is too long to print: {leaves(found):,} names and numbers; the ledger holds it."
         blocks.append(Paragraph((*reason, Text(words))))
     return blocks
@@ -161,29 +160,52 @@ def _times(ratio: float | None) -> str:
 
 
 def _price(register: Register) -> Table:
-    named = next((e.together.at for e in register.entries if e.together), ())
     headings = ["No.", "Errors", "Gain", "Low −3 dB", "High −3 dB", "Worst magnitude", "Worst phase"]
-    headings += [f"At {hertz(each.hertz, 3)}" for each in named]
     rows: list[tuple[Line, ...]] = []
     for entry in register.entries:
-        if entry.alone is not None and entry.alone is not entry.together:
-            rows.append(_errors(str(entry.number), "alone", entry.alone))
-        if entry.together is not None:
-            words = "alone" if entry.alone is entry.together else "with those before"
-            rows.append(_errors(str(entry.number), words, entry.together))
+        rows += [_errors(str(entry.number), words, errors) for words, errors in _kinds_of(entry)]
         worst = entry.worst
         if worst is not None:
             cells = ["", "at worst corner", _percent(worst.gain), "", ""]
-            cells += [_decibels(worst.magnitude_db), _degrees(worst.phase_deg), *("" for _ in named)]
+            cells += [_decibels(worst.magnitude_db), _degrees(worst.phase_deg)]
             rows.append(tuple((Text(cell),) for cell in cells))
     columns = tuple(Column((Text(heading),), place > 1) for place, heading in enumerate(headings))
     return Table("Price: (approximate − exact)/exact", columns, tuple(rows))
 
 
+def _price_at(register: Register) -> Table | None:
+    """Give the errors at the named frequencies; None where there are none."""
+    named = next((e.together.at for e in register.entries if e.together), ())
+    if not named:
+        return None
+    headings = ["No.", "Errors", *(f"At {hertz(each.hertz, 3)}" for each in named)]
+    rows = [
+        _errors_at(str(entry.number), words, errors)
+        for entry in register.entries
+        for words, errors in _kinds_of(entry)
+    ]
+    columns = tuple(Column((Text(heading),), place > 1) for place, heading in enumerate(headings))
+    return Table("Price at single frequencies: magnitude and phase", columns, tuple(rows))
+
+
+def _errors_at(number: str, words: str, errors: Errors) -> tuple[Line, ...]:
+    at = [f"{_decibels(each.magnitude_db)}, {_degrees(each.phase_deg)}" for each in errors.at]
+    return tuple((Text(cell),) for cell in (number, words, *at))
+
+
+def _kinds_of(entry: Entry) -> list[tuple[str, Errors]]:
+    """Give the errors of an assumption: by itself, and together with those before it where that differs."""
+    found = []
+    if entry.alone is not None and entry.alone is not entry.together:
+        found.append(("alone", entry.alone))
+    if entry.together is not None:
+        found.append(("alone" if entry.alone is entry.together else "with those before", entry.together))
+    return found
+
+
 def _errors(number: str, words: str, errors: Errors) -> tuple[Line, ...]:
     cells = [number, words, _percent(errors.gain), _percent(errors.low_edge), _percent(errors.high_edge)]
     cells += [_decibels(errors.magnitude_db), _degrees(errors.phase_deg)]
-    cells += [f"{_decibels(each.magnitude_db)}, {_degrees(each.phase_deg)}" for each in errors.at]
     return tuple((Text(cell),) for cell in cells)
 
 

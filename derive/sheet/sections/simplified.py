@@ -72,7 +72,8 @@ def _answer(view: View, found: Simplified, shown: set[Definition]) -> list[Block
 def _form(view: View, found: Simplified, mark: str, shown: set[Definition]) -> list[Block]:
     if found.form is None or found.price is None:
         return []
-    reason: list[Inline] = [Maths(Name(found.left)), Text(f", {mark}{price_words(found.price)}")]
+    price = f"{mark}{price_words(found.price)}"
+    reason: list[Inline] = []
     if found.value is not None:
         dimension = gain_dimension(view) if found.left == "K" else RATIO / TIME
         reason.append(
@@ -80,11 +81,18 @@ def _form(view: View, found: Simplified, mark: str, shown: set[Definition]) -> l
         )
     blocks: list[Block] = []
     if leaves(found.form) <= 2 * MOST_LEAVES:
-        blocks.append(Display(found.form, tuple(reason)))
+        blocks.append(
+            Display(
+                Equation(Name(found.left), found.form, "=" if found.status == "exact" else "~"),
+                (Text(price), *reason),
+            )
+        )
         blocks += _lines(found, shown)
     else:
         words_of_size = f" is too long to print: {leaves(found.form):,} names and numbers"
-        blocks.append(Paragraph((*reason, Text(words_of_size))))
+        blocks.append(
+            Paragraph((Maths(Name(found.left)), Text(f", {price}"), *reason, Text(words_of_size)))
+        )
     if found.sampling:
         blocks.append(Paragraph((Text(f"Counted at {found.sampling}."),), "note"))
     if found.assumptions:

@@ -83,7 +83,8 @@ def test_the_terminal_shows_the_form_and_what_it_is_off_by(tmp_path, capsys):
     assert main(["show", str(file), "--simplify", "--quiet"]) == 0
     shown = capsys.readouterr().out
     assert "Short forms" in shown
-    assert "K, off by +0.235 %" in shown
+    assert "K ≈ " in shown
+    assert "off by +0.235 %" in shown
     assert "no short form; the response has one pole" in shown
     assert main(["show", str(file), "--quiet"]) == 0
     assert "Short forms" not in capsys.readouterr().out
